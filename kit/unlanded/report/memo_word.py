@@ -1,0 +1,384 @@
+"""The memo as a Word file: real headings, captions, header rows and alternative text."""
+
+from __future__ import annotations
+
+import datetime
+import io
+import zipfile
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+from docx import Document
+from docx.enum.style import WD_STYLE_TYPE
+from docx.enum.text import WD_ALIGN_PARAGRAPH, WD_TAB_ALIGNMENT, WD_TAB_LEADER
+from docx.oxml import OxmlElement
+from docx.oxml.ns import qn
+from docx.shared import Mm, Pt, RGBColor
+
+from ..errors import Refused
+from .figure import Figure
+from .memo import Block, Bullets, Caution, Memo, Paragraph, Part, Verbatim, facts
+from .tables import Table, shares
+from .words import bound, printable
+
+PAPERS = {"a4": (210, 297), "us-letter": (215.9, 279.4)}  # mm
+FOOTER = "A calculation. It never proves a conductor dead."
+
+_ALIGN = {"left": WD_ALIGN_PARAGRAPH.LEFT, "right": WD_ALIGN_PARAGRAPH.RIGHT,
+          "centre": WD_ALIGN_PARAGRAPH.CENTER}
+_INK = RGBColor(0x1F, 0x2D, 0x3D)
+
+
+def word_bytes(
+    memo: Memo,
+    pictures: Mapping[str, Path],
+    *,
+    template: Path | None = None,
+    paper: str = "a4",
+) -> bytes:
+    """The memo as a .docx; `pictures` has each figure's PNG by its key.
+
+    `template` is a firm's own .docx: its styles, page, header and footer are kept, its text is
+    not; a style it lacks falls back to one it has. `paper`, "a4" or "us-letter", counts without
+    a template only.
+    """
+    document = Document() if template is None else _template(template)
+    if template is None:
+        _look(document, paper)
+    writer = _Writer(document, pictures)
+    _properties(document, memo)
+    _edges(document, memo)
+    _title_block(writer, memo)
+    for part in memo.parts:
+        writer.block(part, 1)
+    out = io.BytesIO()
+    document.save(out)
+    return _reproducible(out.getvalue())
+
+
+class _Writer:
+    """Sets blocks at the end of a document, counting figures and tables."""
+
+    def __init__(self, document: Any, pictures: Mapping[str, Path]) -> None:
+        self.document = document
+        self.pictures = pictures
+        self.counts = {"Figure": 0, "Table": 0}
+        page = document.sections[-1]
+        self.width = int(page.page_width - page.left_margin - page.right_margin)
+
+    def paragraph(self, text: str = "", *styles: str) -> Any:
+        """A paragraph in the first of `styles` that the document has."""
+        found = self.document.add_paragraph(bound(printable(text)))
+        names = {s.name for s in self.document.styles}
+        style = next((s for s in styles if s in names), None)
+        if style:
+            found.style = self.document.styles[style]
+        return found
+
+    def block(self, block: Block, level: int) -> None:
+        """Set one block; a part's own blocks a level deeper."""
+        match block:
+            case Part():
+                self.heading(block.heading, level)
+                for inner in block.blocks:
+                    self.block(inner, level + 1)
+            case Paragraph():
+                self.paragraph(block.text)
+            case Bullets():
+                self.bullets(block.items)
+            case Caution():
+                self.caution(block)
+            case Verbatim():
+                self.verbatim(block.text)
+            case Table():
+                self.table(block)
+            case Figure():
+                self.figure(block)
+
+    def heading(self, text: str, level: int) -> None:
+        found = self.paragraph(text, f"Heading {level}", f"heading {level}")
+        found.paragraph_format.keep_with_next = True
+        # Without the style the outline level still makes it a heading to Word and readers.
+        if not found.style.name.lower().startswith("heading"):
+            found.runs[0].bold = True
+            outline = OxmlElement("w:outlineLvl")
+            outline.set(qn("w:val"), str(level - 1))
+            found._p.get_or_add_pPr().append(outline)
+
+    def bullets(self, items: tuple[str, ...], box: Any = None) -> None:
+        for item in items:
+            found = self.paragraph(item, "List Bullet")
+            if found.style.name != "List Bullet":
+                found.runs[0].text = f"•  {found.runs[0].text}"
+            if box:
+                box(found)
+
+    def caution(self, block: Caution) -> None:
+        title = self.paragraph(block.title)
+        title.runs[0].bold = True
+        title.paragraph_format.keep_with_next = True
+        _boxed(title)
+        self.bullets(block.items, _boxed)
+
+    def verbatim(self, text: str) -> None:
+        found = self.paragraph("", "No Spacing")
+        found.add_run(printable(text))
+        found.alignment = WD_ALIGN_PARAGRAPH.LEFT
+        _shaded(found, "F5F6F8")
+        for run in found.runs:
+            run.font.name = "Consolas"
+            run.font.size = Pt(8)
+            run._r.rPr.rFonts.set(qn("w:cs"), "Consolas")
+
+    def caption(self, kind: str, text: str) -> Any:
+        self.counts[kind] += 1
+        found = self.paragraph("", "Caption", "caption")
+        found.add_run(f"{kind} ").bold = True
+        _field(found, f"SEQ {kind} \\* ARABIC", str(self.counts[kind])).bold = True
+        found.add_run(". ").bold = True
+        found.add_run(bound(printable(text)))
+        return found
+
+    def figure(self, figure: Figure) -> None:
+        holder = self.paragraph()
+        holder.paragraph_format.keep_with_next = True
+        holder.paragraph_format.space_before = Pt(10)
+        picture = holder.add_run().add_picture(str(self.pictures[figure.key]), width=self.width)
+        words = picture._inline.docPr
+        words.set("descr", printable(figure.alternative))
+        words.set("title", printable(figure.title))
+        words.set("name", f"Figure {self.counts['Figure'] + 1}")
+        self.caption("Figure", figure.caption)
+
+    def table(self, table: Table) -> None:
+        self.caption("Table", table.caption).paragraph_format.keep_with_next = True
+        made = self.document.add_table(rows=1 + len(table.rows), cols=len(table.columns))
+        names = {s.name for s in self.document.styles}
+        if "Table Grid" in names:
+            made.style = "Table Grid"
+        made.autofit = False
+        _ruled(made)
+        size = Pt(9 if len(table.columns) < 7 else 8 if len(table.columns) < 9 else 7)
+        widths = [int(self.width * share) for share in shares(table)]
+        for number, (row, cells) in enumerate(
+            zip(made.rows, (table.titles, *table.rows), strict=True)
+        ):
+            _row_marks(row, heading=number == 0)
+            for cell, text, column, width in zip(
+                row.cells, cells, table.columns, widths, strict=True
+            ):
+                cell.width = width
+                _fill(cell, bound(printable(text)), _ALIGN[column.align], size, bold=number == 0)
+        for column, width in zip(made.columns, widths, strict=True):
+            column.width = width
+        if table.note:
+            note = self.paragraph(table.note)
+            note.runs[0].font.size = Pt(8.5)
+            note.paragraph_format.space_before = Pt(3)
+
+
+def _template(path: Path) -> Any:
+    """A firm's document without its text, or a refusal that says what to do."""
+    place = f'template "{path.name}"'
+    if path.suffix.lower() != ".docx":
+        raise Refused(place, "must be a .docx file", given=path.suffix or "no ending",
+                      hint="open it in the word processor and save it as .docx")
+    if not path.is_file():
+        raise Refused(place, "no such file")
+    try:
+        document = Document(str(path))
+    except (ValueError, KeyError, zipfile.BadZipFile, OSError) as problem:
+        raise Refused(place, "is not a Word document that can be read",
+                      hint="open it in the word processor and save it as .docx") from problem
+    for element in list(document.element.body):
+        if element.tag != qn("w:sectPr"):
+            document.element.body.remove(element)
+    return document
+
+
+def _look(document: Any, paper: str) -> None:
+    """Page and styles of our own, where no firm's template says otherwise."""
+    if paper not in PAPERS:
+        raise Refused("paper", f"must be one of {', '.join(PAPERS)}", given=paper)
+    page = document.sections[0]
+    page.page_width, page.page_height = (Mm(v) for v in PAPERS[paper])
+    page.left_margin = page.right_margin = page.bottom_margin = Mm(25)
+    page.top_margin = Mm(27)
+    sizes = {"Normal": 10.5, "Title": 20, "Heading 1": 14, "Heading 2": 11.5, "Caption": 9,
+             "List Bullet": 10.5, "No Spacing": 9}
+    for name, size in sizes.items():
+        style = document.styles[name]
+        style.font.size = Pt(size)
+        _typeface(style, "Calibri")
+        if name not in ("Normal", "List Bullet", "No Spacing"):
+            style.font.color.rgb = _INK
+    document.styles["Normal"].paragraph_format.space_after = Pt(6)
+    document.styles["Caption"].paragraph_format.space_before = Pt(10)
+    document.styles["Caption"].paragraph_format.space_after = Pt(4)
+    document.styles["Caption"].font.bold = False
+    document.styles["Heading 1"].paragraph_format.space_before = Pt(16)
+    document.styles["Heading 1"].paragraph_format.space_after = Pt(5)
+    rule = document.styles["Title"].element.pPr.find(qn("w:pBdr"))
+    if rule is not None:
+        rule.getparent().remove(rule)
+
+
+def _typeface(style: Any, name: str) -> None:
+    """A theme's typeface wins over a named one, so its attributes must go."""
+    style.font.name = name
+    fonts = style.element.rPr.rFonts
+    for word in ("asciiTheme", "hAnsiTheme", "eastAsiaTheme", "cstheme"):
+        fonts.attrib.pop(qn(f"w:{word}"), None)
+    for word in ("hAnsi", "cs"):
+        fonts.set(qn(f"w:{word}"), name)
+
+
+def _properties(document: Any, memo: Memo) -> None:
+    words = document.core_properties
+    moment = datetime.datetime.combine(memo.date, datetime.time())
+    words.title = printable(memo.title)[:255]
+    words.subject = printable(f"Case {memo.case_file}, fingerprint {memo.fingerprint}")[:255]
+    words.author = words.last_modified_by = printable(memo.prepared_by)[:255]
+    words.comments = words.keywords = ""
+    words.language = memo.language
+    words.created = words.modified = moment
+    words.revision = 1
+    defaults = document.styles.element.find(f"{qn('w:docDefaults')}//{qn('w:rPr')}")
+    if defaults is None:
+        return
+    language = defaults.find(qn("w:lang"))
+    if language is None:
+        language = OxmlElement("w:lang")
+        defaults.append(language)
+    language.set(qn("w:val"), memo.language)
+
+
+def _edges(document: Any, memo: Memo) -> None:
+    """Header and footer, unless the template brings its own."""
+    page = document.sections[0]
+    width = page.page_width - page.left_margin - page.right_margin
+    for edge, text in ((page.header, memo.title), (page.footer, FOOTER)):
+        if any(p.text.strip() for p in edge.paragraphs) or edge.tables:
+            continue
+        line = edge.paragraphs[0]
+        line.style = document.styles.default(WD_STYLE_TYPE.PARAGRAPH)
+        line.paragraph_format.tab_stops.clear_all()
+        line.paragraph_format.tab_stops.add_tab_stop(width, WD_TAB_ALIGNMENT.RIGHT)
+        line.add_run(f"{printable(text)[:70]}\t")
+        runs = [*line.runs]
+        if text == FOOTER:
+            runs += [line.add_run("Page "), _field(line, "PAGE", "1"), line.add_run(" of "),
+                     _field(line, "NUMPAGES", "1")]
+        else:
+            runs.append(line.add_run(f"Case fingerprint {memo.fingerprint[:12]}"))
+        for run in runs:
+            run.font.size = Pt(8.5)
+
+
+def _title_block(writer: _Writer, memo: Memo) -> None:
+    writer.paragraph(memo.title, "Title", "Heading 1")
+    for name, value in facts(memo):
+        line = writer.paragraph("", "No Spacing")
+        line.paragraph_format.left_indent = Mm(28)
+        line.paragraph_format.first_line_indent = Mm(-28)
+        line.paragraph_format.tab_stops.add_tab_stop(Mm(28))
+        line.add_run(f"{name}\t").bold = True
+        line.add_run(printable(value))
+        line.alignment = WD_ALIGN_PARAGRAPH.LEFT
+    for role, person in (("Prepared by", memo.prepared_by), ("Checked by", memo.checked_by)):
+        line = writer.paragraph("", "No Spacing")
+        line.paragraph_format.space_before = Pt(14)
+        stops = line.paragraph_format.tab_stops
+        stops.add_tab_stop(Mm(28))
+        stops.add_tab_stop(Mm(75))
+        stops.add_tab_stop(writer.width, WD_TAB_ALIGNMENT.RIGHT, WD_TAB_LEADER.LINES)
+        line.add_run(f"{role}\t").bold = True
+        line.add_run(f"{printable(person)}\tSignature, date \t")
+
+
+def _field(paragraph: Any, code: str, shown: str) -> Any:
+    """A field that Word can count again, with the text it shows until then."""
+    field = OxmlElement("w:fldSimple")
+    field.set(qn("w:instr"), code)
+    run = paragraph.add_run(shown)
+    paragraph._p.remove(run._r)
+    field.append(run._r)
+    paragraph._p.append(field)
+    return run
+
+
+def _shaded(paragraph: Any, fill: str) -> None:
+    shade = OxmlElement("w:shd")
+    for word, value in (("val", "clear"), ("color", "auto"), ("fill", fill)):
+        shade.set(qn(f"w:{word}"), value)
+    paragraph._p.get_or_add_pPr().insert_element_before(
+        shade, "w:tabs", "w:suppressAutoHyphens", "w:spacing", "w:ind", "w:jc", "w:outlineLvl",
+        "w:rPr", "w:sectPr")
+
+
+def _boxed(paragraph: Any) -> None:
+    """Part of one box: Word joins the borders of paragraphs that follow each other."""
+    borders = OxmlElement("w:pBdr")
+    edge = OxmlElement("w:left")
+    for word, value in (("val", "single"), ("sz", "24"), ("space", "6"), ("color", "D9822B")):
+        edge.set(qn(f"w:{word}"), value)
+    borders.append(edge)
+    paragraph._p.get_or_add_pPr().insert_element_before(
+        borders, "w:shd", "w:tabs", "w:suppressAutoHyphens", "w:spacing", "w:ind", "w:jc",
+        "w:outlineLvl", "w:rPr", "w:sectPr")
+    _shaded(paragraph, "FFF6E0")
+    paragraph.paragraph_format.space_after = Pt(3)
+
+
+def _ruled(table: Any) -> None:
+    """Rules above, under the headings and between rows; none between columns; narrow margins."""
+    borders = OxmlElement("w:tblBorders")
+    lines = {"top": ("8", "1F2D3D"), "left": None, "bottom": ("4", "9AA5B1"), "right": None,
+             "insideH": ("4", "9AA5B1"), "insideV": None}
+    for side, line in lines.items():
+        edge = OxmlElement(f"w:{side}")
+        edge.set(qn("w:val"), "single" if line else "nil")
+        if line:
+            edge.set(qn("w:sz"), line[0])
+            edge.set(qn("w:color"), line[1])
+        borders.append(edge)
+    table._tbl.tblPr.insert_element_before(
+        borders, "w:shd", "w:tblLayout", "w:tblCellMar", "w:tblLook", "w:tblCaption")
+    margins = OxmlElement("w:tblCellMar")
+    for side in ("left", "right"):
+        margin = OxmlElement(f"w:{side}")
+        margin.set(qn("w:w"), "50")
+        margin.set(qn("w:type"), "dxa")
+        margins.append(margin)
+    table._tbl.tblPr.insert_element_before(margins, "w:tblLook", "w:tblCaption")
+
+
+def _row_marks(row: Any, *, heading: bool) -> None:
+    marks = row._tr.get_or_add_trPr()
+    for name in ("w:cantSplit", *(("w:tblHeader",) if heading else ())):
+        mark = OxmlElement(name)
+        mark.set(qn("w:val"), "true")
+        marks.append(mark)
+
+
+def _fill(cell: Any, text: str, align: Any, size: Any, *, bold: bool) -> None:
+    line = cell.paragraphs[0]
+    line.alignment = align
+    line.paragraph_format.space_after = Pt(1)
+    line.paragraph_format.space_before = Pt(1)
+    run = line.add_run(text)
+    run.font.size = size
+    run.bold = bold or None
+
+
+def _reproducible(document: bytes) -> bytes:
+    """The same zip with every time stamp at the format's first day."""
+    out = io.BytesIO()
+    with zipfile.ZipFile(io.BytesIO(document)) as old, zipfile.ZipFile(out, "w") as new:
+        for name in old.namelist():
+            entry = zipfile.ZipInfo(name, (1980, 1, 1, 0, 0, 0))
+            entry.compress_type = zipfile.ZIP_DEFLATED
+            entry.external_attr = 0o600 << 16
+            new.writestr(entry, old.read(name))
+    return out.getvalue()

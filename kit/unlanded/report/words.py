@@ -1,0 +1,76 @@
+"""Plain words for the points and pairs of a run, as titles, tables and captions say them."""
+
+from __future__ import annotations
+
+import re
+import unicodedata
+
+
+def point_words(point: str) -> str:
+    """What a reader calls a point of a run.
+
+    >>> point_words("spare@near"), point_words("earth"), point_words("L1")
+    ('spare, near end', 'earth', 'supply L1')
+    """
+    conductor, _, end = point.rpartition("@")
+    if conductor:
+        return f"{conductor}, {end} end"
+    return point if point in ("earth", "neutral") else f"supply {point}"
+
+
+def pair_words(a: str, b: str, *, end: bool = True) -> str:
+    """What a reader calls a pair; the end is said once when both points are there.
+
+    >>> pair_words("spare@near", "earth"), pair_words("red@far", "spare@far", end=False)
+    ('spare to earth, near end', 'red to spare')
+    """
+    ends = [point.rpartition("@")[2] for point in (a, b) if "@" in point]
+    if len(set(ends)) > 1:
+        return f"{point_words(a)} to {point_words(b)}"
+    names = " to ".join(p.rpartition("@")[0] if "@" in p else point_words(p) for p in (a, b))
+    return f"{names}, {ends[0]} end" if ends and end else names
+
+
+def listed(words: tuple[str, ...] | list[str]) -> str:
+    """Words joined as a sentence lists them.
+
+    >>> listed(["a", "b", "c"]), listed(["a"])
+    ('a, b and c', 'a')
+    """
+    words = list(words)
+    return " and ".join([", ".join(words[:-1]), words[-1]]) if len(words) > 1 else "".join(words)
+
+
+def cut(text: str, length: int) -> str:
+    """`text`, no longer than `length`; what is cut off is marked.
+
+    >>> cut("evaporator fan", 8)
+    'evapora…'
+    """
+    return text if len(text) <= length else f"{text[: length - 1].rstrip()}…"
+
+
+def printable(text: str) -> str:
+    """`text` with a mark for each control, format or broken character, but for tab and new line.
+
+    A name from a case file must not steer a terminal or break a document.
+
+    >>> printable("spare\x1b[2J")
+    'spare�[2J'
+    """
+    bad = ("Cc", "Cf", "Cs", "Co", "Cn")
+    return "".join(
+        "�" if unicodedata.category(c) in bad and c not in "\n\t" else c for c in text
+    )
+
+
+_QUANTITY = re.compile(r"(?<=[0-9∞]) (?=[fpnµmkMGT]?(?:VA|Hz|in|ft|mm²|[VAΩFHWSmsC%])(?:/k?m)?(?!\w))")
+
+
+def bound(text: str) -> str:
+    """`text` with each number bound to its unit, so that no line ends between them.
+
+    >>> bound("at 10 MΩ in 2 days") == "at 10\N{NO-BREAK SPACE}MΩ in 2 days"
+    True
+    """
+    return _QUANTITY.sub("\N{NO-BREAK SPACE}", text)
