@@ -17,11 +17,11 @@ from __future__ import annotations
 from dataclasses import replace
 
 import numpy as np
-from circle_mesh import Circle, Complexes, Disc, Integers, Mesh, Reals, triangulated
 from scipy.sparse.linalg import splu
 from skfem import Basis, BilinearForm, ElementTriP2, MeshTri, MeshTri2
 from skfem.helpers import dot, grad
 
+from circle_mesh import Circle, Complexes, Disc, Integers, Mesh, Reals, triangulated
 from unlanded.physics.section import Pipe, Plane, Section
 
 VACUUM_PERMITTIVITY = 8.8541878188e-12  # F/m, CODATA 2022

@@ -5,8 +5,10 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 from ..reference.instruments import INSTRUMENTS, Instrument
-from ..study.run import Bonded, Driven, Joined, Open, Run, Supply, Through
-from ..study.run import Termination as RunTermination
+from ..study.ends import Bonded, Driven, Joined, Open, Through
+from ..study.ends import Termination as RunTermination
+from ..study.run import Run
+from ..study.supply import Supply
 from .loading import Case
 from .schema import Termination
 from .sections import Limit, resistances, section_of

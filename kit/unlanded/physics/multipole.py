@@ -93,9 +93,9 @@ def reflection(geometry: Geometry, orders: int) -> Real:
 class System:
     """The symmetric system of a batch, for multipoles listed as (conductor, order).
 
-    `lower` (B, 2N + n, 2N + n) is the lower triangle of [[K, g], [gᵀ, P₀]] with the unknowns in the order: real
-    and imaginary parts of the first `coarse` multipoles, the n charges, then the remaining
-    multipoles. So the leading block is the system truncated to the first `coarse` multipoles,
+    `lower` (B, 2N + n, 2N + n) is the lower triangle of [[K, g], [gᵀ, P₀]] with the unknowns in
+    the order: real and imaginary parts of the first `coarse` multipoles, the n charges, then the
+    remaining multipoles. So the leading block is the system truncated to the first `coarse` multipoles,
     and one factorisation yields the answer at both truncations.
     """
 

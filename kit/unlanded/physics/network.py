@@ -33,6 +33,8 @@ class Network:
 
     def burden(self, a: str, b: str, burden: Burden) -> None:
         """A burden from node a to node b."""
+        if a == b:
+            raise Refused(f'node "{a}"', "cannot be joined to itself")
         self._link(a, b)
         self._burdens.append((a, b, burden))
 
@@ -49,7 +51,10 @@ class Network:
         self.burden(a, b, Burden(capacitance=capacitance))
 
     def capacitance_matrix(self, nodes: Sequence[str], matrix: ArrayLike) -> None:
-        """A Maxwell capacitance matrix [F] (n, n) over n nodes, counted against earth."""
+        """A Maxwell capacitance matrix [F] (n, n) over n nodes, counted against earth.
+
+        A node may occur more than once, and may be earth.
+        """
         c = np.asarray(matrix, dtype=float)
         if c.shape != (len(nodes), len(nodes)):
             raise Refused("capacitance matrix", f"must be {len(nodes)} × {len(nodes)}",
@@ -71,7 +76,8 @@ class Network:
         Either may have a leading axis over the frequencies.
         """
         self._branch(_Branches(tuple(pairs), np.asarray(resistance, dtype=float),
-                               np.asarray(inductance, dtype=float), np.zeros(len(pairs))))
+                               np.asarray(inductance, dtype=float),
+                               np.zeros(len(pairs), dtype=complex)))
 
     def voltage_source(
         self,
@@ -86,7 +92,7 @@ class Network:
 
         Returns its number for `Solution.source_current`: the current it delivers into a [A].
         """
-        emf = np.asarray(voltage, dtype=complex)[..., None]
+        emf = np.asarray(np.asarray(voltage, dtype=complex)[..., None])
         r, x = np.full((1, 1), resistance), np.full((1, 1), inductance)
         # A branch current counts from a to b; a source delivers the other way.
         self._branch(_Branches(((a, b),), r, x, emf))
@@ -100,19 +106,18 @@ class Network:
         self._refuse_floating()
         matrix, right = self._assembled(f)
         try:
-            inverse = np.linalg.inv(matrix)
+            inverse = np.asarray(np.linalg.inv(matrix), dtype=np.complex128)
         except np.linalg.LinAlgError:
             raise Refused("network", "has no single solution: sources in a loop without impedance, "
                           "or a lossless resonance") from None
-        return Solution(f, dict(self._nodes), inverse, np.einsum("fij,fj->fi", inverse, right))
+        return Solution(f, dict(self._nodes), inverse,
+                        (inverse @ right[..., None])[..., 0])
 
     def _add(self, node: str) -> None:
         if node != EARTH:
             self._nodes.setdefault(node, len(self._nodes))
 
     def _link(self, a: str, b: str) -> None:
-        if a == b:
-            raise Refused(f'node "{a}"', "cannot be joined to itself")
         self._add(a)
         self._add(b)
         self._links.append((a, b))
@@ -150,8 +155,9 @@ class Network:
             matrix[:, i, j] -= y
             matrix[:, j, i] -= y
         for names, c in self._matrices:
-            at = np.array([number[n] for n in names])
-            np.add.at(matrix, (slice(None), at[:, None], at), 1j * omega[:, None, None] * c)
+            # A node may stand for several conductors, whose charges then add.
+            at = np.eye(size + 1)[[number[n] for n in names]]
+            matrix += 1j * omega[:, None, None] * (at.T @ c @ at)
         row = nodes
         for branches in self._branches:
             rows = np.arange(row, row + len(branches.pairs))
@@ -174,7 +180,7 @@ class _Branches:
     pairs: tuple[tuple[str, str], ...]
     resistance: NDArray[np.float64]
     inductance: NDArray[np.float64]
-    emf: NDArray[np.complexfloating]
+    emf: Complex
 
 
 @dataclass(frozen=True)

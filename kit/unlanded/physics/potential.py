@@ -98,5 +98,6 @@ def _image(geometry: Geometry, points: Complex, i: int, charge: float, orders: C
 def _cover(orders: Complex, rho: Real, w: Complex, a: float, b: float) -> Real:
     """Harmonics in a cover: Re Σ P_n [(w/b)^n − t_n (b / conj w)^n], P = (L + conj A)/(1 − t)."""
     t = (a / b) ** (2 * np.arange(1, len(orders) + 1))
-    inner = np.conj(orders) * (1 + 1 / rho) / (1 - t)
-    return np.real(_series(inner, w / b) - _series(inner * t, b / np.conj(w)))
+    inner: Complex = np.asarray(np.conj(orders) * (1 + 1 / rho) / (1 - t))
+    inward, outward = _series(inner, w / b), _series(inner * t, b * np.conj(1 / w))
+    return np.asarray(inward.real - outward.real)

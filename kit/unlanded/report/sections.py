@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from ..physics.section import Pipe, Plane
-from ..study.run import Bonded, Driven, Joined, Open, Through
+from ..study.ends import Bonded, Driven, Joined, Open, Through
 from ..units import show, show_length
 from .figure import Figure
 from .memo import Block, Bullets, Caution, Paragraph, Part, Verbatim
@@ -18,8 +18,10 @@ from .words import listed, pair_words, point_words
 if TYPE_CHECKING:
     from ..physics.section import Section
     from ..reference.records import Source
+    from ..study.ends import Termination
     from ..study.readings import Pair, ReadingSheet, SheetRow
-    from ..study.run import Run, Supply, Termination
+    from ..study.run import Run
+    from ..study.supply import Supply
 
 INSTRUMENTS = 9  # columns of readings that a page holds
 

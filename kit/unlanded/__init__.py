@@ -1,0 +1,67 @@
+"""What instruments should read on conductors that nothing feeds, and what margin a residual-current
+device has left.
+
+This page is the table of contents; each name is documented where it is defined. A calculation
+never proves a conductor dead: prove dead at the point of work with a proved instrument.
+"""
+
+from __future__ import annotations
+
+from importlib import import_module
+from typing import Any
+
+__version__ = "0.1.0"
+
+# Public name -> module that defines it; imported when first used, so that `import unlanded` costs
+# about what numpy does.
+_CONTENTS = {
+    # cross-sections
+    "Conductor": "physics.section",
+    "Pipe": "physics.section",
+    "Plane": "physics.section",
+    "Section": "physics.section",
+    "capacitance_matrix": "physics.capacitance",
+    "inductance_matrix": "physics.inductance",
+    # one number
+    "two_wires": "physics.closed_forms",
+    "wire_over_plane": "physics.closed_forms",
+    "coaxial": "physics.closed_forms",
+    "off_centre_in_screen": "physics.closed_forms",
+    "divider": "physics.divider",
+    "reading": "physics.divider",
+    "loading_error": "physics.divider",
+    "si": "units",
+    "show": "units",
+    # networks and burdens
+    "Burden": "physics.burden",
+    "Network": "physics.network",
+    "INSTRUMENTS": "reference.instruments",
+    "instrument": "reference.instruments",
+    "custom_instrument": "reference.instruments",
+    # a run and its readings
+    "Supply": "study.supply",
+    "Driven": "study.ends",
+    "Bonded": "study.ends",
+    "Open": "study.ends",
+    "Joined": "study.ends",
+    "Through": "study.ends",
+    "Run": "study.run",
+    "Pair": "study.readings",
+    "reading_sheet": "study.readings",
+    # case files and memos
+    "load_case": "case.loading",
+    "build_run": "case.build",
+    "Refused": "errors",
+}
+
+__all__ = ["__version__", *_CONTENTS]
+
+
+def __getattr__(name: str) -> Any:
+    if name not in _CONTENTS:
+        raise AttributeError(f"module 'unlanded' has no attribute {name!r}")
+    return getattr(import_module(f".{_CONTENTS[name]}", __name__), name)
+
+
+def __dir__() -> list[str]:
+    return sorted(__all__)

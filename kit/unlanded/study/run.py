@@ -1,0 +1,245 @@
+"""A run with two ends: solve it, connect a burden between any two points, see what happens.
+
+Points are "spare@near" and "spare@far" for a conductor's ends, "earth", "N", and the lines of the
+supply. The neutral is bonded to earth at the source. The residual current is the sum of what the
+supply's lines and neutral deliver, so it counts everything that returns by earth.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass, replace
+from functools import cached_property
+from itertools import pairwise
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..errors import Refused, nearest
+from ..physics.burden import Burden
+from ..physics.capacitance import capacitance_matrix
+from ..physics.inductance import (
+    earth_return_distance,
+    earth_return_resistance,
+    inductance_matrix,
+)
+from ..physics.line import sections_needed
+from ..physics.network import EARTH, Network, Solution
+from ..physics.section import Section
+from .ends import Bonded, Driven, Ends, Joined, Open, Through, mistakes, word
+from .supply import NEUTRAL, Supply
+
+Real = NDArray[np.float64]
+EARTH_RESISTIVITY = 100.0  # ohm·m; of little effect: it stands in a logarithm
+
+
+@dataclass(frozen=True)
+class Effect:
+    """What a burden between two points brings about; phasors, RMS.
+
+    Parameters
+    ----------
+    voltage : across it, from a to b [V]
+    current : through it, from a to b [A]
+    power : it takes [W]
+    residual : current that the supply's protective device sees with it in place [A]
+    residual_added : change of that by the burden, as a phasor [A]
+    """
+
+    voltage: complex
+    current: complex
+    power: float
+    residual: complex
+    residual_added: complex
+
+
+@dataclass(frozen=True, eq=False)
+class Run:
+    """A cable between two ends.
+
+    Parameters
+    ----------
+    section : cross-section, n conductors
+    length : [m], above 0
+    near, far : what each conductor meets there; a conductor not named is open
+    resistance : of each conductor per metre (n,) [ohm/m], at least 0
+    capacitance : Maxwell matrix (n, n) [F/m]; computed from the section when None
+    order : multiple of the supply's frequency at which it is solved
+    earth_resistivity : of the soil [ohm·m], for the return by earth
+
+    The supply lies at the near end of what it feeds; a line or neutral that an end at the far side
+    meets is the same one, through no impedance. Raises `Refused`.
+
+    >>> from unlanded.physics.section import Conductor, Plane
+    >>> pair = Section((Conductor("hot", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)),
+    ...                Plane(0))
+    >>> run = Run(pair, 50.0, Supply(230.0, 50.0), {"hot": Driven("L")}, {}, (7e-3, 7e-3))
+    >>> c = run.matrix[1]  # the divider: −C₁₀ / C₁₁ of the line's voltage
+    >>> round(float(abs(run.voltage("spare@far")) / (230.0 * -c[0] / c[1])), 6)
+    1.0
+    """
+
+    section: Section
+    length: float
+    supply: Supply
+    near: Ends
+    far: Ends
+    resistance: tuple[float, ...]
+    capacitance: Real | None = None
+    order: int = 1
+    earth_resistivity: float = EARTH_RESISTIVITY
+
+    def __post_init__(self) -> None:
+        names = self.section.names
+        for end in ("near", "far"):
+            given = getattr(self, end)
+            if found := tuple(mistakes(end, given, names, self.supply.lines)):
+                raise Refused.all_of(found)
+            object.__setattr__(self, end, {n: given.get(n, Open()) for n in names})
+        if not (self.length > 0 and math.isfinite(self.length)):
+            raise Refused("run length", "must be above 0 m", given=f"{self.length:g} m")
+        if len(self.resistance) != len(names) or not all(r >= 0 for r in self.resistance):
+            raise Refused("run resistance", "must be at least 0 Ω/m for each conductor",
+                          given=self.resistance)
+        if self.capacitance is not None and np.shape(self.capacitance) != (len(names),) * 2:
+            raise Refused("run capacitance", f"must be {len(names)} × {len(names)}",
+                          given=np.shape(self.capacitance))
+
+    @property
+    def frequency(self) -> float:
+        """At which it is solved [Hz]."""
+        return self.order * self.supply.frequency
+
+    @property
+    def points(self) -> tuple[str, ...]:
+        """Every point that a burden can be connected to."""
+        ends = (f"{n}@{end}" for end in ("near", "far") for n in self.section.names)
+        return (*ends, *self.supply.lines, NEUTRAL, EARTH)
+
+    @cached_property
+    def matrix(self) -> Real:
+        """Maxwell capacitance matrix (n, n) [F/m], in the order of the section's conductors."""
+        return capacitance_matrix(self.section) if self.capacitance is None else self.capacitance
+
+    @property
+    def residual(self) -> complex:
+        """What flows back by earth: the sum of the supply's line and neutral currents [A]."""
+        return complex(sum(self._solution.source_current(k)[0] for k in self._sources))
+
+    def voltage(self, a: str, b: str = EARTH) -> complex:
+        """Unloaded voltage from a to b, RMS [V]."""
+        return complex(self._solution.voltage(self._node(a), self._node(b))[0])
+
+    def impedance(self, a: str, b: str = EARTH) -> complex:
+        """What a burden between a and b sees: the Thevenin impedance [ohm]."""
+        return complex(self._solution.impedance(self._node(a), self._node(b))[0])
+
+    def same(self, a: str, b: str) -> bool:
+        """Whether two points are one node, such as a bonded end and earth."""
+        return self._node(a) == self._node(b)
+
+    def connect(self, burden: Burden, a: str, b: str = EARTH) -> Effect:
+        """The run with a burden between two points that are not the same node."""
+        i, j = self._node(a), self._node(b)
+        if i == j:
+            raise Refused(f'points "{a}" and "{b}"', "are the same node: nothing can be between")
+        seen = self._solution.connect(burden, i, j, sources=self._sources)
+        voltage, current = complex(seen.voltage[0]), complex(seen.current[0])
+        residual = complex(seen.source_currents[0].sum())
+        return Effect(voltage, current, (voltage * current.conjugate()).real, residual,
+                      residual - self.residual)
+
+    def at_order(self, order: int) -> Run:
+        """The same run at another multiple of the supply's frequency."""
+        return replace(self, capacitance=self.matrix, order=order)
+
+    @cached_property
+    def series(self) -> tuple[Real, Real]:
+        """Resistance [ohm/m] and inductance [H/m] of the conductors with return by earth (n, n)."""
+        distance = earth_return_distance(resistivity=self.earth_resistivity,
+                                         frequency=self.frequency)
+        resistance = np.diag(self.resistance) + earth_return_resistance(frequency=self.frequency)
+        return resistance, inductance_matrix(self.section, return_distance=distance)
+
+    @cached_property
+    def lumps(self) -> int:
+        """π sections that the run is divided into."""
+        omega = 2 * math.pi * self.frequency
+        resistance, inductance = self.series
+        series = np.asarray(resistance + 1j * omega * inductance, dtype=complex)
+        shunt = np.asarray(1j * omega * self.matrix, dtype=complex)
+        return sections_needed(series[None], shunt[None], length=self.length)
+
+    @cached_property
+    def _solved(self) -> tuple[Solution, tuple[int, ...]]:
+        network = Network()
+        sources = self._feed(network)
+        self._lay(network)
+        for end in ("near", "far"):
+            for name, t in getattr(self, end).items():
+                if isinstance(t, Through):
+                    self._close(network, f"{name}@{end}", t, end)
+        return network.solve(self.frequency), sources
+
+    @property
+    def _solution(self) -> Solution:
+        return self._solved[0]
+
+    @property
+    def _sources(self) -> tuple[int, ...]:
+        return self._solved[1]
+
+    def _feed(self, network: Network) -> tuple[int, ...]:
+        """The lines and the neutral, from the source's star point, which is earthed."""
+        supply = self.supply
+        lines = [network.voltage_source(line, EARTH, supply.phasor(line, order=self.order),
+                                        resistance=supply.resistance, inductance=supply.inductance)
+                 for line in supply.lines]
+        return (*lines, network.voltage_source(NEUTRAL, EARTH, 0.0))
+
+    def _lay(self, network: Network) -> None:
+        """The π sections from the near to the far nodes."""
+        step = self.length / self.lumps
+        resistance, inductance = (m * step for m in self.series)
+        stations = [self._end_nodes("near"),
+                    *([f"{n}@{k}" for n in self.section.names] for k in range(1, self.lumps)),
+                    self._end_nodes("far")]
+        half = self.matrix * step / 2
+        for near, far in pairwise(stations):
+            network.series_branches(list(zip(near, far, strict=True)), resistance, inductance)
+            network.capacitance_matrix(near, half)
+            network.capacitance_matrix(far, half)
+
+    def _end_nodes(self, end: str) -> list[str]:
+        return [self._aliases[f"{n}@{end}"] for n in self.section.names]
+
+    def _close(self, network: Network, point: str, t: Through, end: str) -> None:
+        a, b = self._aliases[point], self._aliases.get(f"{t.to}@{end}", t.to)
+        if a == b:
+            raise Refused(f'{t.label} at "{point}"', "has both its terminals on the same node")
+        network.burden(a, b, t.burden)
+
+    @cached_property
+    def _aliases(self) -> dict[str, str]:
+        """Point to node: ends that are driven, bonded or joined share the node they meet."""
+        group = {p: {p} for p in self.points}
+        for end in ("near", "far"):
+            for name, t in getattr(self, end).items():
+                if isinstance(t, Driven | Bonded | Joined):
+                    met = f"{t.other}@{end}" if isinstance(t, Joined) else word(t)
+                    joined = group[f"{name}@{end}"] | group[met]
+                    group.update(dict.fromkeys(joined, joined))
+        fixed = (EARTH, NEUTRAL, *self.supply.lines)
+        for points in group.values():
+            if len(shorted := [w for w in fixed if w in points]) > 1:
+                where = next(p for p in self.points if p in points)
+                raise Refused(f'"{where}"', f"joins {shorted[1]} to {shorted[0]} with no impedance",
+                              hint="close it through a load, or bond at the other end")
+        order = (*fixed, *self.points)
+        return {p: min(points, key=order.index) for p, points in group.items()}
+
+    def _node(self, point: str) -> str:
+        if point not in self._aliases:
+            raise Refused("point", "is not one of this run", given=point,
+                          hint=nearest(point, self.points))
+        return self._aliases[point]
