@@ -99,5 +99,6 @@ def _cover(orders: Complex, rho: Real, w: Complex, a: float, b: float) -> Real:
     """Harmonics in a cover: Re Σ P_n [(w/b)^n − t_n (b / conj w)^n], P = (L + conj A)/(1 − t)."""
     t = (a / b) ** (2 * np.arange(1, len(orders) + 1))
     inner: Complex = np.asarray(np.conj(orders) * (1 + 1 / rho) / (1 - t))
-    inward, outward = _series(inner, w / b), _series(inner * t, b * np.conj(1 / w))
+    # t_n = (a/b)²ⁿ goes into the base of the second series.
+    inward, outward = _series(inner, w / b), _series(inner, a**2 / b * np.conj(1 / w))
     return np.asarray(inward.real - outward.real)
