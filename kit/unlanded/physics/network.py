@@ -218,6 +218,10 @@ class Solution:
         """Current that a voltage source delivers into its first node (F,) [A]."""
         return np.asarray(-self.unknowns[:, len(self.nodes) + number])
 
+    def source_transfer(self, a: str, b: str, number: int) -> Complex:
+        """What a source delivers more per ampere drawn out of a and into b (F,) [1]."""
+        return np.asarray(self._column(a, b)[:, len(self.nodes) + number])
+
     def connect(
         self, burden: Burden, a: str, b: str = EARTH, *, sources: Sequence[int] = ()
     ) -> Connected:
@@ -228,9 +232,10 @@ class Solution:
         y = burden.admittance(self.frequencies)
         voltage = self.voltage(a, b) / (1 + y * self.impedance(a, b))
         current = y * voltage
-        rows = [len(self.nodes) + k for k in sources]
-        drawn = self.unknowns[:, rows] - current[:, None] * self._column(a, b)[:, rows]
-        return Connected(voltage, current, -drawn)
+        supplied = [self.source_current(k) + current * self.source_transfer(a, b, k)
+                    for k in sources]
+        return Connected(voltage, current, np.array(supplied, dtype=complex).reshape(
+            len(sources), -1).T)
 
     def _at(self, unknowns: Complex, node: str) -> Complex:
         if node == EARTH:

@@ -53,6 +53,22 @@ class Effect:
     residual_added: complex
 
 
+@dataclass(frozen=True)
+class Port:
+    """Two points as whatever is put between them meets them: a Thevenin source, and more.
+
+    Parameters
+    ----------
+    voltage : unloaded, from a to b, RMS [V]
+    impedance : Thevenin [ohm]
+    residual_per_ampere : residual current for each ampere drawn out of a and into b [1]
+    """
+
+    voltage: complex
+    impedance: complex
+    residual_per_ampere: complex
+
+
 @dataclass(frozen=True, eq=False)
 class Run:
     """A cable between two ends.
@@ -128,26 +144,42 @@ class Run:
 
     def voltage(self, a: str, b: str = EARTH) -> complex:
         """Unloaded voltage from a to b, RMS [V]."""
-        return complex(self._solution.voltage(self._node(a), self._node(b))[0])
+        return complex(self._solution.voltage(self.node(a), self.node(b))[0])
 
     def impedance(self, a: str, b: str = EARTH) -> complex:
         """What a burden between a and b sees: the Thevenin impedance [ohm]."""
-        return complex(self._solution.impedance(self._node(a), self._node(b))[0])
+        return complex(self._solution.impedance(self.node(a), self.node(b))[0])
+
+    def node(self, point: str) -> str:
+        """The node of a point: points bonded or joined together have the same one."""
+        if point not in self._aliases:
+            raise Refused("point", "is not one of this run", given=point,
+                          hint=nearest(point, self.points))
+        return self._aliases[point]
 
     def same(self, a: str, b: str) -> bool:
         """Whether two points are one node, such as a bonded end and earth."""
-        return self._node(a) == self._node(b)
+        return self.node(a) == self.node(b)
+
+    def port(self, a: str, b: str = EARTH) -> Port:
+        """What two points that are not the same node offer to anything put between them."""
+        i, j = self.node(a), self.node(b)
+        if i == j:
+            raise Refused(f'points "{a}" and "{b}"', "are the same node: nothing can be between")
+        solution = self._solution
+        drawn = sum(solution.source_transfer(i, j, k)[0] for k in self._sources)
+        return Port(complex(solution.voltage(i, j)[0]), complex(solution.impedance(i, j)[0]),
+                    complex(drawn))
 
     def connect(self, burden: Burden, a: str, b: str = EARTH) -> Effect:
         """The run with a burden between two points that are not the same node."""
-        i, j = self._node(a), self._node(b)
-        if i == j:
-            raise Refused(f'points "{a}" and "{b}"', "are the same node: nothing can be between")
-        seen = self._solution.connect(burden, i, j, sources=self._sources)
-        voltage, current = complex(seen.voltage[0]), complex(seen.current[0])
-        residual = complex(seen.source_currents[0].sum())
-        return Effect(voltage, current, (voltage * current.conjugate()).real, residual,
-                      residual - self.residual)
+        port = self.port(a, b)
+        admittance = complex(burden.admittance(self.frequency))
+        voltage = port.voltage / (1 + admittance * port.impedance)
+        current = admittance * voltage
+        added = current * port.residual_per_ampere
+        return Effect(voltage, current, (voltage * current.conjugate()).real,
+                      self.residual + added, added)
 
     def at_order(self, order: int) -> Run:
         """The same run at another multiple of the supply's frequency."""
@@ -237,9 +269,3 @@ class Run:
                               hint="close it through a load, or bond at the other end")
         order = (*fixed, *self.points)
         return {p: min(points, key=order.index) for p, points in group.items()}
-
-    def _node(self, point: str) -> str:
-        if point not in self._aliases:
-            raise Refused("point", "is not one of this run", given=point,
-                          hint=nearest(point, self.points))
-        return self._aliases[point]
