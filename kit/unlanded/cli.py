@@ -1,0 +1,135 @@
+"""The command line. A refusal is printed as one sentence, and the command exits with 2."""
+
+from __future__ import annotations
+
+import datetime
+import shutil
+import sys
+from collections.abc import Callable
+from functools import wraps
+from pathlib import Path
+from typing import Any, TypeVar
+
+import click
+
+from . import __version__
+from .errors import Mistake, Refused
+
+CAUTION = (
+    "A calculation never proves a conductor dead. Prove dead at the point of work with an "
+    "instrument proved before and after; local codes and licensed practice govern."
+)
+FILE = click.Path(path_type=Path)
+Command = TypeVar("Command", bound=Callable[..., None])
+
+
+def refusing(command: Command) -> Command:
+    """Print what the command refuses, a sentence a line, instead of a traceback; exit with 2."""
+
+    @wraps(command)
+    def wrapped(*args: Any, **kwargs: Any) -> None:
+        try:
+            command(*args, **kwargs)
+        except Refused as refusal:
+            leave(refusal.mistakes)
+        except OSError as error:
+            leave([Mistake(str(error.filename or "file"), "cannot be read or written",
+                           error.strerror or str(error))])
+
+    return wrapped  # type: ignore[return-value]
+
+
+def leave(mistakes: Any) -> None:
+    """Print the mistakes to the error stream and exit with 2."""
+    from .report.words import printable
+
+    for mistake in mistakes:
+        click.echo(printable(str(mistake)), err=True)
+    sys.exit(2)
+
+
+@click.group(context_settings={"help_option_names": ["-h", "--help"]}, epilog=CAUTION)
+@click.version_option(__version__)
+def main() -> None:
+    """What instruments should read on conductors that nothing feeds, and what margin is left."""
+    for stream in (sys.stdout, sys.stderr):
+        # A terminal without Ω or µ gets a mark in their place, not a traceback.
+        if callable(reconfigure := getattr(stream, "reconfigure", None)):
+            reconfigure(errors="replace")
+
+
+@main.command()
+@click.argument("case", type=FILE)
+@refusing
+def check(case: Path) -> None:
+    """List every mistake in a case file, with its line."""
+    from .case.loading import check_case
+
+    if mistakes := check_case(case):
+        leave(mistakes)
+    click.echo(f"{case}: no mistake found.")
+
+
+@main.command()
+@click.argument("case", type=FILE)
+@click.option("--csv", "csv_file", type=FILE, help="Write the sheet to this file as CSV.")
+@refusing
+def sheet(case: Path, csv_file: Path | None) -> None:
+    """Print what every instrument should read on every pair, if all is well."""
+    from .case.loading import load_case
+    from .report.case_memo import investigate
+    from .report.sections import readings_part
+    from .report.sheet_table import sheet_table
+    from .report.tables import Table, csv_text, plain
+
+    readings = investigate(load_case(case)).sheet
+    if csv_file is not None:
+        write_new(csv_file, csv_text(sheet_table(readings)).encode("utf-8-sig"))
+        click.echo(f"Wrote {csv_file}")
+        return
+    width = max(60, shutil.get_terminal_size((100, 24)).columns)
+    tables = [b for b in readings_part(readings).blocks if isinstance(b, Table)]
+    click.echo("\n\n".join(plain(table, width) for table in tables))
+    click.echo(f"\n{CAUTION}")
+
+
+@main.command()
+@click.argument("case", type=FILE)
+@click.option("--into", type=FILE, help="Folder to make; CASE-memo beside you when not given.")
+@click.option("--template", type=FILE, help="A firm's own Word file (.docx) for its styles.")
+@click.option("--paper", type=click.Choice(["a4", "us-letter"]), help="Default: as the units.")
+@click.option("--date", type=click.DateTime(["%Y-%m-%d"]), help="That the memo bears.")
+@click.option("--prepared-by", default="", help="Name for the title block.")
+@click.option("--checked-by", default="", help="Name for the title block.")
+@click.option("--overwrite", is_flag=True, help="Replace an older memo in that folder.")
+@refusing
+def memo(case: Path, into: Path | None, date: datetime.datetime | None, overwrite: bool,
+         **look: Any) -> None:
+    """Make the memo of a case: Word, PDF, figures, tables and results in one folder."""
+    from .case.loading import load_case
+    from .report.case_memo import case_contents, investigate
+    from .report.folder import write_folder
+
+    target = into or Path(f"{case.stem}-memo")
+    day = date.date() if date else datetime.date.today()
+    contents = case_contents(investigate(load_case(case)), date=day, **look)
+    files = write_folder(target, contents, overwrite=overwrite)
+    click.echo(f"The memo is in {target.absolute()}")
+    for file in files:
+        click.echo(f"  {file.relative_to(target.absolute())}")
+    click.echo(CAUTION)
+
+
+def write_new(path: Path, data: bytes) -> None:
+    """Write a file that is not there yet; whole, or not at all."""
+    try:
+        file = path.open("xb")
+    except FileExistsError:
+        raise Refused(str(path), "is there already, and nothing is written over",
+                      hint="choose another name") from None
+    try:
+        with file:
+            file.write(data)
+    except BaseException:
+        path.unlink(missing_ok=True)
+        raise
