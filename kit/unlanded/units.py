@@ -28,8 +28,8 @@ _ALIASES = (
     "@alias foot = Ft = FT",
     "megohm = 1e6 ohm = Mohm = megohms = MOhm",
 )
-# pint counts turns and radians as pure numbers: 50 rad/s must not pass for 50 Hz.
-_ANGLES = ("radian", "degree", "turn", "count", "cycle", "bit", "percent")
+# pint counts radians and the like as pure numbers: 50 rad/s must not pass for 50 Hz.
+_COUNTED = ("radian", "count", "bit", "percent")
 _PREFIXES = {-15: "f", -12: "p", -9: "n", -6: "µ", -3: "m", 0: "", 3: "k", 6: "M", 9: "G", 12: "T"}
 _UNPREFIXED = ("%", "°", "°C", "", "mm²", "ft", "in", "mil")
 
@@ -94,8 +94,8 @@ def _convert(number: float, unit_text: str, unit: str, text: str, place: str) ->
         given = registry.parse_units(unit_text)
     except Exception:  # pint raises its own, and tokenizer and attribute errors, for odd text
         raise mistake from None
-    names = str(given)
-    if given.dimensionality != wanted.dimensionality or any(a in names for a in _ANGLES):
+    root = str(registry.get_root_units(given)[1])
+    if given.dimensionality != wanted.dimensionality or any(word in root for word in _COUNTED):
         raise mistake
     try:
         value = float(registry.Quantity(number, given).to(wanted).magnitude)
