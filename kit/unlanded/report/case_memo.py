@@ -1,0 +1,119 @@
+"""The memo of a case: which parts it has, in which order, and what results.json holds.
+
+To add a part, write `<subject>_part(investigation) -> Part | None` in a module of its own and put
+it into `PARTS`; None leaves it out where the case does not ask for it. What the summary says of
+it is a function in `FINDINGS`; what results.json holds of it is one in `RESULTS`.
+"""
+
+from __future__ import annotations
+
+import datetime
+from collections.abc import Callable, Mapping, Sequence
+from pathlib import Path
+from typing import Any
+
+from .assumptions import assumptions_part
+from .circuit import circuit_part, run_results
+from .expected import expected_finding, expected_part, sheet_results
+from .folder import Contents
+from .investigation import Investigation, investigate
+from .memo import Caution, Memo, Paragraph, Part, Verbatim
+from .sources import sources_part
+
+__all__ = ["FINDINGS", "PARTS", "RESULTS", "Investigation", "case_contents", "investigate"]
+
+CAUTION = (
+    "This is a calculation from a description of the circuit. It never proves a conductor dead, "
+    "and no reading in it does.",
+    "Prove dead at the point of work, with an instrument made for it that is proved on a known "
+    "source before and after. A non-contact detector is not enough.",
+    "A low reading on a low-impedance instrument can also come from a weak but real source. A "
+    "capacitive source can still give a shock; the current it can drive is in this memo.",
+    "Local codes and licensed practice govern. Tests on energised equipment are for qualified "
+    "persons only.",
+    "A reading outside the ranges given here means that the circuit is not as described. Find "
+    "out why before going on.",
+)
+
+
+def summary_part(investigation: Investigation) -> Part:
+    """What was found, in a few sentences with the numbers: a paragraph of each of `FINDINGS`."""
+    found = (" ".join(finding(investigation)) for finding in FINDINGS)
+    return Part("Summary", tuple(Paragraph(text) for text in found if text))
+
+
+def caution_part(_: Investigation) -> Part:
+    """The caution that stands in every memo."""
+    return Part("Caution", (Caution("Before anybody relies on this", CAUTION),))
+
+
+def case_part(investigation: Investigation) -> Part:
+    """The case as it was read, and how every number is rebuilt from it."""
+    case = investigation.case
+    return Part("The case", (
+        Paragraph("The case file as it was read. Its fingerprint is the SHA-256 of its text, with "
+                  f"plain line ends: {case.fingerprint}"),
+        Verbatim(case.text),
+        Paragraph("This command rebuilds every number, table and picture here from that file:"),
+        Verbatim(f"unlanded memo {case.name}"),
+    ))
+
+
+FINDINGS: tuple[Callable[[Investigation], Sequence[str]], ...] = (
+    expected_finding,
+)
+"""What the summary says: sentences of one subject each, none where the case does not ask."""
+
+PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
+    summary_part,
+    circuit_part,
+    caution_part,
+    expected_part,
+    assumptions_part,
+    sources_part,
+    case_part,
+)
+"""The parts of the memo, in its order."""
+
+RESULTS: Mapping[str, Callable[[Investigation], Any]] = {
+    "case": lambda i: {"title": i.case.content.title, "fingerprint": i.case.fingerprint},
+    "run": run_results,
+    "sheet": lambda i: sheet_results(i.sheet),
+}
+"""What results.json holds, by its key; None where the case does not ask."""
+
+
+def case_contents(
+    investigation: Investigation,
+    *,
+    date: datetime.date,
+    template: Path | None = None,
+    paper: str | None = None,
+    prepared_by: str = "",
+    checked_by: str = "",
+) -> Contents:
+    """What the memo's folder is made from.
+
+    Parameters
+    ----------
+    date : that the memo bears; the same case and date give the same files
+    template : a firm's own .docx
+    paper : "a4" or "us-letter"; that of the case's units when None
+    prepared_by, checked_by : names for the title block
+    """
+    case = investigation.case
+    memo = Memo(
+        title=case.content.title,
+        site=case.content.site,
+        case_file=case.name,
+        fingerprint=case.fingerprint,
+        date=date,
+        parts=tuple(p for make in PARTS if (p := make(investigation)) is not None),
+        prepared_by=prepared_by,
+        checked_by=checked_by,
+        language="en-US" if investigation.customary else "en-GB",
+    )
+    results = {key: made for key, make in RESULTS.items()
+               if (made := make(investigation)) is not None}
+    usual = "us-letter" if investigation.customary else "a4"
+    return Contents(memo, case.text.encode(), results, template, paper or usual)

@@ -1,0 +1,54 @@
+"""A case worked out: what every part of its memo is made from."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from ..case.build import build_run, case_instruments
+from ..case.loading import Case
+from ..reference.instruments import Instrument
+from ..study.readings import Pair, ReadingSheet, SheetRow, reading_sheet
+from ..study.run import Run
+
+
+@dataclass(frozen=True, eq=False)
+class Investigation:
+    """A case, its run, and the reading sheet.
+
+    Parameters
+    ----------
+    case : as it was read
+    run : with the covers' permittivity as it is most likely
+    low, high : the same run with the permittivity at the ends of its range
+    sheet : every instrument on every pair, with bands from `low` and `high`
+    instruments : of the sheet, in its order
+    """
+
+    case: Case
+    run: Run
+    low: Run
+    high: Run
+    sheet: ReadingSheet
+    instruments: tuple[Instrument, ...]
+
+    @property
+    def customary(self) -> bool:
+        """Whether lengths are written in feet and inches."""
+        return self.case.content.units == "US customary"
+
+    @property
+    def runs(self) -> tuple[Run, Run, Run]:
+        """The run, and its low and high ends."""
+        return self.run, self.low, self.high
+
+    def rows(self, pair: Pair) -> tuple[SheetRow, ...]:
+        """The sheet's rows of one pair, in the order of the instruments."""
+        return tuple(r for r in self.sheet.rows if r.pair == pair)
+
+
+def investigate(case: Case) -> Investigation:
+    """Solve the case's run, also at the ends of its inputs' ranges; raises `Refused`."""
+    run, low, high = (build_run(case, limit) for limit in ("likely", "low", "high"))
+    instruments = case_instruments(case)
+    sheet = reading_sheet(run, instruments, low=low, high=high)
+    return Investigation(case, run, low, high, sheet, instruments)
