@@ -9,7 +9,7 @@ from typing import Literal
 from ..errors import Refused
 from ..units import show
 
-Standing = Literal["seen", "from memory", "common practice"]
+Standing = Literal["seen", "from memory", "common practice", "judgement"]
 
 
 @dataclass(frozen=True)
@@ -17,7 +17,8 @@ class Source:
     """Where a value comes from, and how sure we are of it.
 
     `standing` is "seen" (read in a copy of the source), "from memory" (recalled, to be checked
-    against the source before it is relied on) or "common practice" (of the trade, no source).
+    against the source before it is relied on), "common practice" (of the trade, no source) or
+    "judgement" (ours, where no open source was found).
     """
 
     title: str
@@ -29,7 +30,8 @@ class Source:
         year = f":{self.year}" if self.year else ""
         clause = f", {self.clause}" if self.clause else ""
         mark = {"seen": "", "from memory": " [from memory]",
-                "common practice": " [common practice, no source]"}[self.standing]
+                "common practice": " [common practice, no source]",
+                "judgement": " [judgement, no source]"}[self.standing]
         return f"{self.title}{year}{clause}{mark}"
 
 
