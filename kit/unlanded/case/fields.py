@@ -6,19 +6,22 @@ the check and its message both read them.
 
 from __future__ import annotations
 
+import json
 import math
 import unicodedata
 from collections.abc import Callable
 from dataclasses import dataclass, field
-from typing import Annotated, Any
+from typing import Annotated, Any, Literal
 
-from pydantic import BaseModel, BeforeValidator, ValidationInfo
+from pydantic import BaseModel, BeforeValidator, ConfigDict, ValidationInfo, model_validator
 
 from ..errors import Refused, nearest
 from ..units import show, si
 
 RESERVED = ("earth", "N", "L", "L1", "L2", "L3", "open")
 LONGEST_NAME = 40
+MOST_CORES = 61  # 1 + 6 + 12 + 18 + 24, the largest control cable met
+MOST_ENTRIES = 1000
 
 
 @dataclass
@@ -41,13 +44,53 @@ def vocabulary(info: ValidationInfo) -> Vocabulary:
     return info.context
 
 
+class Table(BaseModel):
+    """A table whose keys are all known; it tells the vocabulary which table it reads."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, arbitrary_types_allowed=True)
+
+    @model_validator(mode="before")
+    @classmethod
+    def _note_table(cls, data: Any, info: ValidationInfo) -> Any:
+        if isinstance(data, dict):
+            vocabulary(info).tables[id(data)] = cls
+        return data
+
+
 def _quantity(unit: str, low: float, high: float) -> BeforeValidator:
     """Text with a unit, in base SI, from `low` to `high`."""
 
     def check(given: Any) -> float:
-        return _within(si(given, unit, place=""), unit, low, high, given)
+        return _within(_measured(given, unit), unit, low, high, given)
 
     return BeforeValidator(check)
+
+
+def _measured(given: Any, unit: str) -> float:
+    if isinstance(given, str):
+        return si(given, unit, place="")
+    number = isinstance(given, int | float) and not isinstance(given, bool)
+    raise Refused("", "must be a number with its unit, in quotes", given=written(given),
+                  hint=f'for example "{given} {unit}"' if number and math.isfinite(given) else "")
+
+
+def written(given: Any) -> str:
+    """A value as a message shows it: in the words of TOML, and never empty.
+
+    >>> written(True), written(""), written([1, 2]), written("85 m")
+    ('true', '""', 'a list', '85 m')
+    """
+    match given:
+        case bool():
+            return str(given).lower()
+        case list() | tuple():
+            return "a list"
+        case dict():
+            return "a table"
+        case int() if abs(given) > 1e30:
+            return "a huge number"  # Python refuses to spell thousands of digits
+    text = str(given)
+    return text if text.strip() and text.isprintable() else json.dumps(text, ensure_ascii=True)
 
 
 def _number(low: float, high: float) -> BeforeValidator:
@@ -59,7 +102,7 @@ def _number(low: float, high: float) -> BeforeValidator:
         elif isinstance(given, int | float) and not isinstance(given, bool):
             value = _float(given)
         else:
-            raise Refused("", "must be a number", given=given)
+            raise Refused("", "must be a number", given=written(given))
         return _within(value, "", low, high, given)
 
     return BeforeValidator(check)
@@ -71,7 +114,7 @@ def _float(given: int | float) -> float:
     except OverflowError:
         value = math.inf
     if not math.isfinite(value):
-        raise Refused("", "must be a finite number", given=given)
+        raise Refused("", "must be a finite number", given=written(given))
     return value
 
 
@@ -97,12 +140,43 @@ Inductance = Annotated[float, _quantity("H", 0.0, 1e6)]
 Capacitance = Annotated[float, _quantity("F", 0.0, 1.0)]
 Permittivity = Annotated[float, _number(1.0, 100.0)]
 Share = Annotated[float, _number(0.0, 1.0)]
+SourceResistance = Annotated[float, _quantity("ohm", 0.0, 1e4)]
+SourceInductance = Annotated[float, _quantity("H", 0.0, 10.0)]
 
 
-def _text(limit: int, *, lines: bool = False) -> BeforeValidator:
+def _whole(low: int, high: int) -> BeforeValidator:
+    def check(given: Any) -> int:
+        if not isinstance(given, int) or isinstance(given, bool) or not low <= given <= high:
+            raise Refused("", f"must be a whole number from {low} to {high}, without quotes",
+                          given=written(given))
+        return given
+
+    return BeforeValidator(check)
+
+
+Phases = Annotated[Literal[1, 2, 3], _whole(1, 3)]
+Counts = Annotated[int, _whole(0, 10_000)]
+Seed = Annotated[int, _whole(0, 2**32 - 1)]
+
+
+def _order(given: Any) -> int:
+    # "03" would be a second way to write the same order.
+    orders = {str(n): n for n in range(2, 51)}
+    if given in orders:
+        return orders[given]
+    raise Refused("", "must be the order of a harmonic, a whole number from 2 to 50",
+                  given=written(given), hint='for example 3 = "5 %"')
+
+
+Order = Annotated[int, BeforeValidator(_order)]
+
+
+def _text(limit: int, *, lines: bool = False, least: int = 0) -> BeforeValidator:
     def check(given: Any) -> str:
         if not isinstance(given, str):
-            raise Refused("", "must be text in quotes", given=given)
+            raise Refused("", "must be text in quotes", given=written(given))
+        if len(given.strip()) < least:
+            raise Refused("", "must not be empty")
         if len(given) > limit:
             raise Refused("", f"may be {limit} characters long", given=f"{len(given)} characters")
         if not lines and "\n" in given:
@@ -116,6 +190,7 @@ def _text(limit: int, *, lines: bool = False) -> BeforeValidator:
 
 
 Line = Annotated[str, _text(200)]
+Title = Annotated[str, _text(200, least=1)]
 Notes = Annotated[str, _text(20_000, lines=True)]
 
 
@@ -129,21 +204,25 @@ def _shown(given: Any) -> str:
         return given
     words = " or ".join(f'"{w}"' for w in SHOWN_WORDS)
     try:
-        volts = si(given, "V", place="")
+        volts = _measured(given, "V")
     except Refused as refusal:
         mistake = refusal.mistakes[0]
         raise Refused("", mistake.rule, given=mistake.given,
-                      hint=mistake.hint or f"a voltage, {words}") from None
+                      hint=mistake.hint or f'such as "37.2 V", or {words}') from None
     _within(volts, "V", 0.0, 1e6, given)
     return str(given)
 
 
+def is_core_name(given: Any) -> bool:
+    """Whether it can name a core, words of the supply aside."""
+    return (isinstance(given, str) and 1 <= len(given) <= LONGEST_NAME and given.isprintable()
+            and given == given.strip() and not set(given) & {"@", '"'})
+
+
 def _core_name(given: Any) -> str:
-    rule = f"a core's name is text of 1 to {LONGEST_NAME} characters on one line, without @"
-    if not isinstance(given, str) or not 1 <= len(given) <= LONGEST_NAME:
-        raise Refused("", rule, given=given)
-    if "@" in given or given != given.strip() or not given.isprintable():
-        raise Refused("", rule, given=repr(given))
+    if not isinstance(given, str) or not is_core_name(given):
+        raise Refused("", f"must be text of 1 to {LONGEST_NAME} printable characters, without @, "
+                          "quotation marks, or blanks about it", given=written(given))
     if given in RESERVED:
         raise Refused("", "is a word of the supply and cannot name a core", given=given,
                       hint='call the core by its colour or number, an earth core for example "cpc"')
@@ -152,11 +231,13 @@ def _core_name(given: Any) -> str:
 
 def _names(given: Any) -> tuple[Any, ...]:
     if not isinstance(given, list) or not given:
-        raise Refused("", "must be a list of names", given=given,
+        raise Refused("", "must be a list of names", given=written(given) if given else "[]",
                       hint='for example ["brown", "blue", "green-yellow"]')
+    if len(given) > MOST_CORES:
+        raise Refused("", f"may have {MOST_CORES} names", given=f"{len(given)} names")
     for name in given:
         if given.count(name) > 1:
-            raise Refused("", "a name may be used once", given=name)
+            raise Refused("", "a name may be used once", given=written(name))
     return tuple(given)
 
 
@@ -164,8 +245,8 @@ def _one_of(kind: str, known: Callable[[Vocabulary], tuple[str, ...] | None]) ->
     def check(given: Any, info: ValidationInfo) -> Any:
         words = known(vocabulary(info))
         if words is not None and given not in words:
-            raise Refused("", f"is not {kind} of this case", given=given,
-                          hint=nearest(str(given), words))
+            raise Refused("", f"is not {kind} of this case", given=written(given),
+                          hint=nearest(given if isinstance(given, str) else "", words))
         return given
 
     return BeforeValidator(check)
@@ -185,7 +266,9 @@ def _points(names: Vocabulary) -> tuple[str, ...] | None:
 CoreName = Annotated[str, BeforeValidator(_core_name)]
 CoreNames = Annotated[tuple[CoreName, ...], BeforeValidator(_names)]
 KnownCore = Annotated[str, _one_of("a core", lambda v: v.cores)]
-Return = Annotated[str, _one_of("a core or return", lambda v: _and(v.cores, ("earth", "N")))]
+Return = Annotated[
+    str, _one_of("a core or supply word", lambda v: _and(v.cores, ("earth", "N", *v.phases)))
+]
 Point = Annotated[str, _one_of("a point", _points)]
 SupplyWord = Annotated[
     str, _one_of("a word of the supply", lambda v: (*v.phases, "N", "earth", "open"))
@@ -197,5 +280,7 @@ InstrumentKey = Annotated[str, _one_of("an instrument", lambda v: v.instruments)
 def entries(given: Any) -> Any:
     """TOML's lists as the tuples that frozen records hold."""
     if not isinstance(given, list):
-        raise Refused("", "must be a list", given=given)
+        raise Refused("", "must be a list", given=written(given))
+    if len(given) > MOST_ENTRIES:
+        raise Refused("", f"may have {MOST_ENTRIES} entries", given=f"{len(given)} entries")
     return tuple(given)

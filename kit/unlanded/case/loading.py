@@ -10,15 +10,20 @@ from pathlib import Path
 from typing import Any
 
 from ..errors import Mistake, Refused, nearest
+from ..units import show
 from .places import Place, line_numbers
+from .runs import end_mistakes, run_of
 from .schema import CaseFile, RunTable
 from .sections import section_of
-from .validation import Found, Index, validate, validate_run
+from .validation import Found, Index, printable, validate, validate_run
 
 LARGEST = 1024 * 1024
+DEEPEST = 16
+_TOO_DEEP = "has lists or tables nested too deep: a case needs no more than a few"
 _BOM = "\ufeff"
 # A reader of TOML takes a time that grows with the square of a key's parts.
 _LONG_KEY = re.compile(r"""(?<![\w"'.-])(?:[\w"'-]+[ \t]*\.[ \t]*){16}""")
+_METRES = re.compile(r"(\d+(?:\.\d+)?(?:e-?\d+)?) m\b")
 _LINE_IN_MESSAGE = re.compile(r" \(at (?:line (\d+), column (\d+)|end of document)\)$")
 
 
@@ -84,29 +89,40 @@ def read_text(path: Path) -> tuple[str, str]:
         text = data.decode("utf-8")
     except UnicodeDecodeError as error:
         line = data.count(b"\n", 0, error.start) + 1
-        hint = "the editor saved UTF-16" if data[:2] in (b"\xff\xfe", b"\xfe\xff") else ""
+        utf16 = "the editor saved UTF-16: " if data[:2] in (b"\xff\xfe", b"\xfe\xff") else ""
         raise Refused(f"{path.name} line {line}", "is not UTF-8 text",
-                      given=f"byte 0x{data[error.start]:02X}",
-                      hint=hint or "save the file as UTF-8") from None
+                      given=f"byte {data[error.start]:02X} (hexadecimal)",
+                      hint=f"{utf16}save the file as UTF-8") from None
     return _plain_line_ends(text), "\r\n" if "\r\n" in text else "\n"
 
 
 def parse(text: str, name: str) -> dict[str, Any]:
     """The plain values of a TOML text; refused with the line where it is not TOML."""
-    if not re.search(r"^[ \t]*[^#\s]", text, re.MULTILINE):
+    if not re.search(r"^[ \t]*[^#\s]", text.replace("\r", "\n"), re.MULTILINE):
         raise Refused(name, "is empty", hint="a case has at least title, [supply] and [run]")
+    if "\r" in text:
+        line = text.count("\n", 0, text.index("\r")) + 1
+        raise Refused(f"{name} line {line}", "has a carriage return that ends no line",
+                      hint="save the file with the usual line ends")
     if long := _LONG_KEY.search(text):
         line = text.count("\n", 0, long.start()) + 1
         raise Refused(f"{name} line {line}", "a key may have 16 parts", given=long.group())
     try:
-        return tomllib.loads(text)
+        plain = tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
         raise _not_toml(str(error), text, name) from None
     except RecursionError:
-        raise Refused(name, "is not TOML that can be read", given="lists nested too deep") from None
+        raise Refused(name, _TOO_DEEP) from None
     except ValueError:
-        raise Refused(name, "is not TOML that can be read",
-                      given="a number of thousands of digits") from None
+        raise Refused(name, "has a number of thousands of digits") from None
+    if _depth(plain) > DEEPEST:
+        raise Refused(name, _TOO_DEEP)
+    return plain
+
+
+def _depth(value: Any) -> int:
+    inner = value.values() if isinstance(value, dict) else value if isinstance(value, list) else ()
+    return 1 + max(map(_depth, inner), default=0)
 
 
 def _plain_line_ends(text: str) -> str:
@@ -124,6 +140,8 @@ def _read_bytes(path: Path) -> bytes:
             data = file.read(LARGEST + 1)
     except FileNotFoundError:
         raise Refused(str(path), "there is no such file", hint=_near_file(path)) from None
+    except Refused:
+        raise
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         raise Refused(str(path), "cannot be read", given=reason) from None
@@ -149,23 +167,37 @@ def _near_file(path: Path) -> str:
 def _not_toml(message: str, text: str, name: str) -> Refused:
     match = _LINE_IN_MESSAGE.search(message)
     line = int(match[1]) if match and match[1] else text.rstrip("\n").count("\n") + 1
-    rule = _LINE_IN_MESSAGE.sub("", message)
-    hint = next((h for start, h in _TOML_HINTS.items() if rule.startswith(start)), "")
-    written = text.split("\n")[line - 1].strip() if match and match[1] else ""
-    return Refused(f"{name} line {line}", f"is not TOML: {rule[:1].lower()}{rule[1:]}",
-                   given=written, hint=hint)
+    said = _LINE_IN_MESSAGE.sub("", message)
+    rule, hint = next((words for start, words in _TOML_RULES.items() if said.startswith(start)),
+                      (f"{said[:1].lower()}{said[1:]}", ""))
+    return Refused(f"{name} line {line}", f"is not TOML: {rule}",
+                   given=printable(text.split("\n")[line - 1].strip()), hint=hint)
 
 
 _QUOTES = 'text and quantities stand in quotes, for example length = "85 m"'
-_TOML_HINTS = {
-    "Expected newline or end of document": _QUOTES,
-    "Invalid value": _QUOTES,
-    "Expected '='": 'keys with spaces or letters beyond a to z stand in quotes',
-    "Cannot overwrite": "the same key is already set above",
-    "Cannot declare": "the same table is already there above",
-    "Invalid statement": 'a line is key = value, [table], or a comment that begins with #',
-    "Unclosed": "a bracket or quotation mark is not closed",
-    "Unterminated": "a bracket or quotation mark is not closed",
+_LINE = "a line is key = value, [table], or # remark; keys beyond a to z and 0 to 9 are in quotes"
+# What the reader of TOML says -> what it means to whoever wrote the file, and a hint.
+_TOML_RULES = {
+    "Illegal character '\\n'": ("a quotation mark is not closed on its line", ""),
+    "Illegal character": ("has a control character", "type the line again"),
+    "Expected newline or end of document": ("there is more on the line after the value", _QUOTES),
+    "Invalid value": ("the value cannot be read", _QUOTES),
+    "Found invalid character": ("a quotation mark is not closed on its line", ""),
+    "Expected '='": ("a key is not followed by = and its value", _LINE),
+    "Invalid statement": ("the line cannot be read", _LINE),
+    "Invalid initial character for a key": ("the key cannot be read", _LINE),
+    "Expected ']' at the end of a table": ("the header is not closed with ]", _LINE),
+    "Expected ']]' at the end of an array": ("the header is not closed with ]]", _LINE),
+    "Cannot overwrite": ("this is set already above", "each key and [table] may be there once"),
+    "Cannot declare": ("this table is there already above", "each [table] may be there once"),
+    "Cannot mutate": ("this adds to a table or list that is closed already above", ""),
+    "Duplicate inline table key": ("a key is given twice between { and }", ""),
+    "Unclosed array": ("a list is not closed with ], or lacks a comma", ""),
+    "Unclosed inline table": ("a table in { } is not closed on its line, or lacks a comma", ""),
+    "Unterminated string": ("a quotation mark is not closed", ""),
+    "Unescaped '\\' in a string": ("a backslash in double quotes begins an escape",
+                                  "write \\\\, or use single quotes"),
+    "Invalid hex value": ("\\u is followed by four digits of a hexadecimal number", ""),
 }
 
 
@@ -176,8 +208,10 @@ def _read(text: str, name: str) -> tuple[CaseFile | None, list[Mistake]]:
     run = content.run if content else validate_run(plain)
     if run is not None:
         found += _geometry(run)
+    if content is not None and not found:
+        found += _ends(content)
     found.sort(key=lambda f: index.line(f[0]))
-    mistakes = [replace(m, place=index.at(place)) for place, m in found]
+    mistakes = [index.told(f) for f in found]
     return (None if mistakes else content), mistakes
 
 
@@ -186,13 +220,39 @@ def _geometry(run: RunTable) -> list[Found]:
     try:
         section_of(run)
     except Refused as refusal:
-        return [(_where(m, run), replace(m, rule=f"{m.place}: {m.rule}"))
+        return [(_where(m, run), replace(m, place="", rule=_prefixed(f"{m.place}: {m.rule}"),
+                                         given=_prefixed(m.given)))
                 for m in refusal.mistakes]
     return []
+
+
+def _prefixed(text: str) -> str:
+    """Lengths as an engineer reads them: "0.003 m" becomes "3 mm"."""
+    return _METRES.sub(lambda m: show(float(m[1]), "m", 6), text)
 
 
 def _where(mistake: Mistake, run: RunTable) -> Place:
     named = re.findall(r'"([^"]+)"', mistake.place)
     if run.cable.layout == "free" and named:
         return ("run", "cable", "conductors", run.cable.names.index(named[-1]))
-    return ("run", "surround") if "screen" in mistake.place else ("run", "cable")
+    outside = run.surround is not None and "must lie" in mistake.rule
+    return ("run", "surround") if outside else ("run", "cable")
+
+
+def _ends(content: CaseFile) -> list[Found]:
+    """What the run refuses of its two ends, and readings between points that are one."""
+    try:
+        run = run_of(content)
+        mistakes = tuple(end_mistakes(run))
+    except Refused as refusal:
+        mistakes = refusal.mistakes
+    if mistakes:
+        return [(_end_place(m), m) for m in mistakes]
+    return [(("readings", count, "to"), Mistake("", "is the same point as from, as the ends are "
+             "described: there is nothing to read between them", reading.b))
+            for count, reading in enumerate(content.readings) if run.same(reading.a, reading.b)]
+
+
+def _end_place(mistake: Mistake) -> Place:
+    match = re.search(r'"([^"@]+)@(near|far)"', mistake.place)
+    return ("run", "ends", match[2], match[1]) if match else ("run",)

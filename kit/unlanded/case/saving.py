@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 import os
+import secrets
 import shutil
 from collections.abc import Callable, Iterator, Mapping
+from contextlib import suppress
 from copy import deepcopy
 from dataclasses import replace
 from pathlib import Path
@@ -17,6 +19,7 @@ from tomlkit.exceptions import TOMLKitError
 from tomlkit.items import AoT, Array, Comment, InlineTable, Item, Null, Table, Whitespace
 
 from ..errors import Refused
+from .fields import written
 from .loading import Case, parse, read_case, read_text
 from .places import Place, spell, unspell
 
@@ -52,7 +55,7 @@ def save_case(
 def changed_text(case: Case, changes: Mapping[str, Any]) -> str:
     """The text of the case with `changes` made, as `save_case` writes it."""
     wanted = parse(case.text, case.name)
-    document = tomlkit.parse(case.text)
+    document = _editable(case)
     remarks = _take_remarks(document)
     for path, value in changes.items():
         place = unspell(path)
@@ -62,7 +65,7 @@ def changed_text(case: Case, changes: Mapping[str, Any]) -> str:
         except Refused:
             raise
         except (LookupError, TypeError, ValueError, TOMLKitError):
-            raise Refused(path, "cannot be changed to this value", given=repr(value)) from None
+            raise Refused(path, "cannot be changed to this value", given=written(value)) from None
     _give_back(document, remarks)
     text = tomlkit.dumps(document)
     # tomlkit moves text about; what a reader of TOML then finds is the only proof.
@@ -70,6 +73,17 @@ def changed_text(case: Case, changes: Mapping[str, Any]) -> str:
         raise Refused(case.name, "cannot be changed without disturbing the rest of the file",
                       given=", ".join(changes), hint="make the change in a text editor")
     return text
+
+
+def _editable(case: Case) -> TOMLDocument:
+    try:
+        document = tomlkit.parse(case.text)
+    except (TOMLKitError, ValueError, RecursionError):
+        document = TOMLDocument()
+    if tomlkit.dumps(document) != case.text:
+        raise Refused(case.name, "has a layout that cannot be changed from here",
+                      hint="make the change in a text editor")
+    return document
 
 
 def _take_remarks(document: TOMLDocument) -> list[tuple[Table, str]]:
@@ -157,11 +171,13 @@ def _set_written(here: Any, step: str | int, value: Any) -> None:
         del old[len(value):]
         for count, inner in enumerate(value):
             _set_written(old, count, inner)
+    elif isinstance(here, AoT) and not isinstance(value, dict):
+        raise TypeError("an entry under its own header is a table")
     else:
-        _set_plain(here, step, _written(here, value))
+        _set_plain(here, step, _toml(here, value))
 
 
-def _written(here: Any, value: Any) -> Any:
+def _toml(here: Any, value: Any) -> Any:
     if isinstance(here, InlineTable | Array) and isinstance(value, dict):
         return tomlkit.item(value, _parent=here)
     if isinstance(value, str) and "\n" in value and not isinstance(here, InlineTable):
@@ -173,7 +189,12 @@ def _written(here: Any, value: Any) -> Any:
 def _target(case: Case, path: str | Path | None) -> Path:
     if path is None and case.path is None:
         raise Refused(case.name, "was not read from a file", hint="give a path to save it to")
-    target = Path(path if path is not None else case.path or "").resolve()
+    try:
+        target = Path(path if path is not None else case.path or "").resolve()
+        target.exists()
+    except (OSError, ValueError, RuntimeError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        raise Refused(str(path), "cannot be written", given=reason) from None
     if target.is_dir():
         raise Refused(str(target), "is a folder, and a case is saved as one file")
     if not target.parent.is_dir():
@@ -221,7 +242,7 @@ def _differences(old: Any, new: Any, place: Place = ()) -> Iterator[Place]:
 
 def _write_whole(target: Path, data: bytes) -> None:
     """Write beside the target, then put in its place: a reader never sees half a file."""
-    beside = target.with_name(f".{target.name}.{os.getpid()}.tmp")
+    beside = target.with_name(f".{target.name}.{secrets.token_hex(4)}.tmp")
     try:
         with beside.open("xb") as file:
             file.write(data)
@@ -233,4 +254,5 @@ def _write_whole(target: Path, data: bytes) -> None:
     except OSError as error:
         raise Refused(str(target), "cannot be written", given=error.strerror or error) from None
     finally:
-        beside.unlink(missing_ok=True)
+        with suppress(OSError):
+            beside.unlink(missing_ok=True)

@@ -12,22 +12,20 @@ from ..physics.layouts import Core
 from ..physics.packing import packed
 from ..physics.section import Conductor, Pipe, Plane, Section
 from ..reference.sizes import COPPER_RESISTIVITY
-from .schema import (
+from .cable import (
     BARE,
     AnyCable,
-    AnySurround,
     Control,
     FlatTwin,
     Free,
     FreeConductor,
     InConduit,
     LaidUp,
-    PipeRound,
-    PlaneBelow,
-    RunTable,
     Singles,
     Wire,
 )
+from .schema import RunTable
+from .surround import AnySurround, PipeRound, PlaneBelow
 
 Limit = Literal["low", "likely", "high"]
 """Which limit of the covers' permittivity to take."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping
+from dataclasses import replace
 from typing import Any
 
 from pydantic import BaseModel, ValidationError
@@ -11,12 +12,14 @@ from pydantic.fields import FieldInfo
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.instruments import INSTRUMENTS
-from .fields import Vocabulary
+from .fields import MOST_CORES, Vocabulary, is_core_name, written
 from .places import Place, spell, unspell
 from .schema import CaseFile, RunTable
 
 _PHASES = {1: ("L",), 2: ("L1", "L2"), 3: ("L1", "L2", "L3")}
 _ANY_PHASE = ("L", "L1", "L2", "L3")
+
+_LONGEST_PATH = 120
 
 Found = tuple[Place, Mistake]
 """A mistake whose own place is still empty, and where in the file it is."""
@@ -37,8 +40,25 @@ class Index:
 
     def at(self, place: Place) -> str:
         """Such as "my-case.toml line 12, supply.voltage"."""
-        path = f", {spell(place)}" if place else ""
-        return f"{self._name} line {self.line(place)}{path}"
+        path = spell(place)
+        if len(path) > _LONGEST_PATH:
+            path = f"{path[: _LONGEST_PATH // 2]}…{path[-_LONGEST_PATH // 2 :]}"
+        return f"{self._name} line {self.line(place)}{path and ', '}{printable(path)}"
+
+    def told(self, found: Found) -> Mistake:
+        """The mistake with its place in words, and nothing in it that could steer a terminal."""
+        place, mistake = found
+        return replace(mistake, place=self.at(place), given=printable(mistake.given),
+                       hint=printable(mistake.hint))
+
+
+def printable(text: str) -> str:
+    """With a mark in the place of every control and formatting character.
+
+    >>> printable("a\\x1b[31m")
+    'a�[31m'
+    """
+    return "".join(c if c.isprintable() else "\N{REPLACEMENT CHARACTER}" for c in text)
 
 
 def validate(plain: Mapping[str, Any]) -> tuple[CaseFile | None, list[Found]]:
@@ -70,12 +90,15 @@ def _vocabulary(plain: Mapping[str, Any]) -> Vocabulary:
 
 
 def _cores(cable: Mapping[str, Any]) -> tuple[str, ...] | None:
+    """None where a name is wrong: what refers to it would only repeat the mistake."""
     listed = cable.get("cores")
     if cable.get("layout") == "free" and isinstance(cable.get("conductors"), list):
         listed = [c.get("name") for c in cable["conductors"] if isinstance(c, dict)]
-    if not isinstance(listed, list):
+    if not isinstance(listed, list) or not 1 <= len(listed) <= MOST_CORES:
         return None
-    return tuple(name for name in listed if isinstance(name, str))
+    if not all(map(is_core_name, listed)) or len(set(listed)) < len(listed):
+        return None
+    return tuple(listed)
 
 
 def _table(plain: Mapping[str, Any], key: str) -> Mapping[str, Any]:
@@ -93,7 +116,7 @@ def _found(
         return [(place + (unspell(m.place) if m.place else ()), m) for m in cause.mistakes]
     fields = _fields(tables.get(id(parent)))
     key = str(place[-1]) if place else ""
-    given = "" if isinstance(error["input"], dict | list) else str(error["input"])
+    given = written(error["input"])
     match error["type"]:
         case "missing":
             return [(place, Mistake("", "is missing", "", _example(key, fields)))]
@@ -105,19 +128,15 @@ def _found(
             key = error["ctx"]["discriminator"].strip("'")
             if key not in error["input"]:
                 return [((*place, key), Mistake("", "is missing", "", _TAG_EXAMPLES[key]))]
-            given = str(error["input"][key])
+            given = written(error["input"][key])
             return [((*place, key), _not_a_word(error["ctx"]["expected_tags"], given))]
-    rule = _RULES.get(error["type"], str(error["msg"]).replace("Input should", "must"))
-    return [(place, Mistake("", rule, given))]
+    if error["type"] == "bool_type":
+        return [(place, Mistake("", "must be true or false, without quotes", given))]
+    # What is left of pydantic's errors is a value where a table belongs.
+    hint = f"written [{spell(place)}] or {key} = {{…}}" if isinstance(place[-1], str) else ""
+    return [(place, Mistake("", "must be a table", given, hint))]
 
 
-_RULES = {
-    "model_type": "must be a table",
-    "model_attributes_type": "must be a table",
-    "dict_type": "must be a table",
-    "int_type": "must be a whole number",
-    "bool_type": "must be true or false",
-}
 _TAG_EXAMPLES = {"layout": 'for example layout = "laid up"', "kind": 'for example kind = "plane"'}
 
 
@@ -133,11 +152,15 @@ def _locate(
     here: Any = plain
     parent: Any = plain
     for step in loc:
-        if step in here if isinstance(here, dict) else isinstance(here, list):
+        if step in (here if isinstance(here, dict) else _entries(here)):
             place, parent, here = (*place, step), here, here[step]
     if loc and isinstance(here, dict) and loc[-1] in _fields(tables.get(id(here))):
         return (*place, loc[-1]), here
     return place, parent
+
+
+def _entries(value: Any) -> range:
+    return range(len(value)) if isinstance(value, list) else range(0)
 
 
 def _fields(model: type[BaseModel] | None) -> dict[str, FieldInfo]:

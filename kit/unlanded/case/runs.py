@@ -1,0 +1,71 @@
+"""From the values of a case to the run that the study solves."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+
+from ..errors import Mistake
+from ..physics.network import EARTH
+from ..study.ends import Bonded, Driven, Joined, Open, Through
+from ..study.ends import Termination as RunTermination
+from ..study.run import Run
+from ..study.supply import NEUTRAL, Supply
+from .schema import CaseFile, SupplyTable
+from .sections import Limit, resistances, section_of
+from .terminations import Termination
+
+
+def run_of(content: CaseFile, permittivity: Limit = "likely") -> Run:
+    """The run that the case describes; refused where its ends cannot be."""
+    supply = _supply(content.supply)
+    section = section_of(content.run, permittivity)
+    by_name = resistances(content.run.cable)
+    return Run(
+        section=section,
+        length=content.run.length,
+        supply=supply,
+        near=_end(content.run.ends.near, supply.frequency),
+        far=_end(content.run.ends.far, supply.frequency),
+        resistance=tuple(by_name[name] for name in section.names),
+    )
+
+
+def end_mistakes(run: Run) -> Iterator[Mistake]:
+    """What only shows once the ends are joined up; the run itself refuses what it joins wrongly."""
+    fixed = {run.node(word) for word in (EARTH, NEUTRAL, *run.supply.lines)}
+    held = False
+    for end, terminations in (("near", run.near), ("far", run.far)):
+        for name, t in terminations.items():
+            point = f"{name}@{end}"
+            met = run.node(point)
+            held |= met in fixed
+            if isinstance(t, Through):
+                other = run.node(f"{t.to}@{end}" if t.to in run.section.names else t.to)
+                held |= other in fixed
+                if other == met:
+                    yield Mistake(f'"{point}"', "has a load with both its terminals on one point",
+                                  t.to)
+    if run.section.surround is None and not held:
+        yield Mistake("", "floats: no conductor is connected to the supply or earth, and there is "
+                          "no earthed surround", "", "name an end, or describe [run.surround]")
+
+
+def _supply(written: SupplyTable) -> Supply:
+    return Supply(written.voltage, written.frequency, written.phases, written.resistance,
+                  written.inductance, written.harmonics)
+
+
+def _end(end: Mapping[str, Termination], frequency: float) -> dict[str, RunTermination]:
+    return {name: _termination(t, frequency) for name, t in end.items()}
+
+
+def _termination(written: Termination, frequency: float) -> RunTermination:
+    if written.load is not None:
+        return Through(written.load.burden(frequency=frequency), str(written.to), written.load.name)
+    if written.joined is not None:
+        return Joined(written.joined)
+    if written.at == "open":
+        return Open()
+    if written.at in ("N", "earth"):
+        return Bonded(written.at)
+    return Driven(str(written.at))
