@@ -188,3 +188,16 @@ def test_burden_is_kept_out_of_the_run() -> None:
     before = run.voltage("spare@far")
     run.connect(Burden(3e3), "spare@far")
     assert run.voltage("spare@far") == before
+
+
+def test_ranges_are_tried_from_the_largest_down() -> None:
+    # Both the 50 V and the 250 V range could hold this source: 100 V behind 1/(ωC), shown as 93 V
+    # on 2.5 MΩ and as 47 V on 500 kΩ. A meter used from the top stays on the 250 V range.
+    meter = moving_coil("m", "m", ohm_per_volt=10e3, full_scales=[50.0, 250.0])
+    length = 1 / (2 * math.pi * 50 * (CM + CG) * 940e3)
+    voltage = 100.0 * (CM + CG) / CM
+    row = row_of(run_of(length, voltage=voltage), meter)
+    on_250 = 100.0 * 2.5e6 / math.hypot(2.5e6, 940e3)
+    on_50 = 100.0 * 500e3 / math.hypot(500e3, 940e3)
+    assert on_50 < 50.0 < on_250
+    assert abs(row.voltage) == pytest.approx(on_250, rel=1e-5, abs=0)

@@ -109,8 +109,8 @@ class Instrument:
     def range_for(self, voltage: float) -> Range:
         """The smallest range that holds a settled, loaded voltage, RMS [V]; else the largest.
 
-        On an instrument whose burden depends on the range the voltage does too: the range it
-        settles on is the smallest whose own loaded voltage it holds.
+        On an instrument whose burden depends on the range the voltage does too: the range is
+        then found from the largest down, as long as the next holds what is shown.
 
         >>> INSTRUMENTS["moving-coil"].range_for(120.0).full_scale
         250.0

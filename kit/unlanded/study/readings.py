@@ -139,12 +139,22 @@ def loading_curve(run: Run, pair: Pair, resistances: ArrayLike) -> Real:
     return np.asarray(np.abs(port.voltage / (1 + conductance * port.impedance)))
 
 
-def length_curve(run: Run, pair: Pair, instrument: Instrument, lengths: ArrayLike) -> Real:
-    """Voltage across the instrument on a pair (k,) RMS [V] for runs of `lengths` (k,) [m]."""
-    scales = _scales(instrument, run.frequency)
+def ports_along(run: Run, pair: Pair, lengths: ArrayLike) -> tuple[Port, ...]:
+    """The port of a pair for runs that are as `run` but of `lengths` (k,) [m]."""
     runs = (replace(run, length=float(length), capacitance=run.matrix)
             for length in np.asarray(lengths, dtype=float))
-    return np.array([abs(_settled(scales, r.port(pair.a, pair.b))[0]) for r in runs])
+    return tuple(r.port(pair.a, pair.b) for r in runs)
+
+
+def voltages_across(instrument: Instrument, ports: Sequence[Port], *, frequency: float) -> Real:
+    """Voltage across the instrument on each of the ports (k,) RMS [V]."""
+    scales = _scales(instrument, frequency)
+    return np.array([abs(_settled(scales, port)[0]) for port in ports])
+
+
+def length_curve(run: Run, pair: Pair, instrument: Instrument, lengths: ArrayLike) -> Real:
+    """Voltage across the instrument on a pair (k,) RMS [V] for runs of `lengths` (k,) [m]."""
+    return voltages_across(instrument, ports_along(run, pair, lengths), frequency=run.frequency)
 
 
 _Scales: TypeAlias = list[tuple[float, complex]]
@@ -181,12 +191,14 @@ def _settled(
 ) -> tuple[complex, complex]:
     """Voltage and current on the range that the instrument settles on.
 
-    That is the smallest range that holds its own loaded voltage; `impedance` scales the burden's.
+    It is used as taught: from the largest range down, as long as the next one holds what is
+    shown. `impedance` scales the burden's.
     """
-    for full_scale, nominal in scales:
+    lower = [full_scale for full_scale, _ in scales[-2::-1]] + [-1.0]
+    for (_, nominal), next_lower in zip(reversed(scales), lower, strict=True):
         admittance = nominal / impedance
         voltage = port.voltage / (1 + admittance * port.impedance)
-        if abs(voltage) <= full_scale:
+        if abs(voltage) > next_lower:
             break
     return voltage, admittance * voltage
 

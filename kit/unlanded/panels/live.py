@@ -1,0 +1,274 @@
+"""Figures live in a notebook: the same description that paper draws, as a bqplot figure.
+
+A live figure is made once. `update` puts a new description's numbers into the marks that are
+already on the screen, and makes new marks only where the description has others than before.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+import bqplot as bq
+import numpy as np
+
+from ..report.figure import (
+    SHADES,
+    Area,
+    Axis,
+    Band,
+    Field,
+    Figure,
+    Floats,
+    Line,
+    Note,
+    Points,
+    Reference,
+    colour,
+    dash,
+    shape,
+)
+from ..units import show
+
+_FILL = {"metal": "#c98a5a", "earthed metal": "#d9d9d9", "cover": "none", "space": "#ffffff",
+         "shade": "#eeeeee", "ink": "#222222"}
+_EDGE = {"metal": "#5a3517", "cover": "#444444"}
+_SHAPE = {"star": "arrow"}  # bqplot has no star
+_GRID = "#e2e2e2"
+_MARGIN = {"top": 40, "bottom": 52, "left": 68, "right": 20}
+HOVERED = 60  # points of a curve whose numbers show under the pointer
+PAPER = "unlanded-paper"
+
+
+class LiveFigure:
+    """A figure on the screen; `widget` is what a view shows.
+
+    Parameters
+    ----------
+    figure : the description to begin with
+    height : of the picture on the screen [px]
+    """
+
+    def __init__(self, figure: Figure, *, height: int = 380) -> None:
+        self.figure = figure
+        self._x, self._y = _scale(figure.x), _scale(figure.y)
+        self._axes = (_axis(figure.x, self._x, "bottom"), _axis(figure.y, self._y, "left"))
+        bare = not (figure.x.ticks or figure.y.ticks)
+        self._marks: dict[tuple[str, int], Any] = {}
+        self.widget = bq.Figure(
+            axes=[] if bare else list(self._axes), animation_duration=0, padding_x=0.0,
+            padding_y=0.0, legend_location=_corner(figure), display_toolbar=False,
+            background_style={"fill": "white"},
+            legend_style={"fill": "white", "stroke": "#999999"}, fig_margin=dict(_MARGIN),
+            layout={"width": "100%", "min_width": "420px", "height": f"{height}px"},
+        )
+        if figure.to_scale:
+            self.widget.min_aspect_ratio = self.widget.max_aspect_ratio = 1 / figure.aspect
+        self.widget.add_class(PAPER)
+        self.update(figure)
+
+    def update(self, figure: Figure) -> None:
+        """Show another description of the same question."""
+        before = dict(_elements(self.figure)) if self._marks else {}
+        self.figure = figure
+        _set_axis(self._axes[0], self._x, figure.x)
+        _set_axis(self._axes[1], self._y, figure.y)
+        self.widget.title = figure.title
+        wanted = dict(_elements(figure))
+        marks = {key: self._marks[key] if _equal(element, before.get(key))
+                 else self._mark(key, element) for key, element in wanted.items()}
+        if marks.keys() != self._marks.keys() or not self.widget.marks:
+            self._marks = marks
+            self.widget.marks = list(marks.values())
+
+    def mark(self, kind: str, number: int = 0) -> Any:
+        """The bqplot mark that shows an element, such as ("points", 0), for dragging it."""
+        return self._marks[kind, number]
+
+    def _mark(self, key: tuple[str, int], element: Any) -> Any:
+        traits = _TRAITS[key[0]](element, self.figure)
+        mark = self._marks.get(key)
+        if mark is None:
+            scales = {"x": self._x, "y": self._y}
+            if "color" in traits:
+                low, high = element.scale.low, element.scale.high
+                scales["color"] = bq.ColorScale(colors=list(SHADES), min=low, max=high)
+            if "names" in traits:
+                traits["tooltip"] = bq.Tooltip(fields=["name"], show_labels=False)
+            return _MARKS[key[0]](scales=scales, **traits)
+        with mark.hold_sync():
+            for name, value in traits.items():
+                setattr(mark, name, value)
+        return mark
+
+
+def _corner(figure: Figure) -> str:
+    """The corner of the picture that the fewest points of its curves lie in."""
+    crowd = dict.fromkeys(("bottom-right", "top-left", "top-right", "bottom-left"), 0)
+    for line in figure.lines:
+        for x, y in zip(line.x, line.y, strict=True):
+            up, right = figure.y.fraction(float(y)) > 0.5, figure.x.fraction(float(x)) > 0.5
+            crowd[f"{'top' if up else 'bottom'}-{'right' if right else 'left'}"] += 1
+    return min(crowd, key=crowd.__getitem__)
+
+
+def _equal(element: Any, other: Any) -> bool:
+    """Whether two elements of a figure are alike, numbers and words."""
+    if type(element) is not type(other):
+        return False
+    if isinstance(element, tuple):
+        return bool(element == other)
+    return all(np.array_equal(value, getattr(other, name)) for name, value in
+               vars(element).items())
+
+
+def _elements(figure: Figure) -> Any:
+    """(kind, number) of everything on the figure, in the order in which it is drawn."""
+    if figure.field is not None:
+        yield ("field", 0), figure.field
+    for kind in ("areas", "bands", "references", "lines"):
+        for number, element in enumerate(getattr(figure, kind)):
+            yield (kind, number), element
+    for number, line in enumerate(figure.lines):
+        if line.style is not None:
+            yield ("hover", number), line
+    for number, points in enumerate(figure.points):
+        if points.x_low is not None:
+            yield ("bars", number), points
+        yield ("points", number), points
+    if pointing := tuple(n for n in figure.notes if n.target is not None):
+        yield ("leaders", 0), pointing
+    for number, note in enumerate(figure.notes):
+        yield ("notes", number), note
+
+
+def _field(field: Field, _: Figure) -> dict[str, Any]:
+    return {"x": field.x, "y": field.y, "color": field.values}
+
+
+def _area(area: Area, _: Figure) -> dict[str, Any]:
+    fill = _FILL[area.material]
+    return {"x": area.x, "y": area.y, "fill": "none" if fill == "none" else "inside",
+            "fill_colors": ["white" if fill == "none" else fill],
+            "colors": [_EDGE.get(area.material, "#777777")], "close_path": True,
+            "stroke_width": 1.0}
+
+
+def _band(band: Band, _: Figure) -> dict[str, Any]:
+    paint = colour(band.style)
+    return {"x": np.array([band.x, band.x]), "y": np.array([band.low, band.high]),
+            "fill": "between", "fill_colors": [paint], "fill_opacities": [0.18, 0.18],
+            "colors": [paint], "opacities": [0.0, 0.0], "labels": [band.label],
+            "display_legend": False}
+
+
+def _reference(mark: Reference, figure: Figure) -> dict[str, Any]:
+    across = figure.y if mark.axis == "x" else figure.x
+    ends, level = np.array([across.low, across.high]), np.full(2, mark.value)
+    x, y = (level, ends) if mark.axis == "x" else (ends, level)
+    return {"x": x, "y": y, "colors": ["#444444"], "stroke_width": 1.0,
+            "line_style": "dash_dotted", "labels": [mark.label], "display_legend": True}
+
+
+def _line(line: Line, _: Figure) -> dict[str, Any]:
+    hairline = line.style is None
+    return {"x": line.x, "y": line.y, "stroke_width": 0.6 if hairline else 2.0,
+            "colors": ["#777777" if line.style is None else colour(line.style)],
+            "line_style": "solid" if line.style is None else dash(line.style),
+            "labels": [line.label], "display_legend": bool(line.label) and not hairline}
+
+
+def _hover(line: Line, figure: Figure) -> dict[str, Any]:
+    """Unseen points along a curve, whose numbers show under the pointer."""
+    some = np.unique(np.linspace(0, len(line.x) - 1, min(HOVERED, len(line.x))).astype(int))
+    x, y = line.x[some], line.y[some]
+    name = f"{line.label}: " if line.label else ""
+    texts = [f"{name}{_said(a, figure.x)}, {_said(b, figure.y)}" for a, b in zip(x, y, strict=True)]
+    return {"x": x, "y": y, "names": np.array(texts), "display_names": False, "marker": "circle",
+            "default_size": 90, "opacities": [0.0]}
+
+
+def _said(value: float, axis: Axis) -> str:
+    return show(float(value), axis.unit) if axis.unit else f"{value:.4g}"
+
+
+def _points(points: Points, _: Figure) -> dict[str, Any]:
+    paint, kind = colour(points.style), shape(points.style)
+    named = {"names": np.array(points.texts)} if points.texts else {}
+    return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind), "default_size": 70,
+            "colors": ["white" if points.hollow else paint], "stroke": paint,
+            "display_names": False, "labels": [points.label],
+            "display_legend": bool(points.label), **named}
+
+
+def _bars(points: Points, _: Figure) -> dict[str, Any]:
+    assert points.x_low is not None
+    assert points.x_high is not None
+    ends = np.array([points.x_low, points.y, points.x_high, points.y]).T
+    return {**_strokes(ends), "colors": [colour(points.style)], "stroke_width": 2.0,
+            "opacities": [0.6]}
+
+
+def _leaders(notes: tuple[Note, ...], _: Figure) -> dict[str, Any]:
+    """From the words of each note to what they point at."""
+    ends = np.array([(n.x, n.y, *n.target) for n in notes if n.target is not None])
+    return {**_strokes(ends), "colors": ["#777777"], "stroke_width": 0.8}
+
+
+def _strokes(ends: Floats) -> dict[str, Any]:
+    """Straight strokes (k, 4) from x, y to x, y as one path, broken by gaps.
+
+    It must not end in a gap: bqplot puts the path's label at its last point.
+    """
+    gap = np.full(len(ends), np.nan)
+    x, y = (np.column_stack([ends[:, i], ends[:, i + 2], gap]).ravel()[:-1] for i in (0, 1))
+    return {"x": x, "y": y, "display_legend": False}
+
+
+def _note(note: Note, _: Figure) -> dict[str, Any]:
+    align = {"left": "start", "middle": "middle", "right": "end"}[note.align]
+    ink = "#222222" if note.style is None else colour(note.style)
+    return {"x": np.array([note.x]), "y": np.array([note.y]), "text": np.array([note.text]),
+            "align": align, "colors": [ink], "default_size": 12, "font_weight": "normal"}
+
+
+_TRAITS: dict[str, Callable[[Any, Figure], dict[str, Any]]] = {
+    "field": _field, "areas": _area, "bands": _band, "references": _reference, "lines": _line,
+    "hover": _hover, "points": _points, "bars": _bars, "leaders": _leaders, "notes": _note,
+}
+_MARKS: dict[str, Any] = {
+    "field": bq.HeatMap, "areas": bq.Lines, "bands": bq.Lines, "references": bq.Lines,
+    "lines": bq.Lines, "hover": bq.Scatter, "points": bq.Scatter, "bars": bq.Lines,
+    "leaders": bq.Lines, "notes": bq.Label,
+}
+
+
+def _scale(axis: Axis) -> Any:
+    kind = bq.LogScale if axis.scale == "log" else bq.LinearScale
+    return kind(min=axis.low, max=axis.high, reverse=axis.turned)
+
+
+def _axis(axis: Axis, scale: Any, side: str) -> Any:
+    return bq.Axis(scale=scale, side=side, grid_color=_GRID, grid_lines="solid",
+                   label_offset="38px" if side == "bottom" else "52px",
+                   tick_style={"font-size": "12px"}, **_ticks(axis))
+
+
+def _ticks(axis: Axis) -> dict[str, Any]:
+    values = np.array([v for v, _ in axis.ticks])
+    # "~s" would turn 0.01 into 10m; on axes without prefixes numbers are written out.
+    prefixed = axis.scale == "log" and any(" " in text for _, text in axis.ticks)
+    return {"label": axis.title, "tick_values": values,
+            "tick_format": "~s" if prefixed else "~g",
+            "tick_labels": {float(v): text for v, text in axis.ticks}}
+
+
+def _set_axis(drawn: Any, scale: Any, axis: Axis) -> None:
+    if (scale.min, scale.max) != (axis.low, axis.high):
+        with scale.hold_sync():
+            scale.min, scale.max = axis.low, axis.high
+    traits = _ticks(axis)
+    if not np.array_equal(drawn.tick_values, traits["tick_values"]) or drawn.label != axis.title:
+        with drawn.hold_sync():
+            for name, value in traits.items():
+                setattr(drawn, name, value)
