@@ -142,6 +142,8 @@ Permittivity = Annotated[float, _number(1.0, 100.0)]
 Share = Annotated[float, _number(0.0, 1.0)]
 SourceResistance = Annotated[float, _quantity("ohm", 0.0, 1e4)]
 SourceInductance = Annotated[float, _quantity("H", 0.0, 10.0)]
+LinearCapacitance = Annotated[float, _quantity("F/m", 0.0, 1e-7)]
+Lead = Annotated[float, _number(-90.0, 90.0)]  # degrees
 
 
 def _whole(low: int, high: int) -> BeforeValidator:

@@ -14,12 +14,12 @@ from pydantic import BeforeValidator, Field, field_validator, model_validator
 
 from ..errors import Mistake, Refused
 from ..reference.instruments import INSTRUMENTS, Instrument, Kind, custom_instrument
+from .behind import DeviceTable, LogTable, Standing
 from .cable import AnyCable, InConduit
 from .fields import (
     SHOWN_WORDS,
     Capacitance,
     Counts,
-    Current,
     Frequency,
     Inductance,
     InstrumentKey,
@@ -133,14 +133,6 @@ class Sheet(Table):
         return keys
 
 
-class Device(Table):
-    """`[device]`: the residual-current device in front of the run."""
-
-    rated: Current = Field(examples=["30 mA"])
-    kind: Literal["general", "delayed", "personnel", "equipment"] = "general"
-    waveform: Literal["AC", "A", "F", "B"] | None = None
-
-
 class Reading(Table):
     """`[[readings]]`: what an instrument showed."""
 
@@ -176,9 +168,23 @@ class CaseFile(Table):
     supply: SupplyTable = Field(examples=['{voltage = "230 V", frequency = "50 Hz"}'])
     run: RunTable = Field(examples=['{length = "85 m", …}'])
     sheet: Sheet = Sheet.model_construct()
-    device: Device | None = None
+    device: DeviceTable | None = None
+    standing: Annotated[tuple[Standing, ...], BeforeValidator(entries)] = ()
+    log: LogTable | None = None
     own_instruments: Annotated[tuple[OwnInstrument, ...], BeforeValidator(entries)] = ()
     readings: Annotated[tuple[Reading, ...], BeforeValidator(entries)] = ()
+
+    @model_validator(mode="after")
+    def _behind_a_device(self) -> Self:
+        if self.device is None and (self.standing or self.log):
+            raise Refused("device", "is missing, and standing and log are about it",
+                          hint='for example [device] with rated = "30 mA"')
+        names = [entry.name for entry in self.standing]
+        found = [Mistake(f"standing[{count + 1}].name", "is used twice", name)
+                 for count, name in enumerate(names) if name in names[:count]]
+        if found:
+            raise Refused.all_of(found)
+        return self
 
     @model_validator(mode="after")
     def _instruments_fit(self) -> Self:
