@@ -78,9 +78,9 @@ def sheet(case: Path, csv_file: Path | None) -> None:
     """Print what every instrument should read on every pair, if all is well."""
     from .case.loading import load_case
     from .report.case_memo import investigate
-    from .report.sections import readings_part
+    from .report.expected import sheet_tables
     from .report.sheet_table import sheet_table
-    from .report.tables import Table, csv_text, plain
+    from .report.tables import csv_text, plain
 
     readings = investigate(load_case(case)).sheet
     if csv_file is not None:
@@ -88,8 +88,7 @@ def sheet(case: Path, csv_file: Path | None) -> None:
         click.echo(f"Wrote {csv_file}")
         return
     width = max(60, shutil.get_terminal_size((100, 24)).columns)
-    tables = [b for b in readings_part(readings).blocks if isinstance(b, Table)]
-    click.echo("\n\n".join(plain(table, width) for table in tables))
+    click.echo("\n\n".join(plain(table, width) for table in sheet_tables(readings)))
     click.echo(f"\n{CAUTION}")
 
 

@@ -2,10 +2,80 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+
+from ..case.cable import AnyCable
+from ..physics.section import Pipe, Plane
+from ..units import show
+from .cores import permittivity_words
 from .investigation import Investigation
-from .memo import Bullets, Part
+from .memo import Bullets, Paragraph, Part
 
 
 def assumptions_part(investigation: Investigation) -> Part:
     """What was taken for granted, one sentence a line."""
-    return Part("Assumptions", (Bullets(("x",)),))
+    lines = (*_supply(investigation), *_cable(investigation), *_run(investigation),
+             *_readings(investigation))
+    return Part("Assumptions", (
+        Paragraph("The numbers hold as far as these do. Where the circuit differs, change the case "
+                  "and make the memo again."),
+        Bullets(lines)))
+
+
+def _supply(investigation: Investigation) -> Iterator[str]:
+    supply = investigation.run.supply
+    yield (f"The supply is a steady sine of {show(supply.voltage, 'V')} line to neutral at "
+           f"{show(supply.frequency, 'Hz')}, taken as stated: its own tolerance is not in the "
+           "ranges.")
+    yield ("The neutral is bonded to earth at the source, and nowhere else unless an end says so. "
+           "Earth is one point, the grounding system, without impedance of its own at the ends.")
+
+
+def _cable(investigation: Investigation) -> Iterator[str]:
+    cable = investigation.case.content.run.cable
+    yield from permittivity_words(cable, customary=investigation.customary)
+    yield ("The insulation is sound and dry: it has no leakage, and its dielectric loss is left "
+           "out.")
+    yield from _layout(cable)
+    filler = cable.filler_permittivity
+    yield ("Air lies between the covers." if filler == 1 else
+           f"What lies between the covers has relative permittivity {filler:g}.")
+    if isinstance(investigation.run.section.surround, Pipe | Plane):
+        yield "The metal around or under the run is earthed all along it, at 0 V."
+    else:
+        yield ("No earthed metal lies near the run; a tray, wall or conduit would lower the "
+               "voltages of open conductors.")
+
+
+def _layout(cable: AnyCable) -> Iterator[str]:
+    match cable.layout:
+        case "laid up" | "control" | "flat twin and earth":
+            yield ("The dielectric of a common sheath is not modelled; it raises the capacitances "
+                   "a little. The section is the same all along the cable.")
+        case "in conduit":
+            yield (f"The conductors lie in the conduit at random; this is one arrangement of many, "
+                   f"seed {cable.seed}, the same all along the run. Another seed gives another "
+                   "arrangement and other readings.")
+        case _:
+            yield "The conductors keep their places all along the run."
+
+
+def _run(investigation: Investigation) -> Iterator[str]:
+    run = investigation.run
+    yield "Resistances are those of the conductors at 20 °C, without skin effect."
+    yield (f"What returns by earth does so through soil of {run.earth_resistivity:g} Ω·m; of "
+           "little effect on the readings.")
+    yield "A conductor that the case does not name at an end is open there."
+    yield "Magnetic coupling from other circuits than this run is left out."
+
+
+def _readings(investigation: Investigation) -> Iterator[str]:
+    yield ("Ranges run over the limits of the covers' permittivity together with the tolerance of "
+           "the instrument's own impedance and with its accuracy statement. They are limits, not "
+           "a confidence interval; length, geometry and voltage are taken as stated.")
+    if any(t.source.title.startswith("typical of the class") for t in investigation.instruments):
+        yield ("Instruments are typical of their class. Where the one in hand differs, describe it "
+               "in the case from its data sheet.")
+    for tool in investigation.instruments:
+        if tool.note:
+            yield f"{tool.name[:1].upper()}{tool.name[1:]}: {tool.note}."

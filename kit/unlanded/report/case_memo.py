@@ -13,11 +13,12 @@ from pathlib import Path
 from typing import Any
 
 from .assumptions import assumptions_part
-from .circuit import circuit_part, run_results
-from .expected import expected_finding, expected_part, sheet_results
+from .circuit import capacitance_table, circuit_finding, circuit_part, run_results
+from .expected import annex_part, expected_finding, expected_part, sheet_results
 from .folder import Contents
 from .investigation import Investigation, investigate
-from .memo import Caution, Memo, Paragraph, Part, Verbatim
+from .memo import Block, Caution, Memo, Paragraph, Part, Verbatim
+from .sheet_table import sheet_table
 from .sources import sources_part
 
 __all__ = ["FINDINGS", "PARTS", "RESULTS", "Investigation", "case_contents", "investigate"]
@@ -37,9 +38,8 @@ CAUTION = (
 
 
 def summary_part(investigation: Investigation) -> Part:
-    """What was found, in a few sentences with the numbers: a paragraph of each of `FINDINGS`."""
-    found = (" ".join(finding(investigation)) for finding in FINDINGS)
-    return Part("Summary", tuple(Paragraph(text) for text in found if text))
+    """What was found, with the numbers: the blocks of each of `FINDINGS`."""
+    return Part("Summary", tuple(b for finding in FINDINGS for b in finding(investigation)))
 
 
 def caution_part(_: Investigation) -> Part:
@@ -59,10 +59,11 @@ def case_part(investigation: Investigation) -> Part:
     ))
 
 
-FINDINGS: tuple[Callable[[Investigation], Sequence[str]], ...] = (
+FINDINGS: tuple[Callable[[Investigation], Sequence[Block]], ...] = (
+    circuit_finding,
     expected_finding,
 )
-"""What the summary says: sentences of one subject each, none where the case does not ask."""
+"""What the summary says of each subject; nothing where the case does not ask."""
 
 PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
     summary_part,
@@ -71,6 +72,7 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
     expected_part,
     assumptions_part,
     sources_part,
+    annex_part,
     case_part,
 )
 """The parts of the memo, in its order."""
@@ -78,7 +80,7 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
 RESULTS: Mapping[str, Callable[[Investigation], Any]] = {
     "case": lambda i: {"title": i.case.content.title, "fingerprint": i.case.fingerprint},
     "run": run_results,
-    "sheet": lambda i: sheet_results(i.sheet),
+    "sheet": sheet_results,
 }
 """What results.json holds, by its key; None where the case does not ask."""
 
@@ -116,4 +118,6 @@ def case_contents(
     results = {key: made for key, make in RESULTS.items()
                if (made := make(investigation)) is not None}
     usual = "us-letter" if investigation.customary else "a4"
-    return Contents(memo, case.text.encode(), results, template, paper or usual)
+    extra = (sheet_table(investigation.sheet), capacitance_table(investigation))
+    return Contents(memo, case.text.encode(), results, template, paper or usual,
+                    tuple(t for t in extra if t.key not in {x.key for x in memo.tables}))

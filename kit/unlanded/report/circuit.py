@@ -5,29 +5,43 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
-import numpy as np
-
-from ..physics.section import Pipe, Plane, Section
+from ..physics.section import Conductor, Pipe, Plane, Section
 from ..study.ends import Bonded, Driven, Joined, Open, Termination, Through
 from ..study.run import Run
 from ..study.supply import Supply
-from ..units import show, show_length
+from ..units import FOOT, show, show_length
+from .cores import core_sizes
 from .cross_section import section_figure
 from .investigation import Investigation
-from .memo import Paragraph, Part
+from .memo import Block, Paragraph, Part
 from .tables import Column, Table
 from .words import listed, point_words
+
+MATRIX = 9  # conductors whose matrix a page is wide enough for
+_INCH = 0.0254
+
+
+def circuit_finding(investigation: Investigation) -> list[Block]:
+    """What the run is, and which conductors nothing is connected to."""
+    run = investigation.run
+    length = show_length(run.length, customary=investigation.customary)
+    return [Paragraph(f"The run is {length} long, supplied at {_supply_words(run.supply)}; "
+                      f"{_open_words(run)}.")]
 
 
 def circuit_part(investigation: Investigation) -> Part:
     """The run as computed: ends, capacitances, the section to scale."""
-    run = investigation.run
+    run, case = investigation.run, investigation.case.content
     length = show_length(run.length, customary=investigation.customary)
     text = f"A run of {length}, {_surround(run.section)}. Supply: {_supply_words(run.supply)}."
+    notes = [Paragraph(" ".join(p.split())) for p in case.notes.split("\n\n") if p.strip()]
     volts = [run.voltage(f"{name}@far") for name in run.section.names]
+    matrix: list[Block] = [capacitance_table(investigation)] if len(volts) <= MATRIX else [
+        Paragraph("The matrix of capacitances is in capacitance.csv.")]
     return Part("The circuit", (
-        Paragraph(text), conductor_table(run), capacitance_table(run.section, run.matrix),
-        section_figure(run.section, volts, title="Section, with the unloaded voltages"),
+        *notes, Paragraph(text), conductor_table(investigation), *matrix,
+        section_figure(run.section, volts, customary=investigation.customary,
+                       title="Section, with the unloaded voltages at the far end"),
     ))
 
 
@@ -40,33 +54,59 @@ def run_results(investigation: Investigation) -> Mapping[str, Any]:
         "frequency_Hz": run.frequency,
         "capacitance_F_per_m": run.matrix,
         "resistance_ohm_per_m": run.resistance,
-        "residual_A": run.residual,
+        "standing_residual_A": run.residual,
     }
 
 
-def conductor_table(run: Run) -> Table:
+def conductor_table(investigation: Investigation) -> Table:
     """Each conductor with its dimensions and what is done with its ends."""
-    columns = (Column("Conductor"), Column("Metal", "mm", "right"), Column("Cover", "mm", "right"),
-               Column("Permittivity", "", "right"), Column("Near end"), Column("Far end"))
+    run, customary = investigation.run, investigation.customary
+    sizes = core_sizes(investigation.case.content.run.cable)
+    unit = "in" if customary else "mm"
+    columns = (Column("Conductor"), Column("Size"), Column("Metal", unit, "right"),
+               Column("Cover", unit, "right"), Column("Permittivity", "", "right"),
+               Column("Near end"), Column("Far end"))
+    ends = zip(investigation.low.section.conductors, investigation.high.section.conductors,
+               strict=True)
     rows = tuple(
-        (c.name, f"{2e3 * c.radius:.3g}", f"{2e3 * c.outer:.3g}" if c.outer > c.radius else "bare",
-         f"{c.cover_permittivity:.3g}" if c.outer > c.radius else "–",
-         termination_words(run.near[c.name]), termination_words(run.far[c.name]))
-        for c in run.section.conductors
+        (c.name, f"{sizes[c.name].name}, {sizes[c.name].stranding}" if c.name in sizes else "–",
+         _diameter(c.radius, customary), _diameter(c.outer, customary) if _covered(c) else "bare",
+         _permittivity(c, low, high), termination_words(run.near[c.name]),
+         termination_words(run.far[c.name]))
+        for c, (low, high) in zip(run.section.conductors, ends, strict=True)
     )
-    return Table("conductors", "Conductors, outside diameters of metal and cover, and ends.",
-                 columns, rows)
+    return Table("conductors", "Conductors, and what is done with their ends.", columns, rows,
+                 "Outside diameters. The metal's is that of the smooth wire with the same "
+                 "capacitance, which for a strand is less than the circle round it.")
 
 
-def capacitance_table(section: Section, capacitance: np.ndarray) -> Table:
-    """The Maxwell matrix in pF/m."""
-    columns = (Column("pF/m"), *(Column(name, "", "right") for name in section.names))
+def _covered(c: Conductor) -> bool:
+    return c.outer > c.radius
+
+
+def _diameter(radius: float, customary: bool) -> str:
+    return f"{2 * radius / _INCH:.3f}" if customary else f"{2e3 * radius:.2f}"
+
+
+def _permittivity(c: Conductor, low: Conductor, high: Conductor) -> str:
+    if not _covered(c):
+        return "–"
+    least, most = low.cover_permittivity, high.cover_permittivity
+    band = f" ({least:g} … {most:g})".replace(" … ", "\u00a0…\u00a0") if least < most else ""
+    return f"{c.cover_permittivity:g}{band}"
+
+
+def capacitance_table(investigation: Investigation) -> Table:
+    """The Maxwell matrix in pF/m, or in pF/ft."""
+    run = investigation.run
+    unit, per = ("pF/ft", FOOT) if investigation.customary else ("pF/m", 1.0)
+    columns = (Column(unit), *(Column(name, "", "right") for name in run.section.names))
     rows = tuple(
-        (name, *(_fixed(value * 1e12) for value in row))
-        for name, row in zip(section.names, capacitance, strict=True)
+        (name, *(_fixed(value * 1e12 * per) for value in row))
+        for name, row in zip(run.section.names, run.matrix, strict=True)
     )
     return Table(
-        "capacitance", "Capacitance per metre, as the Maxwell matrix.", columns, rows,
+        "capacitance", "Capacitance per length, as the Maxwell matrix.", columns, rows,
         "On the diagonal: a conductor to all others and the surround. Off it, with the sign "
         "turned: directly between two conductors.",
     )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -43,7 +44,9 @@ class _Window:
         return self.width > 1.7 * self.height
 
 
-def section_figure(section: Section, voltages: ArrayLike, *, title: str = "Section") -> Figure:
+def section_figure(
+    section: Section, voltages: ArrayLike, *, title: str = "Section", customary: bool = False
+) -> Figure:
     """`section` to scale with the potential round it, shaded, with equipotentials.
 
     Parameters
@@ -51,6 +54,7 @@ def section_figure(section: Section, voltages: ArrayLike, *, title: str = "Secti
     section : as the physics takes it [m]
     voltages : (n,) of its conductors, RMS [V], complex or real
     title : of the picture
+    customary : sizes in inches
 
     The magnitude of the potential is shown. Equipotentials stand at the ticks of its scale
     and half-way between them.
@@ -58,23 +62,24 @@ def section_figure(section: Section, voltages: ArrayLike, *, title: str = "Secti
     volts = np.atleast_1d(np.asarray(voltages, dtype=complex))
     window = _window(section)
     field = _field(section, volts, window)
-    labels = [f"{cut(c.name, NAME)}  {show(float(abs(v)), 'V')}"
+    said = [f"{c.name} {_volts(abs(v), field.scale.high)}"
+            for c, v in zip(section.conductors, volts, strict=True)]
+    labels = [f"{cut(c.name, NAME)}  {_volts(abs(v), field.scale.high)}"
               for c, v in zip(section.conductors, volts, strict=True)]
     x, y = _axes(window, max(map(len, labels)))
     notes = _names(list(zip(section.conductors, labels, strict=True)), window, x)
-    bar, bar_note = _scale_bar(window)
-    words = [f"{c.name} {show(float(abs(v)), 'V')}"
-             for c, v in zip(section.conductors, volts, strict=True)]
+    bar, bar_note = _scale_bar(window, customary)
+    surround = _surround_words(section, customary)
     step = (field.scale.ticks[1][0] - field.scale.ticks[0][0]) / 2
     return Figure(
         key="section",
         title=title,
         x=x,
         y=y,
-        caption=_caption(section, step),
-        alternative=f"Section drawn to scale, {_surround_words(section)}, with the potential "
-        f"around it. Conductors: {listed(words)}.",
-        numbers=tuple(words),
+        caption=_caption(section, surround, step),
+        alternative=f"Section drawn to scale, {surround}, with the potential around it. "
+        f"Conductors: {listed(said)}.",
+        numbers=tuple(said),
         field=field,
         areas=(*_surround(section, window), *_conductors(section), bar),
         lines=_equipotentials(field, step),
@@ -82,6 +87,11 @@ def section_figure(section: Section, voltages: ArrayLike, *, title: str = "Secti
         aspect=min(0.62, max(0.36, (y.high - y.low) / (x.high - x.low) * 0.86 + 0.05)),
         to_scale=True,
     )
+
+
+def _volts(value: float, top: float) -> str:
+    """A voltage in words; below a ten-thousandth of the scale it is a rounding of 0 V."""
+    return show(value if value >= 1e-4 * top else 0.0, "V")
 
 
 def _window(section: Section) -> _Window:
@@ -114,7 +124,7 @@ def _field(section: Section, volts: NDArray[np.complex128], window: _Window) -> 
 def _equipotentials(field: Field, step: float) -> tuple[Line, ...]:
     from contourpy import contour_generator
 
-    contours = contour_generator(field.x, field.y, field.values)
+    contours: Any = contour_generator(field.x, field.y, field.values)
     count = math.floor(field.scale.high / step + 1e-9)
     return tuple(
         Line(path[:, 0], path[:, 1], style=None)
@@ -166,11 +176,9 @@ def _axes(window: _Window, letters: int) -> tuple[Axis, Axis]:
 def _names(pairs: list[tuple[Conductor, str]], window: _Window, x: Axis) -> list[Note]:
     if window.wide:
         return _above(pairs, window, x)
-    middle = (window.left + window.right) / 2
+    half = (len(pairs) + 1) // 2
     by_side = sorted(pairs, key=lambda p: p[0].x)
-    left = [p for p in by_side if p[0].x * _MM < middle - 1e-6 * window.width]
-    left = by_side[: max(len(left), len(pairs) // 2)] if left or len(pairs) > 1 else []
-    right = [p for p in by_side if p not in left]
+    left, right = by_side[:half], by_side[half:]
     return _column(left, window, leftward=True) + _column(right, window, leftward=False)
 
 
@@ -203,26 +211,30 @@ def _above(pairs: list[tuple[Conductor, str]], window: _Window, x: Axis) -> list
     return notes
 
 
-def _scale_bar(window: _Window) -> tuple[Area, Note]:
+def _scale_bar(window: _Window, customary: bool) -> tuple[Area, Note]:
     size = window.width / 2 if window.wide else window.height
-    length = round_step(0.15 * min(window.width, window.height))
+    unit = 25.4 if customary else 1.0
+    units = round_step(0.15 * min(window.width, window.height) / unit)
+    length = units * unit
     left, top = window.left, window.bottom - 0.045 * size
     thick = 0.012 * size
     bar = Area(np.array([left, left + length, left + length, left]),
                np.array([top - thick, top - thick, top, top]), "ink")
-    words = show(length / _MM, "m") if length >= 1000 else f"{length:.10g} mm"
+    words = f"{units:.10g} in" if customary else show(length / _MM, "m")
     return bar, Note(left + length + 0.01 * size, top - thick / 2, words)
 
 
-def _surround_words(section: Section) -> str:
+def _surround_words(section: Section, customary: bool) -> str:
     if isinstance(section.surround, Pipe):
-        return f"in an earthed metal surround of {2e3 * section.surround.radius:.4g} mm inside"
+        inside = 2 * section.surround.radius
+        size = f"{inside / 0.0254:.3g} in" if customary else f"{inside * _MM:.4g} mm"
+        return f"in an earthed metal surround of {size} inside"
     if isinstance(section.surround, Plane):
         return "over an earthed surface"
     return "in open air"
 
 
-def _caption(section: Section, step: float) -> str:
+def _caption(section: Section, surround: str, step: float) -> str:
     pipe = " The wall's thickness is not to scale." if isinstance(section.surround, Pipe) else ""
-    return (f"The section to scale, {_surround_words(section)}. Shading: potential, RMS; "
+    return (f"The section to scale, {surround}. Shading: potential, RMS; "
             f"a line every {show(step, 'V')}. Beside each conductor its computed voltage.{pipe}")

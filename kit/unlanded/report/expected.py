@@ -1,172 +1,113 @@
-"""The expected readings as the memo gives them."""
+"""The expected readings as the memo and the terminal give them."""
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+import math
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 import numpy as np
 
-from ..study.readings import Pair, ReadingSheet, SheetRow, length_curve, loading_curve
-from ..units import show
-from .figure import Figure
-from .figures import length_figure, loading_figure, sheet_marks
+from ..reference.instruments import Instrument
+from ..study.ends import Open, Through
+from ..study.readings import ReadingSheet, length_curve, loading_curve
+from ..units import FOOT, show
+from .figure import Figure, even_axis
+from .figures import length_figure, loading_figure, sheet_figure, sheet_marks
 from .investigation import Investigation
 from .memo import Block, Paragraph, Part
+from .sheet_lines import SheetLine, sheet_lines
 from .tables import Column, Table
-from .words import pair_words
+from .words import point_words
 
-INSTRUMENTS = 9  # columns of readings that a page holds
+INSTRUMENTS = 6  # columns of readings that a page holds
+LINES = 16  # of a table in the text; longer ones keep the pairs with earth, the annex the rest
+CHARTED = 10  # lines on the chart
+NEGLIGIBLE = 1e-6  # amperes: less is said to be less
+
+_HOW_TO_READ = (
+    "Each reading is as the instrument would round it; in brackets the lowest and the highest that "
+    "the limits of the inputs, the tolerance of the instrument's own impedance and its accuracy "
+    "allow, where they differ from it. Pairs that every instrument reads alike, to within 2 % or "
+    "its accuracy, share a line; those that an instrument pulls down come first. “OL” is over range; “not lit” says only that the "
+    "voltage is below the indicator's threshold."
+)
 
 
-def expected_finding(investigation: Investigation) -> list[str]:
-    """What to expect on the pair that matters most, with its numbers."""
-    sheet = investigation.sheet
-    pair = main_pair(sheet)
-    if pair is None:
-        return ["On every pair all instruments show nearly the same: no pair is fed only "
-                "through the capacitance of the run.", *_residual_sentence(sheet)]
-    return [*_pair_sentences(sheet, pair), *_residual_sentence(sheet)]
+def expected_finding(investigation: Investigation) -> list[Block]:
+    """What to expect on the conductors that nothing feeds, in sentences with numbers."""
+    lines = sheet_lines(investigation.sheet)
+    main = main_line(investigation, lines)
+    if main is None:
+        return [Paragraph("No instrument changes the voltage on any pair: all of them show nearly "
+                          "the same, and no pair is fed only through the capacitance of the run.")]
+    found: list[Block] = [Paragraph(_line_sentences(main))]
+    others = [line for line in lines if line.pulled and line.to_earth]
+    if len(others) > 1:
+        found.append(_unfed_table(others, investigation))
+    if words := [w for end in ("near", "far") for w in _load_sentences(investigation, end)]:
+        found.append(Paragraph(" ".join(words)))
+    return [*found, Paragraph(_residual_sentences(investigation, lines))]
 
 
 def expected_part(investigation: Investigation) -> Part:
-    """Every expected reading, and the pictures of the pair that matters most."""
-    figures: list[Figure] = []
-    if pair := main_pair(investigation.sheet):
-        figures = [_loading(investigation, pair), _length(investigation, pair)]
-    return readings_part(investigation.sheet, figures)
+    """The expected readings, and the pictures of the line that matters most."""
+    lines = _shown_lines(investigation)
+    blocks: list[Block] = [Paragraph(_HOW_TO_READ),
+                           *_tables(lines, investigation.instruments, "", "")]
+    if rest := _annex_lines(investigation):
+        blocks.insert(1, Paragraph(f"The tables have the pairs with earth; {len(rest)} more "
+                                   "lines are in the annex, every pair by itself in sheet.csv."))
+    charted = [line for line in lines if line.pulled][:CHARTED]
+    if charted:
+        names = [line.name for line in charted]
+        if len(set(names)) < len(names):
+            names = [line.place for line in charted]
+        blocks.append(sheet_figure(investigation.sheet, [line.first.pair for line in charted],
+                                   names=names))
+    if main := main_line(investigation, lines):
+        blocks.append(_loading(investigation, main))
+        if _meters(investigation):
+            blocks.append(_length(investigation, main))
+    return Part("Expected readings", tuple(blocks))
 
 
-def _loading(investigation: Investigation, pair: Pair) -> Figure:
-    ohms = np.geomspace(1e3, 1e9, 121)
-    expected, *ends = (loading_curve(run, pair, ohms) for run in investigation.runs)
-    band = np.min([expected, *ends], axis=0), np.max([expected, *ends], axis=0)
-    return loading_figure(pair, ohms, expected, sheet_marks(investigation.sheet, pair), band)
+def annex_part(investigation: Investigation) -> Part | None:
+    """The lines that the text has no room for; None where it has them all."""
+    lines = _annex_lines(investigation)
+    if not lines:
+        return None
+    return Part("Annex: readings on the other pairs",
+                _tables(lines, investigation.instruments, "annex-", ", pairs without earth"))
 
 
-def _length(investigation: Investigation, pair: Pair) -> Figure:
-    run = investigation.run
-    lengths = np.linspace(run.length / 40, 2 * run.length, 41)
-    tools = [t for t in investigation.instruments if t.kind in ("digital", "analogue")][:4]
-    curves = {t.name: length_curve(run, pair, t, lengths) for t in tools}
-    return length_figure(pair, lengths, curves, length=run.length,
-                         customary=investigation.customary)
+def main_line(investigation: Investigation, lines: Sequence[SheetLine]) -> SheetLine | None:
+    """The line that the memo is about; None where no instrument pulls a pair down.
 
-
-def main_pair(sheet: ReadingSheet) -> Pair | None:
-    """The pair that the memo is about: the highest unloaded voltage that an instrument pulls down.
-
-    Pulled down is to less than half; pairs with earth go before others; None where there is none.
+    That is where a reading was taken, else the highest unloaded voltage that an instrument pulls
+    down to less than half; pairs with earth go before others.
     """
-    pulled = [r for r in sheet.rows if abs(r.unloaded) > 0
-              and abs(r.voltage) < 0.5 * abs(r.unloaded)]
-    best = max(pulled, key=lambda r: ("earth" in (r.pair.a, r.pair.b), abs(r.unloaded)),
-               default=None)
-    return best.pair if best else None
+    pulled = [line for line in lines if line.pulled]
+    for taken in investigation.case.content.readings:
+        for line in pulled:
+            if any({taken.a, taken.b} == {p.a, p.b} for p in line.pairs):
+                return line
+    return max(pulled, default=None, key=lambda line: (
+        min(abs(r.voltage) for r in line.rows) < 0.5 * abs(line.first.unloaded),
+        line.to_earth, abs(line.first.unloaded)))
 
 
-def _pair_sentences(sheet: ReadingSheet, pair: Pair) -> list[str]:
-    rows = sorted((r for r in sheet.rows if r.pair == pair and abs(r.current) > 0),
-                  key=lambda r: abs(r.voltage))
-    least, most = rows[0], rows[-1]
-    where = pair_words(pair.a, pair.b)
-    said = [
-        f"On {where}, the unloaded voltage is {show(abs(most.unloaded), 'V')} behind a "
-        f"capacitance of {show(most.source_capacitance, 'F')}, which can drive "
-        f"{show(abs(most.unloaded / most.source_impedance), 'A')} through a short circuit.",
-        f"If all is as described, {_tool(most)} shows {most.reading.text}, "
-        f"{_range_words(most)}, and {_tool(least)} shows {least.reading.text}, "
-        f"{_range_words(least)}.",
-    ]
-    if len(rows) > 1:
-        said.append("Both together are what capacitive coupling looks like; a reading that stays "
-                    "up on the instrument of low impedance is not explained by it.")
-    return said
+def sheet_tables(sheet: ReadingSheet) -> tuple[Table, ...]:
+    """The whole sheet, every pair by itself, end by end."""
+    lines = sheet_lines(sheet, merged=False)
+    ends = dict.fromkeys(line.end for line in lines)
+    return tuple(
+        table for end in ends
+        for table in _tables([line for line in lines if line.end == end], sheet.instruments,
+                             f"{end.replace(' ', '-')}-", f", {end}"))
 
 
-def _residual_sentence(sheet: ReadingSheet) -> list[str]:
-    worst = max(sheet.rows, key=lambda r: abs(r.residual_added), default=None)
-    if worst is None or abs(worst.residual_added) == 0:
-        return []
-    return [f"What a measurement adds to the residual current is at most "
-            f"{show(abs(worst.residual_added), 'A')}, with {_tool(worst)} on "
-            f"{pair_words(worst.pair.a, worst.pair.b)}."]
-
-
-def _tool(row: SheetRow) -> str:
-    return f"the instrument “{row.instrument.name}”"
-
-
-def _range_words(row: SheetRow) -> str:
-    if row.low.text == row.high.text:
-        return "over the whole range of the inputs"
-    return f"between {row.low.text} and {row.high.text} over the range of the inputs"
-
-
-def readings_part(sheet: ReadingSheet, figures: Sequence[Figure] = ()) -> Part:
-    """Every expected reading, end by end, what stands behind each pair, and the pictures."""
-    blocks: list[Block] = [
-        Paragraph("Each reading is as the instrument would round it; in brackets its lowest and "
-                  "highest over the range of the inputs, where they differ. “OL”: over range. "
-                  "“Not lit” says only that the voltage is below the indicator's threshold."),
-    ]
-    for end, pairs in _ends(sheet.pairs).items():
-        groups = range(0, len(sheet.instruments), INSTRUMENTS)
-        blocks += [_readings(sheet, end, pairs, i, sheet.instruments[start:start + INSTRUMENTS])
-                   for i, start in enumerate(groups, 1)]
-        blocks.append(_behind(sheet, end, pairs))
-    return Part("Expected readings", (*blocks, *figures))
-
-
-def _ends(pairs: Iterable[Pair]) -> dict[str, list[Pair]]:
-    found: dict[str, list[Pair]] = {}
-    for pair in pairs:
-        ends = {p.rpartition("@")[2] for p in (pair.a, pair.b) if "@" in p}
-        name = f"{ends.pop()} end" if len(ends) == 1 else "supply and between the ends"
-        found.setdefault(name, []).append(pair)
-    return found
-
-
-def _readings(
-    sheet: ReadingSheet, end: str, pairs: Sequence[Pair], part: int, tools: Sequence[Any]
-) -> Table:
-    cells = {(r.pair, r.instrument.key): _cell(r) for r in sheet.rows}
-    more = f", {part}" if part > 1 else ""
-    return Table(
-        f"readings-{end.replace(' ', '-')}{f'-{part}' if part > 1 else ''}",
-        f"Expected readings, {end}{more}.",
-        (Column("Pair"), *(Column(t.name, "", "right") for t in tools)),
-        tuple((pair_words(p.a, p.b, end="end" not in end),
-               *(cells.get((p, t.key), "–") for t in tools)) for p in pairs),
-    )
-
-
-def _cell(row: SheetRow) -> str:
-    same = row.low.text == row.high.text == row.reading.text
-    return row.reading.text if same else f"{row.reading.text} ({row.low.text} … {row.high.text})"
-
-
-def _behind(sheet: ReadingSheet, end: str, pairs: Sequence[Pair]) -> Table:
-    first: dict[Pair, SheetRow] = {}
-    for row in sheet.rows:
-        first.setdefault(row.pair, row)
-    rows = tuple(
-        (pair_words(p.a, p.b, end="end" not in end), show(abs(r.unloaded), "V"),
-         show(abs(r.source_impedance), "Ω"), _most_residual(sheet, p), r.remark)
-        for p in pairs if (r := first.get(p)) is not None
-    )
-    return Table(
-        f"behind-{end.replace(' ', '-')}", f"What stands behind each pair, {end}.",
-        (Column("Pair"), Column("Unloaded", "", "right"), Column("Source impedance", "", "right"),
-         Column("Adds to residual", "", "right"), Column("Remark")), rows,
-        "Adds to residual: the most that any of the instruments adds to the residual current.")
-
-
-def _most_residual(sheet: ReadingSheet, pair: Pair) -> str:
-    return show(max(abs(r.residual_added) for r in sheet.rows if r.pair == pair), "A")
-
-
-def sheet_results(sheet: ReadingSheet) -> list[Mapping[str, Any]]:
+def sheet_results(investigation: Investigation) -> list[Mapping[str, Any]]:
     """The sheet's rows for results.json; each key names its unit."""
     return [
         {
@@ -184,5 +125,145 @@ def sheet_results(sheet: ReadingSheet) -> list[Mapping[str, Any]]:
             "loading_error": r.loading_error,
             "remark": r.remark,
         }
-        for r in sheet.rows
+        for r in investigation.sheet.rows
     ]
+
+
+def _shown_lines(investigation: Investigation) -> list[SheetLine]:
+    lines = sheet_lines(investigation.sheet)
+    return [line for line in lines if len(lines) <= LINES or line.to_earth]
+
+
+def _annex_lines(investigation: Investigation) -> list[SheetLine]:
+    lines = sheet_lines(investigation.sheet)
+    return [line for line in lines if len(lines) > LINES and not line.to_earth]
+
+
+def _line_sentences(line: SheetLine) -> str:
+    row = line.first
+    behind = (f"a capacitance of {show(row.source_capacitance, 'F')}"
+              if not math.isnan(row.source_capacitance)
+              else f"an impedance of {show(abs(row.source_impedance), 'Ω')}")
+    said = [f"With no instrument connected, {line.place}, carries {show(abs(row.unloaded), 'V')} behind "
+            f"{behind}, which can drive {show(line.short_circuit, 'A')} through a short circuit."]
+    rows = sorted((r for r in line.rows if r.pair == row.pair and abs(r.current) > 0),
+                  key=lambda r: abs(r.voltage))
+    if len(rows) > 1:
+        most, least = rows[-1].instrument, rows[0].instrument
+        said.append(f"If all is as described, the {most.name} shows {line.reading(most, 'V')}, "
+                    f"and the {least.name} {line.reading(least, 'V')}.")
+    if len(rows) > 1 and not math.isnan(row.source_capacitance):
+        said.append("Both together are what capacitive coupling looks like; a reading that stays "
+                    "up on the instrument of low impedance is not explained by it.")
+    return " ".join(said)
+
+
+def _unfed_table(lines: Sequence[SheetLine], investigation: Investigation) -> Table:
+    tools = _meters(investigation)
+    ends = dict.fromkeys((*tools[:1], *tools[-1:]))
+    return Table(
+        "unfed", "Conductors that nothing feeds, to earth.",
+        (Column("Pair"), Column("Unloaded", "", "right"), Column("Can drive", "", "right"), *(Column(t.name, "V", "right") for t in ends)),
+        tuple((f"{line.name}, {line.end}", show(abs(line.first.unloaded), "V"),
+               show(line.short_circuit, "A"), *(line.reading(t) for t in ends))
+              for line in lines),
+        "Can drive: the current through a short circuit.")
+
+
+def _meters(investigation: Investigation) -> list[Instrument]:
+    """The instruments that show a number of volts, highest impedance first."""
+    frequency = investigation.run.frequency
+    return sorted((t for t in investigation.instruments if t.kind in ("digital", "analogue")),
+                  key=lambda t: abs(complex(t.ranges[-1].burden.admittance(frequency))))
+
+
+def _load_sentences(investigation: Investigation, end: str) -> list[str]:
+    """The voltage across each load on a conductor that nothing feeds."""
+    run = investigation.run
+    idle = (Open, Through)
+    found = []
+    for name, t in getattr(run, end).items():
+        if not (isinstance(t, Through) and isinstance(run.near[name], idle)
+                and isinstance(run.far[name], idle)):
+            continue
+        to = f"{t.to}@{end}" if t.to in run.section.names else t.to
+        volts = [abs(r.voltage(f"{name}@{end}", to)) for r in investigation.runs]
+        found.append(f"The {t.label}, from {name} to {point_words(t.to)}, has "
+                     f"{show(volts[0], 'V')} ({show(min(volts), 'V')} to {show(max(volts), 'V')}) "
+                     "across it, although nothing feeds it.")
+    return found
+
+
+def _residual_sentences(investigation: Investigation, lines: Sequence[SheetLine]) -> str:
+    said = (f"The run by itself sends {show(abs(investigation.run.residual), 'A')} back by earth, "
+            "which a residual-current device in front of it sees.")
+    worst = max((r for line in lines for r in line.rows), key=lambda r: abs(r.residual_added))
+    line = next(x for x in lines if worst in x.rows)
+    return (f"{said} The most that a measurement adds to that is "
+            f"{show(abs(worst.residual_added), 'A')}, by the {worst.instrument.name} on "
+            f"{line.name}.")
+
+
+def _tables(
+    lines: Sequence[SheetLine], tools: Sequence[Instrument], key: str, what: str
+) -> tuple[Table, ...]:
+    """What every instrument shows, in tables as wide as a page, and what stands behind it."""
+    count = math.ceil(len(tools) / INSTRUMENTS)
+    size = math.ceil(len(tools) / count)
+    parts = [tools[i:i + size] for i in range(0, len(tools), size)]
+    numbered = [f", {i} of {count}" if count > 1 else "" for i in range(1, count + 1)]
+    return (*(_readings(lines, part, f"{key}readings{f'-{i}' if count > 1 else ''}",
+                        f"Expected readings{what}{number}.")
+              for i, (part, number) in enumerate(zip(parts, numbered, strict=True), 1)),
+            _behind(lines, f"{key}behind", f"What stands behind each pair{what}."))
+
+
+def _readings(
+    lines: Sequence[SheetLine], tools: Sequence[Instrument], key: str, caption: str
+) -> Table:
+    units = {t.key: "V" if t.kind in ("digital", "analogue") else "" for t in tools}
+    return Table(
+        key, caption,
+        (Column("Pair"),
+         *(Column(t.name, units[t.key], "right" if units[t.key] else "left") for t in tools)),
+        tuple((f"{line.name}\n{line.end}", *(line.reading(t).replace(" (", "\n(") for t in tools))
+              for line in lines))
+
+
+def _behind(lines: Sequence[SheetLine], key: str, caption: str) -> Table:
+    rows = tuple(
+        (f"{line.name}\n{line.end}", show(abs(line.first.unloaded), "V"),
+         show(abs(line.first.source_impedance), "Ω"), _amperes(line.short_circuit),
+         _amperes(line.residual_added), line.first.remark)
+        for line in lines
+    )
+    return Table(
+        key, caption,
+        (Column("Pair"), Column("Unloaded", "", "right"),
+         Column("Source", "", "right"), Column("Can drive", "", "right"),
+         Column("Adds to residual", "", "right"), Column("Remark")), rows,
+        "Source: the impedance behind the pair. Can drive: the current through a short circuit at "
+        "the pair. Adds to residual: the most that an instrument on one of the pairs adds.")
+
+
+def _amperes(value: float) -> str:
+    if not math.isfinite(value):
+        return "–"
+    return show(value, "A") if value >= NEGLIGIBLE or not value else f"< {show(NEGLIGIBLE, 'A')}"
+
+
+def _loading(investigation: Investigation, line: SheetLine) -> Figure:
+    pair, ohms = line.first.pair, np.geomspace(1e3, 1e9, 121)
+    curves = [loading_curve(run, pair, ohms) for run in investigation.runs]
+    return loading_figure(pair, ohms, curves[0], sheet_marks(investigation.sheet, pair),
+                          (np.min(curves, axis=0), np.max(curves, axis=0)))
+
+
+def _length(investigation: Investigation, line: SheetLine) -> Figure:
+    run, pair = investigation.run, line.first.pair
+    unit = FOOT if investigation.customary else 1.0
+    longest = unit * even_axis("", "", 0.0, 1.8 * run.length / unit).high
+    lengths = np.linspace(longest / 60, longest, 60)
+    curves = {t.name: length_curve(run, pair, t, lengths) for t in _meters(investigation)[:4]}
+    return length_figure(pair, lengths, curves, length=run.length,
+                         customary=investigation.customary)

@@ -13,7 +13,18 @@ from numpy.typing import ArrayLike
 from ..errors import Refused
 from ..units import FOOT, show, show_length
 from .cross_section import section_figure
-from .figure import Axis, Band, Figure, Line, Note, Points, Reference, even_axis, log_axis
+from .figure import (
+    Axis,
+    Band,
+    Figure,
+    Floats,
+    Line,
+    Note,
+    Points,
+    Reference,
+    even_axis,
+    log_axis,
+)
 from .labels import Flag, flags
 from .words import cut, listed, pair_words
 
@@ -71,7 +82,7 @@ def loading_figure(
     top = max(float(np.max(high)), *(m.voltage for m in shown), 1e-3)
     y = even_axis("Voltage, RMS", "V", 0.0, top)
     where = pair_words(pair.a, pair.b)
-    labels = [f"{cut(m.name, 26)}: {m.reading}" for m in shown]
+    labels = [f"{cut(m.name, 34)}: {m.reading}" for m in shown]
     return Figure(
         key="loading",
         title=f"Reading against instrument impedance: {where}",
@@ -84,7 +95,7 @@ def loading_figure(
         f"{show(volts[-1], 'V')} at {show(x.high, 'Ω')}. "
         f"Instruments: {listed(labels) or 'none'}.",
         numbers=tuple(labels),
-        bands=(Band(ohms, low, high, "lowest to highest credible", 0),) if band else (),
+        bands=(Band(ohms, low, high, "over the covers' range of permittivity", 0),) if band else (),
         lines=(Line(ohms, volts, "expected", 0),),
         points=_marked(shown),
         notes=_flagged(shown, labels, (x, y), (ohms, volts)),
@@ -93,7 +104,8 @@ def loading_figure(
 
 def _marked(marks: Sequence[InstrumentMark]) -> tuple[Points, ...]:
     return tuple(
-        Points([m.impedance], [m.voltage], style=i + 1, texts=(f"{m.name}: {m.reading}",))
+        Points(np.array([m.impedance]), np.array([m.voltage]), style=i + 1,
+               texts=(f"{m.name}: {m.reading}",))
         for i, m in enumerate(marks)
     )
 
@@ -102,7 +114,7 @@ def _flagged(
     marks: Sequence[InstrumentMark],
     labels: Sequence[str],
     axes: tuple[Axis, Axis],
-    curve: tuple[np.ndarray, np.ndarray],
+    curve: tuple[Floats, Floats],
 ) -> tuple[Note, ...]:
     x, y = axes
     spots = [(x.fraction(m.impedance), y.fraction(m.voltage)) for m in marks]
@@ -149,35 +161,39 @@ def length_figure(
           for name, v in volts.items()]
     where = pair_words(pair.a, pair.b)
     first = next(iter(volts))
-    ends = (0.0, float(along[-1]))
+    end = show_length(float(along[-1]) * size, customary=customary)
     return Figure(
         key="length",
         title=f"Reading against run length: {where}",
-        x=even_axis("Run length", unit, *ends),
+        x=even_axis("Run length", unit, 0.0, float(along[-1])),
         y=even_axis("Voltage, RMS", "V", 0.0, max(top, 1e-3)),
         caption=f"Voltage on {where}, against the length of the run, on each instrument. "
         f"{_band_words(band, f', for {first}')}The run as it is: {here}.",
-        alternative=f"Curves rising with run length up to {show_length(float(along[-1]) * size, customary=customary)}. "
-        f"At {here}: {listed(at)}.",
+        alternative=f"Curves of voltage over run lengths up to {end}. At {here}: {listed(at)}.",
         numbers=tuple(at),
-        bands=(Band(along, edges[0], edges[1], f"credible range, {first}", 0),) if band else (),
+        bands=(Band(along, edges[0], edges[1], f"over the covers' range of permittivity, {first}", 0),) if band else (),
         references=(Reference(length / size, "x", f"this run, {here}"),),
         lines=tuple(Line(along, v, name, i) for i, (name, v) in enumerate(volts.items())),
     )
 
 
 def _band_words(band: object, whose: str = "") -> str:
-    return f"Shaded: from the lowest to the highest credible value{whose}. " if band else ""
+    return f"Shaded: over the covers' range of permittivity{whose}. " if band else ""
 
 
 def sheet_figure(
-    sheet: ReadingSheet, pairs: Sequence[Pair] | None = None, *, key: str = "sheet"
+    sheet: ReadingSheet,
+    pairs: Sequence[Pair] | None = None,
+    *,
+    names: Sequence[str] | None = None,
+    key: str = "sheet",
 ) -> Figure:
     """The reading sheet as a chart: a row for each pair, a marker for each instrument.
 
     The voltage across each instrument, on a log scale from 10 mV or above; bars run from its
     lowest to its highest reading; hollow markers are indicators that do not light. `pairs`
-    chooses the rows, at most 16; all of the sheet's without it.
+    chooses the rows, at most 16; all of the sheet's without it. `names` are the words beside
+    them, the pairs' own without.
     """
     chosen = tuple(sheet.pairs if pairs is None else pairs)
     if not 0 < len(chosen) <= ROWS:
@@ -185,10 +201,10 @@ def sheet_figure(
     rows = [r for r in sheet.rows if r.pair in chosen]
     x = _sheet_scale(rows)
     height = {p: float(i) for i, p in enumerate(chosen)}
-    labels = [cut(pair_words(p.a, p.b), 40) for p in chosen]
+    words = dict(zip(chosen, names or [pair_words(p.a, p.b) for p in chosen], strict=True))
+    labels = [cut(w, 44) for w in words.values()]
     ticks = tuple(zip(height.values(), labels, strict=True))
-    numbers = tuple(f"{pair_words(r.pair.a, r.pair.b)}, {r.instrument.name}: {r.reading.text}"
-                    for r in rows)
+    numbers = tuple(f"{words[r.pair]}, {r.instrument.name}: {r.reading.text}" for r in rows)
     return Figure(
         key=key,
         title="Expected readings",
@@ -197,7 +213,7 @@ def sheet_figure(
         caption="The voltage across each instrument at each pair, RMS, on a log scale. Bars: "
         "lowest to highest reading. Hollow: an indicator that does not light.",
         alternative="Chart of the reading sheet, a row for each pair and a marker for each "
-        f"instrument; the same values stand in the table of readings. {listed(labels)}.",
+        f"instrument. {'; '.join(numbers)}.",
         numbers=numbers,
         points=tuple(p for i, tool in enumerate(sheet.instruments)
                      for p in _row_points([r for r in rows if r.instrument == tool], i,
@@ -221,18 +237,17 @@ def _row_points(
 ) -> list[Points]:
     """One instrument's markers, set off a little from its row so that equal ones stay apart."""
     offset = 0.66 * (style / (count - 1) - 0.5) if count > 1 else 0.0
-    made = []
+    made: list[Points] = []
     for hollow in (False, True):
         group = [r for r in rows if r.reading.text.startswith("not ") == hollow]
         if not group:
             continue
-        ends = [_ends(r) for r in group]
-        label = rows[0].instrument.name if not made else ""
+        low, high = np.transpose([_ends(r) for r in group])
         made.append(Points(
-            [max(abs(r.voltage), FLOOR) for r in group],
-            [height[r.pair] + offset for r in group],
-            label, style, tuple(f"{r.instrument.name}: {r.reading.text}" for r in group),
-            [e[0] for e in ends], [e[1] for e in ends], hollow))
+            np.array([max(abs(r.voltage), FLOOR) for r in group]),
+            np.array([height[r.pair] + offset for r in group]),
+            rows[0].instrument.name if not made else "", style,
+            tuple(f"{r.instrument.name}: {r.reading.text}" for r in group), low, high, hollow))
     return made
 
 

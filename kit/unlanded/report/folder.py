@@ -34,6 +34,7 @@ class Contents:
         name the unit; a complex number is written as its real and imaginary parts
     template : a firm's own .docx
     paper : "a4" or "us-letter"
+    more_tables : written beside the memo's own as CSV, too large for it
     """
 
     memo: Memo
@@ -41,6 +42,7 @@ class Contents:
     results: Mapping[str, Any]
     template: Path | None = None
     paper: str = "a4"
+    more_tables: tuple[Table, ...] = ()
 
 
 def write_folder(target: Path, contents: Contents, *, overwrite: bool = False) -> tuple[Path, ...]:
@@ -137,7 +139,7 @@ def _fill(room: Path, contents: Contents) -> None:
     for name in ("figures", "tables"):
         (room / name).mkdir()
     pictures = draw_all(memo.figures, room / "figures")
-    write_tables(memo.tables, room / "tables")
+    write_tables((*memo.tables, *contents.more_tables), room / "tables")
     (room / "memo.docx").write_bytes(
         word_bytes(memo, pictures["png"], template=contents.template, paper=contents.paper))
     (room / "memo.pdf").write_bytes(pdf_bytes(memo, pictures["svg"], paper=contents.paper))

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from itertools import product
 
 # Of a picture 160 mm wide with words of 8 points; a live figure has about the same proportions.
-LETTER = 0.0115  # width of a letter, as a fraction of the x axis
+LETTER = 0.0100  # width of a letter, as a fraction of the x axis
 ROW = 0.066  # height of a row of words, as a fraction of the y axis
 GAP = 0.008
 ROWS = 13
@@ -74,7 +74,7 @@ def flags(
 def _candidates(point: tuple[float, float], width: float) -> Iterator[Flag]:
     x, y = point
     first = 1 if y < 0.5 else -1
-    for way, row, leftward in product((first, -first), range(1, ROWS + 1), (False, True)):
+    for way, leftward, row in product((first, -first), (False, True), range(1, ROWS + 1)):
         yield Flag(x, y, y + way * (row + 0.2) * ROW, width, leftward)
 
 

@@ -116,17 +116,19 @@ def facts(memo: Memo) -> tuple[tuple[str, str], ...]:
         ("Site", memo.site),
         ("Case file", memo.case_file),
         ("Fingerprint", memo.fingerprint),
-        ("Date", long_date(memo.date)),
+        ("Date", long_date(memo.date, memo.language)),
     )
     return tuple(line for line in lines if line[1].strip())
 
 
-def long_date(date: datetime.date) -> str:
+def long_date(date: datetime.date, language: str = "en-GB") -> str:
     """A date that no reader takes for another.
 
-    >>> long_date(datetime.date(2026, 3, 9))
-    '9 March 2026'
+    >>> long_date(datetime.date(2026, 3, 9)), long_date(datetime.date(2026, 3, 9), "en-US")
+    ('9 March 2026', 'March 9, 2026')
     """
     months = ("January", "February", "March", "April", "May", "June", "July", "August",
               "September", "October", "November", "December")
-    return f"{date.day} {months[date.month - 1]} {date.year}"
+    month = months[date.month - 1]
+    american = language == "en-US"
+    return f"{month} {date.day}, {date.year}" if american else f"{date.day} {month} {date.year}"

@@ -23,6 +23,8 @@ from .tables import Table, shares
 from .words import bound, printable
 
 PAPERS = {"a4": (210, 297), "us-letter": (215.9, 279.4)}  # mm
+WHOLE = 14  # rows of a table that is kept on one page
+SANS, MONO = "Arial", "Courier New"  # wherever Word is, and with equals of the same widths elsewhere
 FOOTER = "A calculation. It never proves a conductor dead."
 
 _ALIGN = {"left": WD_ALIGN_PARAGRAPH.LEFT, "right": WD_ALIGN_PARAGRAPH.RIGHT,
@@ -106,20 +108,22 @@ class _Writer:
             outline.set(qn("w:val"), str(level - 1))
             found._p.get_or_add_pPr().append(outline)
 
-    def bullets(self, items: tuple[str, ...], box: Any = None) -> None:
+    def bullets(self, items: tuple[str, ...], *, boxed: bool = False) -> None:
+        """A list; in a box all of it stays on one page."""
         for item in items:
             found = self.paragraph(item, "List Bullet")
             if found.style.name != "List Bullet":
                 found.runs[0].text = f"•  {found.runs[0].text}"
-            if box:
-                box(found)
+            if boxed:
+                _boxed(found)
+                found.paragraph_format.keep_with_next = item is not items[-1]
 
     def caution(self, block: Caution) -> None:
         title = self.paragraph(block.title)
         title.runs[0].bold = True
         title.paragraph_format.keep_with_next = True
         _boxed(title)
-        self.bullets(block.items, _boxed)
+        self.bullets(block.items, boxed=True)
 
     def verbatim(self, text: str) -> None:
         found = self.paragraph("", "No Spacing")
@@ -127,9 +131,9 @@ class _Writer:
         found.alignment = WD_ALIGN_PARAGRAPH.LEFT
         _shaded(found, "F5F6F8")
         for run in found.runs:
-            run.font.name = "Consolas"
-            run.font.size = Pt(8)
-            run._r.rPr.rFonts.set(qn("w:cs"), "Consolas")
+            run.font.name = MONO
+            run.font.size = Pt(7)
+            run._r.rPr.rFonts.set(qn("w:cs"), MONO)
 
     def caption(self, kind: str, text: str) -> Any:
         self.counts[kind] += 1
@@ -159,17 +163,21 @@ class _Writer:
             made.style = "Table Grid"
         made.autofit = False
         _ruled(made)
-        size = Pt(9 if len(table.columns) < 7 else 8 if len(table.columns) < 9 else 7)
+        size = Pt(9 if len(table.columns) < 6 else 8 if len(table.columns) < 7 else 7)
+        whole = len(table.rows) <= WHOLE
         widths = [int(self.width * share) for share in shares(table)]
         for number, (row, cells) in enumerate(
             zip(made.rows, (table.titles, *table.rows), strict=True)
         ):
             _row_marks(row, heading=number == 0)
+            kept = whole and (number < len(table.rows) or bool(table.note))
             for cell, text, column, width in zip(
                 row.cells, cells, table.columns, widths, strict=True
             ):
                 cell.width = width
-                _fill(cell, bound(printable(text)), _ALIGN[column.align], size, bold=number == 0)
+                line = _fill(cell, bound(printable(text)), _ALIGN[column.align], size)
+                line.runs[0].bold = number == 0 or None
+                line.paragraph_format.keep_with_next = kept or None
         for column, width in zip(made.columns, widths, strict=True):
             column.width = width
         if table.note:
@@ -205,12 +213,12 @@ def _look(document: Any, paper: str) -> None:
     page.page_width, page.page_height = (Mm(v) for v in PAPERS[paper])
     page.left_margin = page.right_margin = page.bottom_margin = Mm(25)
     page.top_margin = Mm(27)
-    sizes = {"Normal": 10.5, "Title": 20, "Heading 1": 14, "Heading 2": 11.5, "Caption": 9,
-             "List Bullet": 10.5, "No Spacing": 9}
+    sizes = {"Normal": 10, "Title": 20, "Heading 1": 14, "Heading 2": 11.5, "Caption": 9,
+             "List Bullet": 10, "No Spacing": 9}
     for name, size in sizes.items():
         style = document.styles[name]
         style.font.size = Pt(size)
-        _typeface(style, "Calibri")
+        _typeface(style, SANS)
         if name not in ("Normal", "List Bullet", "No Spacing"):
             style.font.color.rgb = _INK
     document.styles["Normal"].paragraph_format.space_after = Pt(6)
@@ -362,14 +370,14 @@ def _row_marks(row: Any, *, heading: bool) -> None:
         marks.append(mark)
 
 
-def _fill(cell: Any, text: str, align: Any, size: Any, *, bold: bool) -> None:
+def _fill(cell: Any, text: str, align: Any, size: Any) -> Any:
     line = cell.paragraphs[0]
     line.alignment = align
     line.paragraph_format.space_after = Pt(1)
     line.paragraph_format.space_before = Pt(1)
     run = line.add_run(text)
     run.font.size = size
-    run.bold = bold or None
+    return line
 
 
 def _reproducible(document: bytes) -> bytes:

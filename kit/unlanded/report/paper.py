@@ -34,7 +34,7 @@ _FILL: dict[str, dict[str, Any]] = {
     "shade": {"facecolor": "#00000012", "edgecolor": "none"},
     "ink": {"facecolor": "#222222", "edgecolor": "none"},
 }
-_RULES = {
+_RULES: dict[Any, Any] = {
     "svg.hashsalt": "unlanded",
     "font.family": "DejaVu Sans",
     "font.size": 8.0,
@@ -119,7 +119,7 @@ def _field(canvas: Canvas, axes: Axes, field: Field) -> None:
     bar = canvas.colorbar(image, ax=axes, shrink=0.8, pad=0.02, aspect=24)
     bar.set_ticks([v for v, _ in field.scale.ticks], labels=[t for _, t in field.scale.ticks])
     bar.set_label(field.scale.title)
-    bar.outline.set_linewidth(0.5)  # type: ignore[operator]
+    bar.outline.set_linewidth(0.5)
 
 
 def _area(axes: Axes, area: Area) -> None:
@@ -144,15 +144,20 @@ def _series(axes: Axes, figure: Figure) -> None:
         if points.x_low is not None and points.x_high is not None:
             axes.hlines(points.y, points.x_low, points.x_high, color=paint, linewidth=1.6,
                         alpha=0.55, zorder=3)
-        axes.plot(points.x, points.y, linestyle="none", marker=_SHAPE[shape(points.style)],
-                  markersize=5.0 * _SIZE.get(shape(points.style), 1.0), color=paint, markeredgecolor=paint if points.hollow else "white",
-                  markeredgewidth=1.0 if points.hollow else 0.5, label=points.label or None,
-                  markerfacecolor="white" if points.hollow else paint, zorder=4)
+        form = shape(points.style)
+        face, edge = ("white", paint) if points.hollow else (paint, "white")
+        axes.plot(points.x, points.y, linestyle="none", marker=_SHAPE[form], color=paint,
+                  markersize=5.0 * _SIZE.get(form, 1.0), markerfacecolor=face,
+                  markeredgecolor=edge, markeredgewidth=1.0 if points.hollow else 0.5,
+                  label=points.label or None, zorder=4)
 
 
 def _reference(axes: Axes, value: float, axis: str, label: str) -> None:
-    ink = {"color": "#444444", "linewidth": 0.9, "linestyle": (0, (6, 2, 1, 2)), "zorder": 2}
-    words = {"fontsize": 7.5, "color": "#222222", "path_effects": _HALO, "zorder": 6}
+    ink: dict[str, Any] = {"color": "#444444", "linewidth": 0.9, "zorder": 2,
+                           "linestyle": (0, (6, 2, 1, 2))}
+    words: dict[str, Any] = {
+        "fontsize": 7.5, "color": "#222222", "path_effects": _HALO, "zorder": 6,
+    }
     if axis == "x":
         axes.axvline(value, **ink)
         axes.annotate(label, (value, 1), (0, 3), xycoords=("data", "axes fraction"),
@@ -172,8 +177,8 @@ def _note(axes: Axes, note: Note) -> None:
     align = {"left": "left", "middle": "center", "right": "right"}[note.align]
     pad = {"left": 2, "middle": 0, "right": -2}[note.align]
     axes.annotate(note.text, (note.x, note.y), (pad, 0), textcoords="offset points", ha=align,
-                  va="bottom" if note.align == "middle" else "center", color=ink, fontsize=7.5, path_effects=_HALO, zorder=6,
-                  annotation_clip=False)
+                  va="bottom" if note.align == "middle" else "center", color=ink, fontsize=7.5,
+                  path_effects=_HALO, zorder=6, annotation_clip=False)
 
 
 def _legend(canvas: Canvas, axes: Axes) -> None:

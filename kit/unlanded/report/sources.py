@@ -2,17 +2,42 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+
 from ..reference.records import Source
+from .cores import core_sources
 from .investigation import Investigation
 from .memo import Bullets, Paragraph, Part
+from .words import listed
+
+METHODS = (
+    ("capacitances, by multipoles round each covered conductor",
+     Source("Clements, Paul and Adams, IEEE Transactions on Electromagnetic Compatibility",
+            "from memory", year=1975)),
+    ("return by earth, first term of the series", Source("Carson", "from memory", year=1926)),
+)
 
 
 def sources_part(investigation: Investigation) -> Part:
-    """The sources of the values used, each once."""
-    sources: tuple[Source, ...] = tuple(i.source for i in investigation.instruments)
-    words = tuple(dict.fromkeys(str(s) for s in sources))
+    """The sources of the values and methods used, each once, with what came from it."""
+    said: dict[str, dict[str, None]] = {}
+    for what, source in _used(investigation):
+        said.setdefault(str(source), {})[what] = None
+    lines = tuple(f"{_capital(listed(list(what)))}: {source}." for source, what in said.items())
     return Part("Sources", (
         Paragraph("“From memory” marks a value recalled and still to be checked against its "
-                  "source; “common practice” one of the trade, with no source."),
-        Bullets(words),
+                  "source; “common practice” one of the trade, with no source. What is not listed "
+                  "came from the case itself."),
+        Bullets(lines),
     ))
+
+
+def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
+    yield from core_sources(investigation.case.content.run.cable)
+    for tool in investigation.instruments:
+        yield tool.name, tool.source
+    yield from METHODS
+
+
+def _capital(text: str) -> str:
+    return text[:1].upper() + text[1:]

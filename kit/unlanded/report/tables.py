@@ -66,14 +66,16 @@ class Table:
 
 
 def shares(table: Table) -> tuple[float, ...]:
-    """Each column's share of a page's width: room for its longest word, and for its text up to 34.
+    """Each column's share of a page's width: room for its longest word, and for its text up to a
+    limit that is lower in a table of many columns.
 
     >>> shares(Table("t", "Two", (Column("Core"), Column("U", "V")), (("12345", "12345"),)))
     (0.5, 0.5)
     """
     cells = [table.titles, *table.rows]
     body = table.rows or (table.titles,)
-    letters = [max(_least(cells, c) + 1, min(_natural(body, c) + 1, 34))
+    limit = 34 if len(table.columns) < 7 else 24
+    letters = [max(_least(cells, c) + 2, min(_natural(body, c) + 2, limit))
                for c in range(len(table.columns))]
     return tuple(n / sum(letters) for n in letters)
 
@@ -102,8 +104,8 @@ def neutral(cell: str) -> str:
     number = cell.strip().replace("−", "-")
     if _NUMBER.fullmatch(number):
         return number
-    cell = cell.replace("\x00", "")
-    begins = cell.lstrip(" \xa0")[:1]
+    cell = cell.replace("\x00", "").replace("\xa0", " ").replace("\n", " ")
+    begins = cell.lstrip(" ")[:1]
     return f"'{cell}" if begins and begins in _RUNS else cell
 
 
@@ -148,11 +150,12 @@ def _length(text: str) -> int:
 
 def _least(cells: Sequence[Sequence[str]], column: int) -> int:
     """The narrowest a column can be: its longest word, 24 at most."""
-    return min(24, max((_length(w) for row in cells for w in row[column].split()), default=1))
+    words = (w for row in cells for w in re.split("[ \n]", row[column]))
+    return min(24, max(map(_length, words), default=1))
 
 
 def _natural(cells: Sequence[Sequence[str]], column: int) -> int:
-    return max(_length(row[column]) for row in cells)
+    return max(_length(line) for row in cells for line in row[column].split("\n"))
 
 
 def _blocks(cells: Sequence[Sequence[str]], width: int) -> list[list[int]]:

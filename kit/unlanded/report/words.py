@@ -9,13 +9,11 @@ import unicodedata
 def point_words(point: str) -> str:
     """What a reader calls a point of a run.
 
-    >>> point_words("spare@near"), point_words("earth"), point_words("L1")
-    ('spare, near end', 'earth', 'supply L1')
+    >>> point_words("spare@near"), point_words("earth"), point_words("N")
+    ('spare, near end', 'earth', 'N')
     """
     conductor, _, end = point.rpartition("@")
-    if conductor:
-        return f"{conductor}, {end} end"
-    return point if point in ("earth", "neutral") else f"supply {point}"
+    return f"{conductor}, {end} end" if conductor else point
 
 
 def pair_words(a: str, b: str, *, end: bool = True) -> str:
@@ -31,14 +29,14 @@ def pair_words(a: str, b: str, *, end: bool = True) -> str:
     return f"{names}, {ends[0]} end" if ends and end else names
 
 
-def listed(words: tuple[str, ...] | list[str]) -> str:
-    """Words joined as a sentence lists them.
+def listed(words: tuple[str, ...] | list[str], last: str = "and") -> str:
+    """Words joined as a sentence lists them, with `last` before the last of them.
 
-    >>> listed(["a", "b", "c"]), listed(["a"])
-    ('a, b and c', 'a')
+    >>> listed(["a", "b", "c"]), listed(["a"]), listed(["a", "b"], "or")
+    ('a, b and c', 'a', 'a or b')
     """
-    words = list(words)
-    return " and ".join([", ".join(words[:-1]), words[-1]]) if len(words) > 1 else "".join(words)
+    *before, end = words or ("",)
+    return f"{', '.join(before)} {last} {end}" if before else end
 
 
 def cut(text: str, length: int) -> str:
@@ -64,7 +62,9 @@ def printable(text: str) -> str:
     )
 
 
-_QUANTITY = re.compile(r"(?<=[0-9∞]) (?=[fpnµmkMGT]?(?:VA|Hz|in|ft|mm²|[VAΩFHWSmsC%])(?:/k?m)?(?!\w))")
+_QUANTITY = re.compile(
+    r"(?<=[0-9∞]) (?=[fpnµmkMGT]?(?:VA|Hz|in|ft|mm²|AWG|[VAΩFHWSmsC%])(?:/(?:k?m|ft))?(?!\w))"
+)
 
 
 def bound(text: str) -> str:
