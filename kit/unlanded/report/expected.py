@@ -29,8 +29,8 @@ _HOW_TO_READ = (
     "Each reading is as the instrument would round it; in brackets the lowest and the highest that "
     "the limits of the inputs, the tolerance of the instrument's own impedance and its accuracy "
     "allow, where they differ from it. Pairs that every instrument reads alike, to within 2 % or "
-    "its accuracy, share a line; those that an instrument pulls down come first. “OL” is over range; “not lit” says only that the "
-    "voltage is below the indicator's threshold."
+    "its accuracy, share a line; those that an instrument pulls down come first. “OL” is over "
+    "range; “not lit” says only that the voltage is below the indicator's threshold."
 )
 
 
@@ -144,8 +144,9 @@ def _line_sentences(line: SheetLine) -> str:
     behind = (f"a capacitance of {show(row.source_capacitance, 'F')}"
               if not math.isnan(row.source_capacitance)
               else f"an impedance of {show(abs(row.source_impedance), 'Ω')}")
-    said = [f"With no instrument connected, {line.place}, carries {show(abs(row.unloaded), 'V')} behind "
-            f"{behind}, which can drive {show(line.short_circuit, 'A')} through a short circuit."]
+    said = [f"With no instrument connected, {line.place}, carries {show(abs(row.unloaded), 'V')} "
+            f"behind {behind}, which can drive {show(line.short_circuit, 'A')} through a short "
+            "circuit."]
     rows = sorted((r for r in line.rows if r.pair == row.pair and abs(r.current) > 0),
                   key=lambda r: abs(r.voltage))
     if len(rows) > 1:
@@ -163,7 +164,8 @@ def _unfed_table(lines: Sequence[SheetLine], investigation: Investigation) -> Ta
     ends = dict.fromkeys((*tools[:1], *tools[-1:]))
     return Table(
         "unfed", "Conductors that nothing feeds, to earth.",
-        (Column("Pair"), Column("Unloaded", "", "right"), Column("Can drive", "", "right"), *(Column(t.name, "V", "right") for t in ends)),
+        (Column("Pair"), Column("Unloaded", "", "right"), Column("Can drive", "", "right"),
+         *(Column(t.name, "V", "right") for t in ends)),
         tuple((f"{line.name}, {line.end}", show(abs(line.first.unloaded), "V"),
                show(line.short_circuit, "A"), *(line.reading(t) for t in ends))
               for line in lines),

@@ -35,6 +35,7 @@ __all__ = ["InstrumentMark", "length_figure", "loading_figure", "section_figure"
            "sheet_marks"]
 
 FLOOR = 0.01  # volts: the sheet's chart shows less than this as this
+RANGE = "over the covers' range of permittivity"
 ROWS = 16  # pairs on one chart; more would not be read on one page
 
 
@@ -95,7 +96,7 @@ def loading_figure(
         f"{show(volts[-1], 'V')} at {show(x.high, 'Ω')}. "
         f"Instruments: {listed(labels) or 'none'}.",
         numbers=tuple(labels),
-        bands=(Band(ohms, low, high, "over the covers' range of permittivity", 0),) if band else (),
+        bands=(Band(ohms, low, high, RANGE, 0),) if band else (),
         lines=(Line(ohms, volts, "expected", 0),),
         points=_marked(shown),
         notes=_flagged(shown, labels, (x, y), (ohms, volts)),
@@ -171,14 +172,14 @@ def length_figure(
         f"{_band_words(band, f', for {first}')}The run as it is: {here}.",
         alternative=f"Curves of voltage over run lengths up to {end}. At {here}: {listed(at)}.",
         numbers=tuple(at),
-        bands=(Band(along, edges[0], edges[1], f"over the covers' range of permittivity, {first}", 0),) if band else (),
+        bands=(Band(along, edges[0], edges[1], f"{RANGE}, {first}", 0),) if band else (),
         references=(Reference(length / size, "x", f"this run, {here}"),),
         lines=tuple(Line(along, v, name, i) for i, (name, v) in enumerate(volts.items())),
     )
 
 
 def _band_words(band: object, whose: str = "") -> str:
-    return f"Shaded: over the covers' range of permittivity{whose}. " if band else ""
+    return f"Shaded: {RANGE}{whose}. " if band else ""
 
 
 def sheet_figure(

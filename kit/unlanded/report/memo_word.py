@@ -6,6 +6,7 @@ import datetime
 import io
 import zipfile
 from collections.abc import Mapping
+from itertools import zip_longest
 from pathlib import Path
 from typing import Any
 
@@ -20,11 +21,12 @@ from ..errors import Refused
 from .figure import Figure
 from .memo import Block, Bullets, Caution, Memo, Paragraph, Part, Verbatim, facts
 from .tables import Table, shares
-from .words import bound, printable
+from .word_marks import boxed, field, reproducible, row_marks, ruled, shaded
+from .words import bound, cut, printable
 
 PAPERS = {"a4": (210, 297), "us-letter": (215.9, 279.4)}  # mm
 WHOLE = 14  # rows of a table that is kept on one page
-SANS, MONO = "Arial", "Courier New"  # wherever Word is, and with equals of the same widths elsewhere
+SANS, MONO = "Arial", "Courier New"  # have equals of the same widths where they are missing
 FOOTER = "A calculation. It never proves a conductor dead."
 
 _ALIGN = {"left": WD_ALIGN_PARAGRAPH.LEFT, "right": WD_ALIGN_PARAGRAPH.RIGHT,
@@ -56,7 +58,7 @@ def word_bytes(
         writer.block(part, 1)
     out = io.BytesIO()
     document.save(out)
-    return _reproducible(out.getvalue())
+    return reproducible(out.getvalue())
 
 
 class _Writer:
@@ -65,6 +67,7 @@ class _Writer:
     def __init__(self, document: Any, pictures: Mapping[str, Path]) -> None:
         self.document = document
         self.pictures = pictures
+        self.styles = {s.name: s for s in document.styles}
         self.counts = {"Figure": 0, "Table": 0}
         page = document.sections[-1]
         self.width = int(page.page_width - page.left_margin - page.right_margin)
@@ -72,10 +75,8 @@ class _Writer:
     def paragraph(self, text: str = "", *styles: str) -> Any:
         """A paragraph in the first of `styles` that the document has."""
         found = self.document.add_paragraph(bound(printable(text)))
-        names = {s.name for s in self.document.styles}
-        style = next((s for s in styles if s in names), None)
-        if style:
-            found.style = self.document.styles[style]
+        if style := next((s for s in styles if s in self.styles), None):
+            found.style = self.styles[style]
         return found
 
     def block(self, block: Block, level: int) -> None:
@@ -83,8 +84,10 @@ class _Writer:
         match block:
             case Part():
                 self.heading(block.heading, level)
-                for inner in block.blocks:
+                for inner, after in zip_longest(block.blocks, block.blocks[1:]):
                     self.block(inner, level + 1)
+                    if isinstance(inner, Paragraph) and isinstance(after, Bullets | Verbatim):
+                        self.document.paragraphs[-1].paragraph_format.keep_with_next = True
             case Paragraph():
                 self.paragraph(block.text)
             case Bullets():
@@ -108,28 +111,28 @@ class _Writer:
             outline.set(qn("w:val"), str(level - 1))
             found._p.get_or_add_pPr().append(outline)
 
-    def bullets(self, items: tuple[str, ...], *, boxed: bool = False) -> None:
+    def bullets(self, items: tuple[str, ...], *, in_box: bool = False) -> None:
         """A list; in a box all of it stays on one page."""
         for item in items:
             found = self.paragraph(item, "List Bullet")
             if found.style.name != "List Bullet":
                 found.runs[0].text = f"•  {found.runs[0].text}"
-            if boxed:
-                _boxed(found)
+            if in_box:
+                boxed(found)
                 found.paragraph_format.keep_with_next = item is not items[-1]
 
     def caution(self, block: Caution) -> None:
         title = self.paragraph(block.title)
         title.runs[0].bold = True
         title.paragraph_format.keep_with_next = True
-        _boxed(title)
-        self.bullets(block.items, boxed=True)
+        boxed(title)
+        self.bullets(block.items, in_box=True)
 
     def verbatim(self, text: str) -> None:
         found = self.paragraph("", "No Spacing")
         found.add_run(printable(text))
         found.alignment = WD_ALIGN_PARAGRAPH.LEFT
-        _shaded(found, "F5F6F8")
+        shaded(found, "F5F6F8")
         for run in found.runs:
             run.font.name = MONO
             run.font.size = Pt(7)
@@ -139,7 +142,7 @@ class _Writer:
         self.counts[kind] += 1
         found = self.paragraph("", "Caption", "caption")
         found.add_run(f"{kind} ").bold = True
-        _field(found, f"SEQ {kind} \\* ARABIC", str(self.counts[kind])).bold = True
+        field(found, f"SEQ {kind} \\* ARABIC", str(self.counts[kind])).bold = True
         found.add_run(". ").bold = True
         found.add_run(bound(printable(text)))
         return found
@@ -158,19 +161,19 @@ class _Writer:
     def table(self, table: Table) -> None:
         self.caption("Table", table.caption).paragraph_format.keep_with_next = True
         made = self.document.add_table(rows=1 + len(table.rows), cols=len(table.columns))
-        names = {s.name for s in self.document.styles}
-        if "Table Grid" in names:
-            made.style = "Table Grid"
+        if "Table Grid" in self.styles:
+            made.style = self.styles["Table Grid"]
         made.autofit = False
-        _ruled(made)
+        ruled(made)
         size = Pt(9 if len(table.columns) < 6 else 8 if len(table.columns) < 7 else 7)
         whole = len(table.rows) <= WHOLE
         widths = [int(self.width * share) for share in shares(table)]
         for number, (row, cells) in enumerate(
             zip(made.rows, (table.titles, *table.rows), strict=True)
         ):
-            _row_marks(row, heading=number == 0)
-            kept = whole and (number < len(table.rows) or bool(table.note))
+            row_marks(row, heading=number == 0)
+            last = number == len(table.rows)
+            kept = bool(table.note) if last else whole
             for cell, text, column, width in zip(
                 row.cells, cells, table.columns, widths, strict=True
             ):
@@ -273,11 +276,11 @@ def _edges(document: Any, memo: Memo) -> None:
         line.style = document.styles.default(WD_STYLE_TYPE.PARAGRAPH)
         line.paragraph_format.tab_stops.clear_all()
         line.paragraph_format.tab_stops.add_tab_stop(width, WD_TAB_ALIGNMENT.RIGHT)
-        line.add_run(f"{printable(text)[:70]}\t")
+        line.add_run(f"{cut(printable(text), 64)}\t")
         runs = [*line.runs]
         if text == FOOTER:
-            runs += [line.add_run("Page "), _field(line, "PAGE", "1"), line.add_run(" of "),
-                     _field(line, "NUMPAGES", "1")]
+            runs += [line.add_run("Page "), field(line, "PAGE", "1"), line.add_run(" of "),
+                     field(line, "NUMPAGES", "1")]
         else:
             runs.append(line.add_run(f"Case fingerprint {memo.fingerprint[:12]}"))
         for run in runs:
@@ -305,71 +308,6 @@ def _title_block(writer: _Writer, memo: Memo) -> None:
         line.add_run(f"{printable(person)}\tSignature, date \t")
 
 
-def _field(paragraph: Any, code: str, shown: str) -> Any:
-    """A field that Word can count again, with the text it shows until then."""
-    field = OxmlElement("w:fldSimple")
-    field.set(qn("w:instr"), code)
-    run = paragraph.add_run(shown)
-    paragraph._p.remove(run._r)
-    field.append(run._r)
-    paragraph._p.append(field)
-    return run
-
-
-def _shaded(paragraph: Any, fill: str) -> None:
-    shade = OxmlElement("w:shd")
-    for word, value in (("val", "clear"), ("color", "auto"), ("fill", fill)):
-        shade.set(qn(f"w:{word}"), value)
-    paragraph._p.get_or_add_pPr().insert_element_before(
-        shade, "w:tabs", "w:suppressAutoHyphens", "w:spacing", "w:ind", "w:jc", "w:outlineLvl",
-        "w:rPr", "w:sectPr")
-
-
-def _boxed(paragraph: Any) -> None:
-    """Part of one box: Word joins the borders of paragraphs that follow each other."""
-    borders = OxmlElement("w:pBdr")
-    edge = OxmlElement("w:left")
-    for word, value in (("val", "single"), ("sz", "24"), ("space", "6"), ("color", "D9822B")):
-        edge.set(qn(f"w:{word}"), value)
-    borders.append(edge)
-    paragraph._p.get_or_add_pPr().insert_element_before(
-        borders, "w:shd", "w:tabs", "w:suppressAutoHyphens", "w:spacing", "w:ind", "w:jc",
-        "w:outlineLvl", "w:rPr", "w:sectPr")
-    _shaded(paragraph, "FFF6E0")
-    paragraph.paragraph_format.space_after = Pt(3)
-
-
-def _ruled(table: Any) -> None:
-    """Rules above, under the headings and between rows; none between columns; narrow margins."""
-    borders = OxmlElement("w:tblBorders")
-    lines = {"top": ("8", "1F2D3D"), "left": None, "bottom": ("4", "9AA5B1"), "right": None,
-             "insideH": ("4", "9AA5B1"), "insideV": None}
-    for side, line in lines.items():
-        edge = OxmlElement(f"w:{side}")
-        edge.set(qn("w:val"), "single" if line else "nil")
-        if line:
-            edge.set(qn("w:sz"), line[0])
-            edge.set(qn("w:color"), line[1])
-        borders.append(edge)
-    table._tbl.tblPr.insert_element_before(
-        borders, "w:shd", "w:tblLayout", "w:tblCellMar", "w:tblLook", "w:tblCaption")
-    margins = OxmlElement("w:tblCellMar")
-    for side in ("left", "right"):
-        margin = OxmlElement(f"w:{side}")
-        margin.set(qn("w:w"), "50")
-        margin.set(qn("w:type"), "dxa")
-        margins.append(margin)
-    table._tbl.tblPr.insert_element_before(margins, "w:tblLook", "w:tblCaption")
-
-
-def _row_marks(row: Any, *, heading: bool) -> None:
-    marks = row._tr.get_or_add_trPr()
-    for name in ("w:cantSplit", *(("w:tblHeader",) if heading else ())):
-        mark = OxmlElement(name)
-        mark.set(qn("w:val"), "true")
-        marks.append(mark)
-
-
 def _fill(cell: Any, text: str, align: Any, size: Any) -> Any:
     line = cell.paragraphs[0]
     line.alignment = align
@@ -378,15 +316,3 @@ def _fill(cell: Any, text: str, align: Any, size: Any) -> Any:
     run = line.add_run(text)
     run.font.size = size
     return line
-
-
-def _reproducible(document: bytes) -> bytes:
-    """The same zip with every time stamp at the format's first day."""
-    out = io.BytesIO()
-    with zipfile.ZipFile(io.BytesIO(document)) as old, zipfile.ZipFile(out, "w") as new:
-        for name in old.namelist():
-            entry = zipfile.ZipInfo(name, (1980, 1, 1, 0, 0, 0))
-            entry.compress_type = zipfile.ZIP_DEFLATED
-            entry.external_attr = 0o600 << 16
-            new.writestr(entry, old.read(name))
-    return out.getvalue()
