@@ -17,6 +17,7 @@ from .circuit import capacitance_table, circuit_finding, circuit_part, run_resul
 from .expected import annex_part, expected_finding, expected_part, sheet_results
 from .folder import Contents
 from .investigation import Investigation, investigate
+from .margin import margin_finding, margin_part, margin_results
 from .memo import Block, Caution, Memo, Paragraph, Part, Verbatim
 from .sheet_table import sheet_table
 from .sources import sources_part
@@ -62,6 +63,7 @@ def case_part(investigation: Investigation) -> Part:
 FINDINGS: tuple[Callable[[Investigation], Sequence[Block]], ...] = (
     circuit_finding,
     expected_finding,
+    margin_finding,
 )
 """What the summary says of each subject; nothing where the case does not ask."""
 
@@ -70,6 +72,7 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
     circuit_part,
     caution_part,
     expected_part,
+    margin_part,
     assumptions_part,
     sources_part,
     annex_part,
@@ -81,6 +84,7 @@ RESULTS: Mapping[str, Callable[[Investigation], Any]] = {
     "case": lambda i: {"title": i.case.content.title, "fingerprint": i.case.fingerprint},
     "run": run_results,
     "sheet": sheet_results,
+    "margin": margin_results,
 }
 """What results.json holds, by its key; None where the case does not ask."""
 

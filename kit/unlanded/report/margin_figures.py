@@ -167,7 +167,8 @@ def added_figure(leak: str, margins: Sequence[tuple[int, Margin]]) -> Figure:
         alternative=f"Two rising curves. At a random moment: {listed(said)}.",
         numbers=tuple(said),
         lines=(Line(_floats(counts), _floats(busy), "everything on", 1),
-               Line(_floats(counts), _floats(now), f"at a random moment (now {_per_cent(here.chance)})", 0)),
+               Line(_floats(counts), _floats(now),
+                    f"at a random moment (now {_per_cent(here.chance)})", 0)),
     )
 
 
@@ -204,7 +205,8 @@ def log_figure(history: History, margin: Margin) -> Figure:
         references=(Reference(1e3 * history.limit, "y",
                               f"must not trip, {show(history.limit, 'A')}"),),
         lines=(Line(hours[starts], high, "", 0),),
-        points=(Points(_floats(at), _floats(1e3 * np.interp(at, hours, shown)), "steps", 3, tuple(show(s.size, "A") for s in steps)),) if steps else (),
+        points=(Points(_floats(at), _floats(1e3 * np.interp(at, hours, shown)), "steps", 3,
+                       tuple(show(s.size, "A") for s in steps)),) if steps else (),
     )
 
 

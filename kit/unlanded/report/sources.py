@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from ..reference.records import Source
 from .cores import core_sources
 from .investigation import Investigation
+from .margin import margin_sources
 from .memo import Bullets, Paragraph, Part
 from .words import listed
 
@@ -36,6 +37,7 @@ def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
     yield from core_sources(investigation.case.content.run.cable)
     for tool in investigation.instruments:
         yield tool.name, tool.source
+    yield from margin_sources(investigation)
     yield from METHODS
 
 
