@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from typing import Annotated, Any, Literal, Self
 
 from pydantic import (
@@ -31,6 +30,7 @@ from .fields import (
     Table,
     Width,
     entries,
+    told_here,
     written,
 )
 
@@ -62,11 +62,6 @@ class Limits(Table):
         return self.likely if value is None else float(value)
 
 
-def _here(refusal: Refused) -> Refused:
-    """A refusal of a lower floor, told at the key under validation."""
-    return Refused.all_of(replace(m, place="") for m in refusal.mistakes)
-
-
 def _size(given: Any, info: ValidationInfo) -> Size:
     try:
         if not isinstance(given, str):
@@ -74,7 +69,7 @@ def _size(given: Any, info: ValidationInfo) -> Size:
                           given=written(given), hint='for example "2.5 mm²"')
         return conductor_size(given, stranding=info.data.get("stranding", "stranded"))
     except Refused as refusal:
-        raise _here(refusal) from None
+        raise told_here(refusal) from None
 
 
 def _nominal_thickness(kind: str, size: Size) -> float:

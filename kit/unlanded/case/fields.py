@@ -10,7 +10,7 @@ import json
 import math
 import unicodedata
 from collections.abc import Callable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Annotated, Any, Literal
 
 from pydantic import BaseModel, BeforeValidator, ConfigDict, ValidationInfo, model_validator
@@ -72,6 +72,11 @@ def _measured(given: Any, unit: str) -> float:
     number = isinstance(given, int | float) and not isinstance(given, bool)
     raise Refused("", "must be a number with its unit, in quotes", given=written(given),
                   hint=f'for example "{given} {unit}"' if number and math.isfinite(given) else "")
+
+
+def told_here(refusal: Refused) -> Refused:
+    """A refusal of a lower floor, told at the key under validation."""
+    return Refused.all_of(replace(m, place="") for m in refusal.mistakes)
 
 
 def written(given: Any) -> str:

@@ -183,6 +183,7 @@ _TOML_RULES = {
     "Expected newline or end of document": ("there is more on the line after the value", _QUOTES),
     "Invalid value": ("the value cannot be read", _QUOTES),
     "Found invalid character": ("a quotation mark is not closed on its line", ""),
+    'Expected "\'"': ("a quotation mark is not closed on its line", ""),
     "Expected '='": ("a key is not followed by = and its value", _LINE),
     "Invalid statement": ("the line cannot be read", _LINE),
     "Invalid initial character for a key": ("the key cannot be read", _LINE),

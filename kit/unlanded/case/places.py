@@ -27,7 +27,7 @@ _TOKEN = re.compile(
 _BARE_KEY = re.compile(r"[A-Za-z0-9_-]+")
 _PART = re.compile(
     r"""\s*(?: (?P<bare>[A-Za-z0-9_-]+) | (?P<quoted>"(?:\\.|[^"\\])*"|'[^']*') )
-    (?P<entries>(?:\[\d+\])*) \s* (?:\.|$)""",
+    (?P<entries>(?:\[\d+\])*) \s* (?:\.(?=.)|$)""",
     re.VERBOSE,
 )
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from dataclasses import replace
 from typing import Any, Self
 
 from pydantic import Field, model_validator
@@ -22,6 +21,7 @@ from .fields import (
     SupplyWord,
     Table,
     Voltage,
+    told_here,
 )
 
 _IMPEDANCE = {"resistance", "inductance", "capacitance", "front_resistance"}
@@ -73,7 +73,6 @@ class Load(Table):
         reactance = impedance * math.sqrt(1 - self.power_factor**2)
         return Burden(impedance * self.power_factor, reactance / (2 * math.pi * frequency))
 
-
     def _impedance(self) -> Burden:
         """Refused at the load itself where it is no burden."""
         resistance = self.resistance
@@ -82,7 +81,7 @@ class Load(Table):
         try:
             return Burden(resistance, self.inductance, self.capacitance, self.front_resistance)
         except Refused as refusal:
-            raise Refused.all_of(replace(m, place="") for m in refusal.mistakes) from None
+            raise told_here(refusal) from None
 
 
 class Termination(Table):

@@ -53,12 +53,13 @@ class Index:
 
 
 def printable(text: str) -> str:
-    """With a mark in the place of every control and formatting character.
+    """In one line, with a mark in the place of every control and formatting character.
 
     >>> printable("a\\x1b[31m")
     'a�[31m'
     """
-    return "".join(c if c.isprintable() else "\N{REPLACEMENT CHARACTER}" for c in text)
+    mark = "\N{REPLACEMENT CHARACTER}"
+    return "".join(c if c.isprintable() else " " if c.isspace() else mark for c in text)
 
 
 def validate(plain: Mapping[str, Any]) -> tuple[CaseFile | None, list[Found]]:
