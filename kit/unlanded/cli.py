@@ -32,6 +32,8 @@ def refusing(command: Command) -> Command:
             command(*args, **kwargs)
         except Refused as refusal:
             leave(refusal.mistakes)
+        except BrokenPipeError:
+            raise  # the reader of our output has gone, such as `head`: click leaves quietly
         except OSError as error:
             leave([Mistake(str(error.filename or "file"), "cannot be read or written",
                            error.strerror or str(error))])

@@ -36,6 +36,7 @@ _EDGE = {"metal": "#5a3517", "cover": "#444444"}
 _SHAPE = {"star": "arrow"}  # bqplot has no star
 _GRID = "#e2e2e2"
 _MARGIN = {"top": 40, "bottom": 52, "left": 68, "right": 20}
+_NARROW = {"top": 40, "bottom": 8, "left": 8, "right": 8}
 HOVERED = 60  # points of a curve whose numbers show under the pointer
 PAPER = "unlanded-paper"
 
@@ -50,7 +51,7 @@ class LiveFigure:
     """
 
     def __init__(self, figure: Figure, *, height: int = 380) -> None:
-        self.figure = figure
+        self.figure, self._height = figure, height
         self._x, self._y = _scale(figure.x), _scale(figure.y)
         self._axes = (_axis(figure.x, self._x, "bottom"), _axis(figure.y, self._y, "left"))
         bare = not (figure.x.ticks or figure.y.ticks)
@@ -63,7 +64,7 @@ class LiveFigure:
             layout={"width": "100%", "min_width": "420px", "height": f"{height}px"},
         )
         if figure.to_scale:
-            self.widget.min_aspect_ratio = self.widget.max_aspect_ratio = 1 / figure.aspect
+            self.widget.fig_margin = dict(_NARROW)
         self.widget.add_class(PAPER)
         self.update(figure)
 
@@ -74,6 +75,8 @@ class LiveFigure:
         _set_axis(self._axes[0], self._x, figure.x)
         _set_axis(self._axes[1], self._y, figure.y)
         self.widget.title = figure.title
+        if figure.to_scale:
+            self.widget.layout.width = f"{_width_to_scale(figure, self._height)}px"
         wanted = dict(_elements(figure))
         marks = {key: self._marks[key] if _equal(element, before.get(key))
                  else self._mark(key, element) for key, element in wanted.items()}
@@ -100,6 +103,13 @@ class LiveFigure:
             for name, value in traits.items():
                 setattr(mark, name, value)
         return mark
+
+
+def _width_to_scale(figure: Figure, height: int) -> int:
+    """Width of the whole picture at which a unit of x is as long as one of y [px]."""
+    across = (figure.x.high - figure.x.low) / (figure.y.high - figure.y.low)
+    tall = height - _NARROW["top"] - _NARROW["bottom"]
+    return round(tall * across) + _NARROW["left"] + _NARROW["right"]
 
 
 def _corner(figure: Figure) -> str:

@@ -45,7 +45,8 @@ class _Window:
 
 
 def section_figure(
-    section: Section, voltages: ArrayLike, *, title: str = "Section", customary: bool = False
+    section: Section, voltages: ArrayLike, *, title: str = "Section", customary: bool = False,
+    detail: int = DETAIL,
 ) -> Figure:
     """`section` to scale with the potential round it, shaded, with equipotentials.
 
@@ -55,13 +56,14 @@ def section_figure(
     voltages : (n,) of its conductors, RMS [V], complex or real
     title : of the picture
     customary : sizes in inches
+    detail : points of the field across the shorter side of its window
 
     The magnitude of the potential is shown. Equipotentials stand at the ticks of its scale
     and half-way between them.
     """
     volts = np.atleast_1d(np.asarray(voltages, dtype=complex))
     window = _window(section)
-    field = _field(section, volts, window)
+    field = _field(section, volts, window, detail)
     said = [f"{c.name} {_volts(abs(v), field.scale.high)}"
             for c, v in zip(section.conductors, volts, strict=True)]
     labels = [f"{cut(c.name, NAME)}  {_volts(abs(v), field.scale.high)}"
@@ -111,8 +113,10 @@ def _window(section: Section) -> _Window:
     return _Window(*(_MM * v for v in (left - room, right + room, bottom - below, top + room)))
 
 
-def _field(section: Section, volts: NDArray[np.complex128], window: _Window) -> Field:
-    step = min(window.width, window.height) / DETAIL
+def _field(
+    section: Section, volts: NDArray[np.complex128], window: _Window, detail: int
+) -> Field:
+    step = min(window.width, window.height) / detail
     x = np.linspace(window.left, window.right, max(2, round(window.width / step)))
     y = np.linspace(window.bottom, window.top, max(2, round(window.height / step)))
     values = np.abs(potential_map(section, volts, x / _MM, y / _MM))
