@@ -26,16 +26,19 @@ class Network:
     """Elements added one by one, then `solve(frequencies)`. Node `earth` is the reference."""
 
     _nodes: dict[str, int] = field(default_factory=dict)
-    _burdens: list[tuple[str, str, Burden]] = field(default_factory=list)
+    _burdens: list[tuple[str, str, Burden | _Given]] = field(default_factory=list)
     _matrices: list[tuple[tuple[str, ...], NDArray[np.float64]]] = field(default_factory=list)
     _branches: list[_Branches] = field(default_factory=list)
     _links: list[tuple[str, str]] = field(default_factory=list)
 
     def burden(self, a: str, b: str, burden: Burden) -> None:
-        """A burden from node a to node b."""
+        """A burden from node a to node b; one that conducts nothing leaves them floating."""
         if a == b:
             raise Refused(f'node "{a}"', "cannot be joined to itself")
-        self._link(a, b)
+        self._add(a)
+        self._add(b)
+        if burden.admittance(1.0):
+            self._link(a, b)
         self._burdens.append((a, b, burden))
 
     def resistor(self, a: str, b: str, resistance: float) -> None:
@@ -56,9 +59,9 @@ class Network:
         A node may occur more than once, and may be earth.
         """
         c = np.asarray(matrix, dtype=float)
-        if c.shape != (len(nodes), len(nodes)):
-            raise Refused("capacitance matrix", f"must be {len(nodes)} × {len(nodes)}",
-                          given=c.shape)
+        if c.ndim != 2:
+            raise Refused("capacitance matrix", "must be one matrix", given=c.shape)
+        _refuse_misfit("capacitance matrix", c, len(nodes))
         for i, node in enumerate(nodes):
             self._add(node)
             if c[i].sum() > _NO_PATH * c[i, i]:
@@ -68,6 +71,21 @@ class Network:
                     self._link(node, nodes[j])
         self._matrices.append((tuple(nodes), c))
 
+    def capacitance_matrices(self, nodes: Sequence[str], matrices: ArrayLike) -> None:
+        """A Maxwell capacitance matrix [F] for each frequency (F, n, n): a batch of networks.
+
+        The first says which nodes they join.
+        """
+        c = np.asarray(matrices, dtype=float)
+        _refuse_misfit("capacitance matrices", c, len(nodes))
+        self.capacitance_matrix(nodes, c[0])
+        self._matrices[-1] = (tuple(nodes), c)
+
+    def admittance(self, a: str, b: str, admittance: ArrayLike) -> None:
+        """An admittance [S] from a to b, one or one per frequency (F,)."""
+        self._link(a, b)
+        self._burdens.append((a, b, _Given(np.asarray(admittance, dtype=complex))))
+
     def series_branches(
         self, pairs: Sequence[tuple[str, str]], resistance: ArrayLike, inductance: ArrayLike
     ) -> None:
@@ -75,9 +93,10 @@ class Network:
 
         Either may have a leading axis over the frequencies.
         """
-        self._branch(_Branches(tuple(pairs), np.asarray(resistance, dtype=float),
-                               np.asarray(inductance, dtype=float),
-                               np.zeros(len(pairs), dtype=complex)))
+        r, x = np.asarray(resistance, dtype=float), np.asarray(inductance, dtype=float)
+        _refuse_misfit("series resistance", r, len(pairs))
+        _refuse_misfit("series inductance", x, len(pairs))
+        self._branch(_Branches(tuple(pairs), r, x, np.zeros(len(pairs), dtype=complex)))
 
     def voltage_source(
         self,
@@ -92,6 +111,10 @@ class Network:
 
         Returns its number for `Solution.source_current`: the current it delivers into a [A].
         """
+        if not (np.all(np.isfinite(voltage)) and 0 <= resistance + inductance < np.inf
+                and min(resistance, inductance) >= 0):
+            raise Refused(f'source at "{a}"', "voltage, resistance and inductance must be finite, "
+                          "the last two at least 0", given=(voltage, resistance, inductance))
         emf = np.asarray(np.asarray(voltage, dtype=complex)[..., None])
         r, x = np.full((1, 1), resistance), np.full((1, 1), inductance)
         # A branch current counts from a to b; a source delivers the other way.
@@ -104,6 +127,7 @@ class Network:
         if not (f.ndim == 1 and len(f) and np.all(f > 0) and np.all(np.isfinite(f))):
             raise Refused("frequency", "must be above 0 Hz", given=frequencies)
         self._refuse_floating()
+        self._refuse_counts(len(f))
         matrix, right = self._assembled(f)
         try:
             inverse = np.asarray(np.linalg.inv(matrix), dtype=np.complex128)
@@ -138,6 +162,19 @@ class Network:
             names = ", ".join(f'"{n}"' for n in floating)
             raise Refused(f"node {names}", "floats: nothing connects it to earth",
                           hint="bond it, drive it, or give the section a surround")
+
+    def _refuse_counts(self, count: int) -> None:
+        """Refuses what is given per frequency for another number of them than `count`."""
+        given: list[tuple[Sequence[str], tuple[int, ...]]] = [
+            *((b.pairs[0], m.shape[:-2]) for b in self._branches
+              for m in (b.resistance, b.inductance, b.emf[..., None])),
+            *((nodes, c.shape[:-2]) for nodes, c in self._matrices),
+            *(((a, b), y.value.shape) for a, b, y in self._burdens if isinstance(y, _Given))]
+        for nodes, shape in given:
+            if shape not in ((), (1,), (count,)):
+                names = " and ".join(f'"{n}"' for n in nodes)
+                raise Refused(f"between {names}", "must be given once, or for each of "
+                              f"{count} frequencies", given=shape)
 
     def _assembled(self, f: NDArray[np.float64]) -> tuple[Complex, Complex]:
         omega = 2 * np.pi * f
@@ -174,6 +211,16 @@ class Network:
 
 
 @dataclass(frozen=True)
+class _Given:
+    """An admittance as given, whatever the frequency."""
+
+    value: Complex
+
+    def admittance(self, frequency: ArrayLike) -> Complex:
+        return np.broadcast_to(self.value, np.shape(frequency))
+
+
+@dataclass(frozen=True)
 class _Branches:
     """Branches a → b with V_a − V_b − Z I = E."""
 
@@ -181,6 +228,13 @@ class _Branches:
     resistance: NDArray[np.float64]
     inductance: NDArray[np.float64]
     emf: Complex
+
+
+def _refuse_misfit(place: str, matrix: NDArray[np.float64], size: int) -> None:
+    if matrix.shape[-2:] != (size, size):
+        raise Refused(place, f"must be {size} × {size}", given=matrix.shape)
+    if not np.all(np.isfinite(matrix)):
+        raise Refused(place, "must hold finite numbers")
 
 
 @dataclass(frozen=True)

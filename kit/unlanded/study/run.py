@@ -13,7 +13,7 @@ from functools import cached_property
 from itertools import pairwise
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from ..errors import Refused, nearest
 from ..physics.burden import Burden
@@ -114,9 +114,12 @@ class Run:
             object.__setattr__(self, end, {n: given.get(n, Open()) for n in names})
         if not (self.length > 0 and math.isfinite(self.length)):
             raise Refused("run length", "must be above 0 m", given=f"{self.length:g} m")
-        if len(self.resistance) != len(names) or not all(r >= 0 for r in self.resistance):
+        if not (len(self.resistance) == len(names)
+                and all(0 <= r < math.inf for r in self.resistance)):
             raise Refused("run resistance", "must be at least 0 Ω/m for each conductor",
                           given=self.resistance)
+        if not (isinstance(self.order, int) and self.order >= 1):
+            raise Refused("run order", "must be a whole number of at least 1", given=self.order)
         if self.capacitance is not None and np.shape(self.capacitance) != (len(names),) * 2:
             raise Refused("run capacitance", f"must be {len(names)} × {len(names)}",
                           given=np.shape(self.capacitance))
@@ -205,12 +208,10 @@ class Run:
     @cached_property
     def _solved(self) -> tuple[Solution, tuple[int, ...]]:
         network = Network()
-        sources = self._feed(network)
-        self._lay(network)
-        for end in ("near", "far"):
-            for name, t in getattr(self, end).items():
-                if isinstance(t, Through):
-                    self._close(network, f"{name}@{end}", t, end)
+        sources = self.feed(network)
+        self.lay(network, self.matrix[None], np.array([self.length]), self.lumps)
+        for point, to, t in self.closed:
+            network.burden(point, to, t.burden)
         return network.solve(self.frequency), sources
 
     @property
@@ -221,35 +222,51 @@ class Run:
     def _sources(self) -> tuple[int, ...]:
         return self._solved[1]
 
-    def _feed(self, network: Network) -> tuple[int, ...]:
-        """The lines and the neutral, from the source's star point, which is earthed."""
+    def feed(self, network: Network, share: ArrayLike = 1.0) -> tuple[int, ...]:
+        """Puts in the lines and the neutral, from the source's star point, which is earthed.
+
+        `share` of the supply's voltage [1], one or one per case of a batch. Returns the sources.
+        """
         supply = self.supply
-        lines = [network.voltage_source(line, EARTH, supply.phasor(line, order=self.order),
+        lines = [network.voltage_source(line, EARTH,
+                                        supply.phasor(line, order=self.order) * np.asarray(share),
                                         resistance=supply.resistance, inductance=supply.inductance)
                  for line in supply.lines]
         return (*lines, network.voltage_source(NEUTRAL, EARTH, 0.0))
 
-    def _lay(self, network: Network) -> None:
-        """The π sections from the near to the far nodes."""
-        step = self.length / self.lumps
+    def lay(self, network: Network, matrix: Real, length: Real, lumps: int) -> None:
+        """Puts in the π sections from the near to the far nodes, for a batch of B cases.
+
+        `matrix` (B, n, n) [F/m], `length` (B,) [m].
+        """
+        step = length[:, None, None] / lumps
         resistance, inductance = (m * step for m in self.series)
         stations = [self._end_nodes("near"),
-                    *([f"{n}@{k}" for n in self.section.names] for k in range(1, self.lumps)),
+                    *([f"{n}@{k}" for n in self.section.names] for k in range(1, lumps)),
                     self._end_nodes("far")]
-        half = self.matrix * step / 2
+        half = matrix * step / 2
         for near, far in pairwise(stations):
             network.series_branches(list(zip(near, far, strict=True)), resistance, inductance)
-            network.capacitance_matrix(near, half)
-            network.capacitance_matrix(far, half)
+            network.capacitance_matrices(near, half)
+            network.capacitance_matrices(far, half)
 
     def _end_nodes(self, end: str) -> list[str]:
         return [self._aliases[f"{n}@{end}"] for n in self.section.names]
 
-    def _close(self, network: Network, point: str, t: Through, end: str) -> None:
-        a, b = self._aliases[point], self._aliases.get(f"{t.to}@{end}", t.to)
-        if a == b:
-            raise Refused(f'{t.label} at "{point}"', "has both its terminals on the same node")
-        network.burden(a, b, t.burden)
+    @cached_property
+    def closed(self) -> tuple[tuple[str, str, Through], ...]:
+        """The nodes that a burden at an end joins, with the burden."""
+        found = []
+        for end in ("near", "far"):
+            for name, t in getattr(self, end).items():
+                if isinstance(t, Through):
+                    a = self._aliases[f"{name}@{end}"]
+                    b = self._aliases.get(f"{t.to}@{end}", t.to)
+                    if a == b:
+                        raise Refused(f'{t.label} at "{name}@{end}"',
+                                      "has both its terminals on the same node")
+                    found.append((a, b, t))
+        return tuple(found)
 
     @cached_property
     def _aliases(self) -> dict[str, str]:
@@ -261,11 +278,5 @@ class Run:
                     met = f"{t.other}@{end}" if isinstance(t, Joined) else word(t)
                     joined = group[f"{name}@{end}"] | group[met]
                     group.update(dict.fromkeys(joined, joined))
-        fixed = (EARTH, NEUTRAL, *self.supply.lines)
-        for points in group.values():
-            if len(shorted := [w for w in fixed if w in points]) > 1:
-                where = next(p for p in self.points if p in points)
-                raise Refused(f'"{where}"', f"joins {shorted[1]} to {shorted[0]} with no impedance",
-                              hint="close it through a load, or bond at the other end")
-        order = (*fixed, *self.points)
+        order = (EARTH, NEUTRAL, *self.supply.lines, *self.points)
         return {p: min(points, key=order.index) for p, points in group.items()}
