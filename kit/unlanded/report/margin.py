@@ -8,9 +8,10 @@ from functools import lru_cache
 from typing import Any
 
 from ..case.standing import THE_RUN, case_history, case_margin
-from ..reference.devices import ANSWERS, ring_wave
+from ..reference.devices import ANSWERS, BREAK_TIME, ring_wave
 from ..reference.limits import STANDING_SHARE
 from ..reference.records import Source
+from ..study.ends import Driven
 from ..study.history import History
 from ..study.inrush import Inrush, run_inrush
 from ..study.residual import Margin, added_pieces, longest_run, most_pieces
@@ -18,7 +19,13 @@ from ..study.standing import without_line
 from ..study.trip import MeasuredTrip, measured_trips
 from ..units import show, show_length
 from .investigation import Investigation
-from .margin_figures import added_figure, budget_figure, log_figure, trip_time_figure
+from .margin_figures import (
+    added_figure,
+    budget_figure,
+    log_figure,
+    per_cent,
+    trip_time_figure,
+)
 from .memo import Block, Bullets, Caution, Paragraph, Part
 from .tables import Column, Table
 from .words import listed, pair_words
@@ -58,7 +65,8 @@ def margin_part(investigation: Investigation) -> Part | None:
         return None
     trips = trips_of(investigation)
     blocks: list[Block] = [
-        Paragraph(_device_words(margin)), Paragraph(" ".join(_standing_words(margin))),
+        Caution("On this section", CAUTION), Paragraph(_device_words(margin)),
+        Paragraph(" ".join(_standing_words(margin))),
         shares_table(margin), limits_table(margin), budget_figure(margin),
         Paragraph(" ".join(_run_words(investigation, margin))),
         *_added(margin), Part("Trip by measurement", tuple(_trip_blocks(margin, trips))),
@@ -66,7 +74,7 @@ def margin_part(investigation: Investigation) -> Part | None:
     ]
     if found := case_history(investigation.case, margin):
         blocks.append(Part("The current log", tuple(_log_blocks(found, margin))))
-    return Part("Residual-current margin", (*blocks, Caution("On this section", CAUTION)))
+    return Part("Residual-current margin", tuple(blocks))
 
 
 def margin_finding(investigation: Investigation) -> list[Block]:
@@ -99,8 +107,9 @@ def _device_words(margin: Margin) -> str:
     else:
         words += ("Between the two its own trip current is not known; a distribution over the band "
                   "is a judgement, which a ramp test of the device replaces. ")
-    return words + (f"Type {d.waveform} answers to {ANSWERS[d.waveform].words}."
-                    if d.waveform else "Its type (AC, A, F or B) is not stated.")
+    if d.waveform:
+        return f"{words}Type {d.waveform} answers to {ANSWERS[d.waveform].words}."
+    return f"{words}Its type (AC, A, F or B) is not stated." if d.kind in BREAK_TIME else words
 
 
 def _standing_words(margin: Margin) -> Iterator[str]:
@@ -111,7 +120,7 @@ def _standing_words(margin: Margin) -> Iterator[str]:
            f"{show(low, 'A')} and {show(high, 'A')}.")
     yield _verdict_words(margin)
     yield ("This is of a moment taken at random; the spread of the device itself is in it. With "
-           f"everything on it is {_per_cent(margin.chance_all_on)}.")
+           f"everything on it is {per_cent(margin.chance_all_on)}.")
     if any(leak.fast for leak in margin.leaks):
         yield ("Drives leak at their switching frequency and its multiples, which is counted here "
                "as one band at the weight that the device's standard gives it, in full where it is "
@@ -128,12 +137,8 @@ def _verdict_words(margin: Margin) -> str:
         to, _ = margin.to(margin.recommended)
         words += (f"; to the recommended share, {show(margin.recommended, 'A')}, it is "
                   f"{show(to, 'A')} as expected")
-    return (f"{words}. The chance of a trip is {_per_cent(margin.chance)} "
-            f"(± {_per_cent(2 * margin.chance_error)} of calculation).")
-
-
-def _per_cent(chance: float) -> str:
-    return "0 %" if chance == 0 else "under 0.01 %" if chance < 1e-4 else f"{100 * chance:.2g} %"
+    return (f"{words}. The chance of a trip is {per_cent(margin.chance)} "
+            f"(± {per_cent(2 * margin.chance_error)} of calculation).")
 
 
 def shares_table(margin: Margin) -> Table:
@@ -160,11 +165,13 @@ def limits_table(margin: Margin) -> Table:
     limits = [("recommended share", margin.recommended), ("must not trip", d.non_operating),
               ("lowest that may trip it", d.band.low), ("must trip", d.rated)]
     rows = tuple((word, _ma(limit), *(_ma(m) for m in margin.to(limit)))
-                 for word, limit in limits if math.isfinite(limit))
+                 for word, limit in limits if math.isfinite(limit)
+                 and (word != "lowest that may trip it" or limit != d.non_operating))
     return Table("margin", "Margin of the standing current to each limit.",
                  (Column("Limit"), Column("At", "mA", "right"), Column("Expected", "mA", "right"),
                   Column("Worst credible", "mA", "right")), rows,
-                 f"Below 0: exceeded. Worst credible: 2.5 % of the draws exceed it. {RULE}")
+                 "Below 0: exceeded. Worst credible: 2.5 % of the draws exceed it. "
+                 + (RULE if math.isfinite(margin.recommended) else ""))
 
 
 def _ma(value: float) -> str:
@@ -175,22 +182,28 @@ def _run_words(investigation: Investigation, margin: Margin) -> Iterator[str]:
     run, customary = investigation.run, investigation.customary
     own = run.residual
     if abs(own) > 0:
-        limit = margin.recommended if math.isfinite(margin.recommended) \
-            else margin.device.non_operating
-        alone = longest_run(run, limit)
-        left = longest_run(run, limit, others=complex(margin.fundamental.mean()) - own)
+        limit = _aim(margin)
+        alone = show_length(longest_run(run, limit), customary=customary)
         yield (f"This run leaks {show(abs(own) / run.length, 'A')} per metre. Alone it would reach "
-               f"{show(limit, 'A')} at {show_length(alone, customary=customary)}; with what else "
-               f"stands there, at {show_length(left, customary=customary)}.")
-    if run.supply.phases == 3 and abs(own) > 0:
-        lost = {line: abs(without_line(run, line).residual) for line in run.supply.lines}
-        yield ("With a line lost, its conductors open, the run leaks "
-               f"{listed([f'{show(i, _AMPERE)} ({line})' for line, i in lost.items()])}.")
-    if rush := run_inrush(run, _filters(margin)):
+               f"{show(limit, 'A')} at {alone}.")
+        left = longest_run(run, limit, others=complex(margin.fundamental.mean()) - own)
+        if left == 0:
+            yield "What else stands behind the device exceeds that already."
+        elif len(margin.leaks) > 1:
+            yield f"With what else stands there, at {show_length(left, customary=customary)}."
+    fed = [line for line in run.supply.lines if Driven(line) in run.near.values()]
+    if len(fed) > 1:
+        lost = [f"{show(abs(without_line(run, line).residual), 'A')} without {line}"
+                for line in fed]
+        yield f"With a line lost, its conductors open, the run leaks {listed(lost)}."
+    if (rush := run_inrush(run, _filters(margin))) and margin.device.kind in BREAK_TIME:
         yield _inrush_words(rush, margin)
 
 
-_AMPERE = "A"
+def _aim(margin: Margin) -> float:
+    """The limit to keep to [A]: the recommended share, or what must not trip."""
+    known = math.isfinite(margin.recommended)
+    return margin.recommended if known else margin.device.non_operating
 
 
 def _filters(margin: Margin) -> float:
@@ -240,9 +253,26 @@ def _trip_blocks(margin: Margin, trips: Sequence[MeasuredTrip]) -> Iterator[Bloc
         "instrument adds, as phasors. “Will”: even at the lowest of its range it must trip. “Will "
         "not”: even at the highest it must not. In brackets, the longest time that the standard "
         "allows, or the chance. Held for less time, an instrument may leave it closed.")
-    tools = list(dict.fromkeys(t.instrument.key for t in trips))
+    if margin.draws.max() >= margin.device.band.low:
+        yield Paragraph("Here the standing current alone may trip the device, so no instrument can "
+                        "be said not to; an instrument that adds nothing has the chance that there "
+                        "is without it.")
+    loud = 0.01 * margin.device.rated
+    heard = {t.pair for t in trips if t.added >= loud}
+    yield from _trip_tables([t for t in trips if t.pair in heard])
+    if quiet := [t for t in trips if t.pair not in heard]:
+        pairs = dict.fromkeys(pair_words(t.pair.a, t.pair.b) for t in quiet)
+        said = listed(list(dict.fromkeys(t.verdict for t in quiet)), "or")
+        yield Paragraph(f"On every other pair no instrument adds more than "
+                        f"{show(max(t.added for t in quiet), 'A')}, and it {said} trip the device: "
+                        f"{listed(list(pairs))}.")
+    yield trip_time_figure(margin, trips)
+
+
+def _trip_tables(trips: Sequence[MeasuredTrip]) -> Iterator[Table]:
     names = {t.instrument.key: t.instrument.name for t in trips}
     cells = {(t.pair, t.instrument.key): _trip_cell(t) for t in trips}
+    tools = list(names)
     for start in range(0, len(tools), 7):
         group = tools[start:start + 7]
         yield Table(
@@ -250,22 +280,21 @@ def _trip_blocks(margin: Margin, trips: Sequence[MeasuredTrip]) -> Iterator[Bloc
             (Column("Pair"), *(Column(names[key]) for key in group)),
             tuple((pair_words(p.a, p.b), *(cells.get((p, key), "–") for key in group))
                   for p in dict.fromkeys(t.pair for t in trips)))
-    yield trip_time_figure(margin, trips)
 
 
 def _trip_cell(trip: MeasuredTrip) -> str:
     if trip.verdict == "will" and math.isfinite(trip.longest):
         return f"will ({show(trip.longest, 's', 2)})"
-    return f"may ({_per_cent(trip.chance)})" if trip.verdict == "may" else trip.verdict
+    return f"may ({per_cent(trip.chance)})" if trip.verdict == "may" else trip.verdict
 
 
 def _cures(margin: Margin) -> Iterator[str]:
     shares = sorted(zip(margin.shares, margin.leaks, strict=True),
                     key=lambda s: s[0].along, reverse=True)
     share, leak = shares[0]
-    limit = margin.recommended if math.isfinite(margin.recommended) else margin.device.non_operating
-    if margin.credible[1] <= limit:
-        yield f"The worst credible current is within {show(limit, 'A')}: nothing needs moving."
+    if margin.credible[1] <= (limit := _aim(margin)):
+        yield (f"The worst credible current is within {show(limit, 'A')}: for the margin's sake "
+               "nothing needs moving.")
         return
     yield (f"“{share.name}” brings most, {show(share.along, 'A')}: move some of it to another "
            "device, or give each circuit a device of its own.")

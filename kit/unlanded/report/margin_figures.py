@@ -28,15 +28,19 @@ def budget_figure(margin: Margin) -> Figure:
     parts = [1e3 * s.along for s in margin.shares]
     ends = np.cumsum([0.0, *parts])
     rest = 1e3 * margin.expected - ends[-1]
-    names = [*(cut(s.name, 30) for s in margin.shares), "other frequencies", "all together"]
-    bars = [*pairwise(ends), (ends[-1], ends[-1] + rest),
-            (0.0, 1e3 * margin.expected)]
+    names = [cut(s.name, 30) for s in margin.shares]
+    bars = [*pairwise(ends)]
+    if rest > 0.01 * ends[-1]:
+        names.append("other frequencies")
+        bars.append((ends[-1], ends[-1] + rest))
+    names.append("all together")
+    bars.append((0.0, 1e3 * margin.expected))
     low, high = (1e3 * i for i in margin.credible)
     band = 1e3 * device.band.low, 1e3 * device.band.high
     top = len(names) - 0.4
     return Figure(
         key="budget", title="Standing residual current, and the device's trip band",
-        x=even_axis("Residual current, RMS", "mA", min(0.0, *ends), 1.02 * max(band[1], high)),
+        x=even_axis("Residual current, RMS", "mA", min(0.0, *ends), max(band[1], high)),
         y=Axis("", "", -0.6, top, "even", tuple((float(i), n) for i, n in enumerate(names)),
                turned=True),
         caption="Each contribution by its part in the direction of the total, on average, with its "
@@ -52,7 +56,7 @@ def budget_figure(margin: Margin) -> Figure:
         bands=(_block(band, (-0.6, top), "trip band", 1),
                *(_block((min(bar), max(bar)), (i - 0.32, i + 0.32), "", 0)
                  for i, bar in enumerate(bars))),
-        references=_limits(margin),
+        references=_recommended(margin),
         lines=tuple(Line(_floats([b, b]), _floats([i - 0.32, i + 0.32]), "", 0)
                     for i, (_, b) in enumerate(bars)),
         points=(Points(_floats([1e3 * margin.expected]), _floats([len(names) - 1]),
@@ -71,19 +75,17 @@ def _block(x: tuple[float, float], y: tuple[float, float], label: str, style: in
     return Band(_floats(x), _floats([y[0]] * 2), _floats([y[1]] * 2), label, style)
 
 
-def _limits(margin: Margin) -> tuple[Reference, ...]:
-    marks = [Reference(1e3 * margin.device.non_operating, "x",
-                       f"must not trip, {show(margin.device.non_operating, 'A')}")]
-    if math.isfinite(margin.recommended):
-        marks.append(Reference(1e3 * margin.recommended, "x",
-                               f"30 %, {show(margin.recommended, 'A')}"))
-    return tuple(marks)
+def _recommended(margin: Margin) -> tuple[Reference, ...]:
+    if not math.isfinite(margin.recommended):
+        return ()
+    return (Reference(1e3 * margin.recommended, "x",
+                      f"recommended share, {show(margin.recommended, 'A')}"),)
 
 
 def trip_time_figure(margin: Margin, trips: Sequence[MeasuredTrip]) -> Figure:
     """The longest time to trip against residual current, with the instruments that may trip it."""
     device = margin.device
-    marked = _marked(trips)
+    marked = _marked(trips, 0.05 * device.rated)
     most = max([10 * device.rated, *(1.3 * t.expected for t in marked)])
     least = min([device.non_operating / 3, *([margin.expected] if margin.expected > 1e-5 else [])])
     amperes = np.geomspace(device.rated, most, 400)
@@ -115,12 +117,15 @@ def trip_time_figure(margin: Margin, trips: Sequence[MeasuredTrip]) -> Figure:
     )
 
 
-def _marked(trips: Sequence[MeasuredTrip]) -> list[MeasuredTrip]:
-    """Each instrument once, at its highest residual current, where it will or may trip."""
+def _marked(trips: Sequence[MeasuredTrip], least: float) -> list[MeasuredTrip]:
+    """Each instrument once, at its highest residual current, where it will or may trip.
+
+    Those that add less than `least` [A] are left out: the standing current alone is the matter.
+    """
     worst: dict[str, MeasuredTrip] = {}
     for t in trips:
         key = t.instrument.key
-        if t.verdict in ("will", "may") and (
+        if t.verdict in ("will", "may") and t.added >= least and (
                 key not in worst or t.expected > worst[key].expected):
             worst[key] = t
     return sorted(worst.values(), key=lambda t: t.expected)[-MARKED:]
@@ -156,7 +161,7 @@ def added_figure(leak: str, margins: Sequence[tuple[int, Margin]]) -> Figure:
     now = [100 * m.chance for _, m in margins]
     busy = [100 * m.chance_all_on for _, m in margins]
     here = margins[0][1]
-    said = [f"{n} pieces: {_per_cent(m.chance)}" for n, m in margins[:: max(1, len(margins) // 5)]]
+    said = [f"{n} pieces: {per_cent(m.chance)}" for n, m in margins[:: max(1, len(margins) // 5)]]
     return Figure(
         key="added", title=f"Chance of a trip against added load: {cut(leak, 40)}",
         x=even_axis(f"Pieces of “{cut(leak, 40)}”", "", counts[0], counts[-1]),
@@ -168,12 +173,21 @@ def added_figure(leak: str, margins: Sequence[tuple[int, Margin]]) -> Figure:
         numbers=tuple(said),
         lines=(Line(_floats(counts), _floats(busy), "everything on", 1),
                Line(_floats(counts), _floats(now),
-                    f"at a random moment (now {_per_cent(here.chance)})", 0)),
+                    f"at a random moment (now {per_cent(here.chance)})", 0)),
     )
 
 
-def _per_cent(chance: float) -> str:
-    return f"{100 * chance:.2g} %" if chance >= 1e-4 else "under 0.01 %" if chance > 0 else "0 %"
+def per_cent(chance: float) -> str:
+    """A chance as a reader wants it: never 0 or 100 % where it is not.
+
+    >>> per_cent(0.0088), per_cent(0.947), per_cent(0.9999), per_cent(1e-6), per_cent(0.0)
+    ('0.88 %', '95 %', 'over 99 %', 'under 0.01 %', '0 %')
+    """
+    if 0.99 < chance < 1:
+        return "over 99 %"
+    if 0 < chance < 1e-4:
+        return "under 0.01 %"
+    return f"{100 * chance:.0f} %" if chance >= 0.1 else f"{100 * chance:.2g} %"
 
 
 def log_figure(history: History, margin: Margin) -> Figure:

@@ -21,6 +21,7 @@ from .supply import Supply
 
 REPLICATES = 8  # independent scrambles, whose spread is the estimated error
 POINTS = 1024  # of each, a power of 2
+FEWER = 128  # where many margins are only compared
 CREDIBLE = (2.5, 97.5)  # per cent of the draws
 
 
@@ -109,9 +110,11 @@ def recommended_current(device: Device) -> float:
 
 
 def residual_margin(
-    device: Device, leaks: Sequence[Leak], supply: Supply, *, seed: int = 1
+    device: Device, leaks: Sequence[Leak], supply: Supply, *, seed: int = 1, points: int = POINTS
 ) -> Margin:
     """The margin of `device` with `leaks` behind it; the same seed gives the same numbers.
+
+    `points`, a power of 2, are drawn in each of eight sets.
 
     >>> from unlanded.study.standing import resistive_leak
     >>> supply = Supply(230.0, 50.0)
@@ -123,9 +126,8 @@ def residual_margin(
     if not leaks:
         raise Refused("standing current", "nothing stands behind the device")
     rows = bank(leaks, supply)
-    sets = point_sets(rows.dimensions, seed=seed)
-    points = np.concatenate(sets)
-    phasors, pieces = drawn(rows, points)
+    sets = point_sets(rows.dimensions, seed=seed, points=points)
+    phasors, pieces = drawn(rows, np.concatenate(sets))
     total = phasors.sum(axis=2)
     rest = _rest(rows, leaks, total, pieces, device, supply)
     found = Margin(device, supply, tuple(leaks), total[0], rest,
@@ -137,10 +139,10 @@ def residual_margin(
         found, chance=float(by_set.mean()),
         chance_error=float(by_set.std(ddof=1) / math.sqrt(len(sets))),
         chance_all_on=float(by_set.mean()) if busy else residual_margin(
-            device, [leak.all_on() for leak in leaks], supply, seed=seed).chance)
+            device, [leak.all_on() for leak in leaks], supply, seed=seed, points=points).chance)
 
 
-def point_sets(dimensions: int, *, seed: int, points: int = POINTS) -> list[Real]:
+def point_sets(dimensions: int, *, seed: int, points: int) -> list[Real]:
     """Independently scrambled Sobol' points, `REPLICATES` sets of (points, dimensions)."""
     from scipy.stats import qmc
 
@@ -156,7 +158,7 @@ def added_pieces(margin: Margin, leak: str, extra: Sequence[int]) -> tuple[Margi
     return tuple(
         residual_margin(margin.device, [
             replace(known, count=known.count + more) if known.name == leak else known
-            for known in margin.leaks], margin.supply)
+            for known in margin.leaks], margin.supply, points=FEWER)
         for more in extra)
 
 

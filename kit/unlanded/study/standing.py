@@ -235,10 +235,11 @@ def drawn(rows: Bank, points: Real) -> tuple[Complex, Real]:
     """
     u = points[:, rows.columns]
     pieces = _triangular(u[..., 0], rows.low, rows.high) * _number(rows, u[..., 3])
-    turned = pieces * np.exp(1j * CAPACITIVE * np.where(rows.free_angle, u[..., 1], 0.0))
+    lead = CAPACITIVE * np.where(rows.free_angle, u[..., 1], 0.0)
     line = np.where(rows.free_line, np.floor(u[..., 2] * rows.lines) / rows.lines, 0.0)
-    orders = np.array(rows.orders)[:, None, None]
-    return rows.phasors[:, None, :] * turned * np.exp(-2j * np.pi * orders * line), pieces
+    turned = [phasor * pieces * np.exp(1j * (lead - 2 * np.pi * order * line))
+              for order, phasor in zip(rows.orders, rows.phasors, strict=True)]
+    return np.array(turned), pieces
 
 
 def _triangular(u: Real, low: Real, high: Real) -> Real:
