@@ -45,6 +45,8 @@ def packed_positions(outer: Real, *, pipe_radius: float, count: int, seed: int) 
     gets stuck is dropped again in another order, up to 60 times, then the whole is refused.
     """
     outer = np.asarray(outer, dtype=float)
+    if not len(outer):
+        raise Refused("in conduit", "needs at least one single")
     if np.any(outer > pipe_radius):
         raise Refused("in conduit", f"every single must be under {2 * pipe_radius:.4g} m across",
                       given=f"{2 * outer.max():.4g} m")
