@@ -38,7 +38,8 @@ def test_keys_that_are_missing_or_unknown(change: tuple[str, str], says: str) ->
 
 def test_a_list_where_tables_belong_and_the_other_way_round() -> None:
     said = refusals("title = []\nsupply = []\nrun = 5\nreadings = [[], 1]\nsheet = [1]\n"
-                    "device = 1979-05-27\nown_instruments = {}")
+                    "device = 1979-05-27\nown_instruments = {}\n"
+                    "standing = [{name = 'x', equipment = {}}]")
     assert [s.split(", ", 1)[1] for s in said] == [
         "title: must be text in quotes; given a list.",
         "supply: must be a table; given a list. (written [supply] or supply = {…})",
@@ -48,6 +49,7 @@ def test_a_list_where_tables_belong_and_the_other_way_round() -> None:
         "sheet: must be a table; given a list. (written [sheet] or sheet = {…})",
         "device: must be a table; given 1979-05-27. (written [device] or device = {…})",
         "own_instruments: must be a list; given a table.",
+        "standing[1].equipment: must be text in quotes; given a table.",
     ]
 
 
@@ -142,7 +144,7 @@ def test_no_garbled_case_is_a_traceback_or_a_riddle(name: str, seed: int) -> Non
             assert said.startswith(("c.toml", "run: is too long electrically"))
             assert said.isprintable()
             assert said.endswith((".", ")"))
-            assert not _JARGON.search(said), said
+            assert not _JARGON.search(said.partition("; given")[0]), said
 
 
 @settings(max_examples=200, deadline=None, derandomize=True, database=None)

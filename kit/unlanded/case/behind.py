@@ -30,7 +30,9 @@ from .fields import (
     Share,
     Table,
     Title,
+    told_here,
     vocabulary,
+    written,
 )
 
 _KINDS = ("equipment", "current", "capacitance", "resistance", "length", "high_frequency")
@@ -88,10 +90,12 @@ class Amperes(Table):
 
 
 def _known_class(given: Any) -> Value:
+    if not isinstance(given, str):
+        raise Refused("", "must be text in quotes", given=written(given))
     try:
         return equipment(given)
     except Refused as refusal:
-        raise Refused.all_of(replace(m, place="") for m in refusal.mistakes) from None
+        raise told_here(refusal) from None
 
 
 class Standing(Table):
