@@ -10,7 +10,7 @@ import numpy as np
 
 from ..reference.instruments import Instrument
 from ..study.ends import Open, Through
-from ..study.readings import ReadingSheet, length_curve, loading_curve
+from ..study.readings import ReadingSheet, loading_curve, ports_along, voltages_across
 from ..units import FOOT, show
 from .figure import Figure, even_axis
 from .figures import length_figure, loading_figure, sheet_figure, sheet_marks
@@ -22,6 +22,8 @@ from .words import point_words
 
 INSTRUMENTS = 6  # columns of readings that a page holds
 LINES = 16  # of a table in the text; longer ones keep the pairs with earth, the annex the rest
+ANNEX = 40  # of an annex; longer ones are only in sheet.csv
+UNFED = 8  # of the summary's table
 CHARTED = 10  # lines on the chart
 NEGLIGIBLE = 1e-6  # amperes: less is said to be less
 
@@ -36,28 +38,24 @@ _HOW_TO_READ = (
 
 def expected_finding(investigation: Investigation) -> list[Block]:
     """What to expect on the conductors that nothing feeds, in sentences with numbers."""
-    lines = sheet_lines(investigation.sheet)
-    main = main_line(investigation, lines)
+    main = main_line(investigation)
     if main is None:
         return [Paragraph("No instrument changes the voltage on any pair: all of them show nearly "
                           "the same, and no pair is fed only through the capacitance of the run.")]
     found: list[Block] = [Paragraph(_line_sentences(main))]
-    others = [line for line in lines if line.pulled and line.to_earth]
+    others = [line for line in investigation.lines if line.pulled and line.to_earth]
     if len(others) > 1:
         found.append(_unfed_table(others, investigation))
     if words := [w for end in ("near", "far") for w in _load_sentences(investigation, end)]:
         found.append(Paragraph(" ".join(words)))
-    return [*found, Paragraph(_residual_sentences(investigation, lines))]
+    return [*found, Paragraph(_residual_sentences(investigation))]
 
 
 def expected_part(investigation: Investigation) -> Part:
     """The expected readings, and the pictures of the line that matters most."""
-    lines = _shown_lines(investigation)
-    blocks: list[Block] = [Paragraph(_HOW_TO_READ),
+    lines, rest = _shared_out(investigation)
+    blocks: list[Block] = [Paragraph(f"{_HOW_TO_READ} {_rest_words(rest)}"),
                            *_tables(lines, investigation.instruments, "", "")]
-    if rest := _annex_lines(investigation):
-        blocks.insert(1, Paragraph(f"The tables have the pairs with earth; {len(rest)} more "
-                                   "lines are in the annex, every pair by itself in sheet.csv."))
     charted = [line for line in lines if line.pulled][:CHARTED]
     if charted:
         names = [line.name for line in charted]
@@ -65,7 +63,7 @@ def expected_part(investigation: Investigation) -> Part:
             names = [line.place for line in charted]
         blocks.append(sheet_figure(investigation.sheet, [line.first.pair for line in charted],
                                    names=names))
-    if main := main_line(investigation, lines):
+    if main := main_line(investigation):
         blocks.append(_loading(investigation, main))
         if _meters(investigation):
             blocks.append(_length(investigation, main))
@@ -73,21 +71,21 @@ def expected_part(investigation: Investigation) -> Part:
 
 
 def annex_part(investigation: Investigation) -> Part | None:
-    """The lines that the text has no room for; None where it has them all."""
-    lines = _annex_lines(investigation)
-    if not lines:
+    """The lines that the text has no room for; None where there are none, or too many."""
+    _, lines = _shared_out(investigation)
+    if not 0 < len(lines) <= ANNEX:
         return None
     return Part("Annex: readings on the other pairs",
                 _tables(lines, investigation.instruments, "annex-", ", pairs without earth"))
 
 
-def main_line(investigation: Investigation, lines: Sequence[SheetLine]) -> SheetLine | None:
+def main_line(investigation: Investigation) -> SheetLine | None:
     """The line that the memo is about; None where no instrument pulls a pair down.
 
     That is where a reading was taken, else the highest unloaded voltage that an instrument pulls
     down to less than half; pairs with earth go before others.
     """
-    pulled = [line for line in lines if line.pulled]
+    pulled = [line for line in investigation.lines if line.pulled]
     for taken in investigation.case.content.readings:
         for line in pulled:
             if any({taken.a, taken.b} == {p.a, p.b} for p in line.pairs):
@@ -129,14 +127,20 @@ def sheet_results(investigation: Investigation) -> list[Mapping[str, Any]]:
     ]
 
 
-def _shown_lines(investigation: Investigation) -> list[SheetLine]:
-    lines = sheet_lines(investigation.sheet)
-    return [line for line in lines if len(lines) <= LINES or line.to_earth]
+def _shared_out(investigation: Investigation) -> tuple[list[SheetLine], list[SheetLine]]:
+    """The lines of the text, and the rest."""
+    lines = list(investigation.lines)
+    if len(lines) <= LINES:
+        return lines, []
+    return [x for x in lines if x.to_earth], [x for x in lines if not x.to_earth]
 
 
-def _annex_lines(investigation: Investigation) -> list[SheetLine]:
-    lines = sheet_lines(investigation.sheet)
-    return [line for line in lines if len(lines) > LINES and not line.to_earth]
+def _rest_words(rest: Sequence[SheetLine]) -> str:
+    if not rest:
+        return "Every pair by itself is in sheet.csv."
+    annex = "are in the annex" if len(rest) <= ANNEX else "would fill many pages"
+    return (f"The tables have the pairs with earth; {len(rest)} more lines {annex}. Every pair by "
+            "itself is in sheet.csv.")
 
 
 def _line_sentences(line: SheetLine) -> str:
@@ -168,8 +172,10 @@ def _unfed_table(lines: Sequence[SheetLine], investigation: Investigation) -> Ta
          *(Column(t.name, "V", "right") for t in ends)),
         tuple((f"{line.name}, {line.end}", show(abs(line.first.unloaded), "V"),
                show(line.short_circuit, "A"), *(line.reading(t) for t in ends))
-              for line in lines),
-        "Can drive: the current through a short circuit.")
+              for line in lines[:UNFED]),
+        "Can drive: the current through a short circuit."
+        + (f" {len(lines) - UNFED} more are among the expected readings."
+           if len(lines) > UNFED else ""))
 
 
 def _meters(investigation: Investigation) -> list[Instrument]:
@@ -196,14 +202,13 @@ def _load_sentences(investigation: Investigation, end: str) -> list[str]:
     return found
 
 
-def _residual_sentences(investigation: Investigation, lines: Sequence[SheetLine]) -> str:
+def _residual_sentences(investigation: Investigation) -> str:
     said = (f"The run by itself sends {show(abs(investigation.run.residual), 'A')} back by earth, "
             "which a residual-current device in front of it sees.")
-    worst = max((r for line in lines for r in line.rows), key=lambda r: abs(r.residual_added))
-    line = next(x for x in lines if worst in x.rows)
+    line = max(investigation.lines, key=lambda x: x.residual_added)
+    worst = max(line.rows, key=lambda r: abs(r.residual_added))
     return (f"{said} The most that a measurement adds to that is "
-            f"{show(abs(worst.residual_added), 'A')}, by the {worst.instrument.name} on "
-            f"{line.name}.")
+            f"{show(line.residual_added, 'A')}, by the {worst.instrument.name} on {line.name}.")
 
 
 def _tables(
@@ -266,6 +271,8 @@ def _length(investigation: Investigation, line: SheetLine) -> Figure:
     unit = FOOT if investigation.customary else 1.0
     longest = unit * even_axis("", "", 0.0, 1.8 * run.length / unit).high
     lengths = np.linspace(longest / 60, longest, 60)
-    curves = {t.name: length_curve(run, pair, t, lengths) for t in _meters(investigation)[:4]}
+    ports = ports_along(run, pair, lengths)
+    curves = {t.name: voltages_across(t, ports, frequency=run.frequency)
+              for t in _meters(investigation)[:4]}
     return length_figure(pair, lengths, curves, length=run.length,
                          customary=investigation.customary)

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 from ..case.build import build_run, case_instruments
 from ..case.loading import Case
 from ..reference.instruments import Instrument
-from ..study.readings import Pair, ReadingSheet, SheetRow, reading_sheet
+from ..study.readings import ReadingSheet, reading_sheet
 from ..study.run import Run
+from .sheet_lines import SheetLine, sheet_lines
 
 
 @dataclass(frozen=True, eq=False)
@@ -41,9 +43,10 @@ class Investigation:
         """The run, and its low and high ends."""
         return self.run, self.low, self.high
 
-    def rows(self, pair: Pair) -> tuple[SheetRow, ...]:
-        """The sheet's rows of one pair, in the order of the instruments."""
-        return tuple(r for r in self.sheet.rows if r.pair == pair)
+    @cached_property
+    def lines(self) -> tuple[SheetLine, ...]:
+        """The sheet's lines, those first that an instrument pulls down."""
+        return sheet_lines(self.sheet)
 
 
 def investigate(case: Case) -> Investigation:

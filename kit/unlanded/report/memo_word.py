@@ -198,7 +198,7 @@ def _template(path: Path) -> Any:
     if not path.is_file():
         raise Refused(place, "no such file")
     try:
-        document = Document(str(path))
+        document = Document(io.BytesIO(path.read_bytes()))
     except (ValueError, KeyError, zipfile.BadZipFile, OSError) as problem:
         raise Refused(place, "is not a Word document that can be read",
                       hint="open it in the word processor and save it as .docx") from problem

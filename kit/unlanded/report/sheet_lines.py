@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from ..physics.network import EARTH
@@ -96,9 +96,11 @@ def sheet_lines(sheet: ReadingSheet, *, merged: bool = True) -> tuple[SheetLine,
     Pairs are merged where they have a conductor in common and every instrument reads them alike,
     to within its own accuracy or 2 %.
     """
-    rows = {pair: tuple(r for r in sheet.rows if r.pair == pair) for pair in sheet.pairs}
+    rows: dict[Pair, list[SheetRow]] = {}
+    for row in sheet.rows:
+        rows.setdefault(row.pair, []).append(row)
     found: list[list[Pair]] = []
-    for pair in (p for p in sheet.pairs if rows[p]):
+    for pair in rows:
         homes = (line for line in found if merged and _belongs(pair, line, rows))
         if (home := next(homes, None)) is None:
             found.append([pair])
@@ -150,7 +152,7 @@ def _bases(pair: Pair) -> tuple[str, str]:
 
 
 def _belongs(
-    pair: Pair, line: Sequence[Pair], rows: dict[Pair, tuple[SheetRow, ...]]
+    pair: Pair, line: Sequence[Pair], rows: Mapping[Pair, Sequence[SheetRow]]
 ) -> bool:
     common = set(_bases(pair)).intersection(*map(_bases, line))
     if not common:
@@ -161,6 +163,9 @@ def _belongs(
 
 
 def _alike(a: SheetRow, b: SheetRow) -> bool:
+    if a.instrument.kind == "body":
+        currents = abs(a.current), abs(b.current)
+        return abs(currents[0] - currents[1]) <= STIFF * max(currents)
     values = a.reading.value, b.reading.value
     if all(map(math.isfinite, values)):
         allowed = max(a.reading.half_width, b.reading.half_width, STIFF * max(values))
