@@ -121,6 +121,106 @@ def memo(case: Path, into: Path | None, date: datetime.datetime | None, overwrit
     click.echo(CAUTION)
 
 
+@main.command()
+@click.argument("case", type=FILE)
+@refusing
+def margin(case: Path) -> None:
+    """Print what stands behind the device of a case, its margin, and what would trip it."""
+    from .case.loading import load_case
+    from .report.case_memo import investigate
+    from .report.margin import margin_part
+    from .report.terminal import part_text
+
+    part = margin_part(investigate(load_case(case)))
+    if part is None:
+        raise Refused(str(case), "has no residual-current device",
+                      hint='write [device] with rated = "30 mA"')
+    click.echo(part_text(part, _width()))
+    click.echo(f"\n{CAUTION}")
+
+
+@main.command()
+@click.argument("register", type=FILE)
+@click.option("--into", type=FILE, help="Folder to make; REGISTER-screen when not given.")
+@click.option("--voltage", default="230 V", show_default=True, help="Line to neutral.")
+@click.option("--frequency", default="50 Hz", show_default=True)
+@click.option("--regroup", help="Board whose circuits to regroup; a small register's only one.")
+@click.option("--date", type=click.DateTime(["%Y-%m-%d"]), help="That the memo bears.")
+@click.option("--overwrite", is_flag=True, help="Replace an older memo in that folder.")
+@refusing
+def screen(register: Path, into: Path | None, voltage: str, frequency: str, regroup: str | None,
+           date: datetime.datetime | None, overwrite: bool) -> None:
+    """Rank the devices of a register (CSV) by margin: table, memo and results in one folder."""
+    from tqdm import tqdm
+
+    from .case.register import read_register
+    from .case.screening import screen_register
+    from .report.folder import write_folder
+    from .report.screen_memo import ranking_table, screen_contents, screen_summary
+    from .report.tables import plain
+    from .study.supply import Supply
+    from .units import si
+
+    supply = Supply(si(voltage, "V", place="--voltage"), si(frequency, "Hz", place="--frequency"))
+    listed = read_register(register)
+    with tqdm(total=len(listed.devices), unit=" devices", disable=None) as bar:
+        found = screen_register(listed, register.parent, supply, progress=bar.update,
+                                regroup_board=regroup)
+    command = f'unlanded screen "{register.name}" --voltage "{voltage}" --frequency "{frequency}"'
+    command += f' --regroup "{regroup}"' if regroup else ""
+    target = into or Path(f"{register.stem}-screen")
+    day = date.date() if date else datetime.date.today()
+    contents = screen_contents(found, register.read_bytes(), date=day, command=command)
+    write_folder(target, contents, overwrite=overwrite)
+    click.echo(screen_summary(found))
+    click.echo(plain(ranking_table(found, 10), _width()))
+    click.echo(f"The memo and the table of all devices are in {target.absolute()}\n{CAUTION}")
+
+
+def _width() -> int:
+    """Of the terminal, in letters; 100 where there is none."""
+    return max(60, shutil.get_terminal_size((100, 24)).columns)
+
+
+@main.command()
+@click.argument("folder", type=FILE)
+@click.option("--no-open", is_flag=True, help="Only copy; do not start JupyterLab.")
+@refusing
+def workbook(folder: Path, no_open: bool) -> None:
+    """Copy the notebooks and demo sites to a folder, and open JupyterLab there."""
+    from .panels.notebooks import copy_workbook, lab_command
+
+    made, kept = copy_workbook(folder)
+    click.echo(f"Copied {len(made)} files to {folder.absolute()}"
+               + (f"; {len(kept)} were there already and are as they were" if kept else ""))
+    click.echo(CAUTION)
+    if not no_open:
+        import subprocess
+
+        click.echo("JupyterLab opens in the browser; stop it here with Ctrl-C twice.")
+        sys.exit(subprocess.run(lab_command(folder), check=False).returncode)
+
+
+@main.command()
+@click.argument("folder", type=FILE)
+@click.option("--refresh", is_flag=True, help="Store the new output in the notebooks.")
+@refusing
+def rerun(folder: Path, refresh: bool) -> None:
+    """Run every notebook of a folder without a browser, and say which numbers have moved."""
+    from tqdm import tqdm
+
+    from .panels import notebooks
+
+    do = notebooks.refresh if refresh else notebooks.compare
+    found = notebooks.notebooks_in(folder)
+    moved = [m for path in tqdm(found, unit=" notebooks", disable=None) for m in do(path)]
+    for line in moved:
+        click.echo(str(line))
+    click.echo(f"{len(found)} notebooks run, {len(moved)} lines moved.")
+    if moved and not refresh:
+        sys.exit(1)
+
+
 def write_new(path: Path, data: bytes) -> None:
     """Write a file that is not there yet; whole, or not at all."""
     try:
