@@ -36,7 +36,9 @@ class Burden:
         for word in ("resistance", "inductance", "capacitance", "front_resistance"):
             value = getattr(self, word)
             if not value >= 0 or (math.isinf(value) and word != "resistance"):
-                raise Refused("burden", f"{word.replace('_', ' ')} must be at least 0", given=value)
+                finite = "" if word == "resistance" else " and finite"
+                raise Refused("burden", f"{word.replace('_', ' ')} must be at least 0{finite}",
+                              given=value)
         if self.resistance == self.inductance == self.front_resistance == 0:
             raise Refused("burden", "a resistance of 0 Ω is a bond", hint="bond the two points")
 

@@ -66,15 +66,15 @@ def mistakes(
     end: str, given: Ends, names: Sequence[str], lines: Sequence[str]
 ) -> Iterator[Mistake]:
     """What is wrong with one end of a run of conductors `names`, fed by `lines`."""
-    allowed = {
-        Driven: tuple(lines), Bonded: (EARTH, NEUTRAL), Joined: tuple(names),
-        Through: (*names, EARTH, NEUTRAL, *lines),
-    }
     for name, t in given.items():
         place = f'{end} end of "{name}"'
         if name not in names:
             yield Mistake(place, "is not a conductor", "", nearest(name, names))
         elif not isinstance(t, Open):
-            to = word(t)
-            if to == name or to not in allowed[type(t)]:
-                yield Mistake(place, "cannot be connected there", to, nearest(to, allowed[type(t)]))
+            to, others = word(t), tuple(n for n in names if n != name)
+            allowed = {
+                Driven: tuple(lines), Bonded: (EARTH, NEUTRAL), Joined: others,
+                Through: (*others, EARTH, NEUTRAL, *lines),
+            }[type(t)]
+            if to not in allowed:
+                yield Mistake(place, "cannot be connected there", to, nearest(to, allowed))
