@@ -19,7 +19,8 @@ from .figure import Figure
 from .memo import Memo
 from .tables import Table, write_csv
 
-OURS = frozenset({"memo.docx", "memo.pdf", "figures", "tables", "results.json", "case.toml"})
+OURS = frozenset({"memo.docx", "memo.pdf", "figures", "tables", "results.json", "case.toml",
+                  "register.csv"})
 
 
 @dataclass(frozen=True)
@@ -35,6 +36,7 @@ class Contents:
     template : a firm's own .docx
     paper : "a4" or "us-letter"
     more_tables : written beside the memo's own as CSV, too large for it
+    case_name : of the copy of the case: "case.toml" or "register.csv"
     """
 
     memo: Memo
@@ -43,6 +45,7 @@ class Contents:
     template: Path | None = None
     paper: str = "a4"
     more_tables: tuple[Table, ...] = ()
+    case_name: str = "case.toml"
 
 
 def write_folder(target: Path, contents: Contents, *, overwrite: bool = False) -> tuple[Path, ...]:
@@ -145,7 +148,7 @@ def _fill(room: Path, contents: Contents) -> None:
     (room / "memo.pdf").write_bytes(pdf_bytes(memo, pictures["svg"], paper=contents.paper))
     (room / "results.json").write_text(results_text(contents.results), encoding="utf-8",
                                        newline="\n")
-    (room / "case.toml").write_bytes(contents.case_text)
+    (room / contents.case_name).write_bytes(contents.case_text)
 
 
 def _open_to_readers(room: Path) -> None:
