@@ -49,9 +49,15 @@ def sites(quay: Investigation, mill: Investigation, moor: Investigation,
 
 
 @pytest.fixture(scope="session")
-def contents(quay: Investigation) -> Contents:
+def memos(sites: tuple[Investigation, ...]) -> tuple[Contents, ...]:
+    """Of the memo of each."""
+    return tuple(case_contents(site, date=DAY, prepared_by="A. Engineer") for site in sites)
+
+
+@pytest.fixture(scope="session")
+def contents(memos: tuple[Contents, ...]) -> Contents:
     """Of the memo of Tern Quay."""
-    return case_contents(quay, date=DAY, prepared_by="A. Engineer")
+    return memos[0]
 
 
 @pytest.fixture(scope="session")

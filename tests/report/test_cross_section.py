@@ -1,5 +1,7 @@
 from __future__ import annotations
 
+from itertools import pairwise
+
 import numpy as np
 import pytest
 
@@ -65,7 +67,7 @@ def test_every_name_of_a_crowded_section_has_its_own_row(sites: tuple[Investigat
         for side in ("left", "right"):
             heights = sorted(n.y for n in figure.notes if n.align == side and n.target)
             assert all(b - a > 0.02 * (figure.y.high - figure.y.low)
-                       for a, b in zip(heights, heights[1:], strict=False))
+                       for a, b in pairwise(heights))
         assert all(figure.x.low <= n.x <= figure.x.high for n in figure.notes)
 
 

@@ -1,12 +1,9 @@
 from __future__ import annotations
 
-from datetime import date
-
 import numpy as np
 import pytest
 
 from unlanded.errors import Refused
-from unlanded.report.case_memo import case_contents
 from unlanded.report.figure import Figure
 from unlanded.report.figures import (
     InstrumentMark,
@@ -15,6 +12,7 @@ from unlanded.report.figures import (
     sheet_figure,
     sheet_marks,
 )
+from unlanded.report.folder import Contents
 from unlanded.report.investigation import Investigation
 from unlanded.study.readings import Pair, usual_pairs
 
@@ -29,9 +27,9 @@ def every_array(figure: Figure) -> list[np.ndarray]:
     return [*arrays, figure.field.values] if figure.field else arrays
 
 
-def test_figures_of_every_site_are_whole(sites: tuple[Investigation, ...]) -> None:
-    for site in sites:
-        figures = case_contents(site, date=date(2026, 3, 9)).memo.figures
+def test_figures_of_every_site_are_whole(memos: tuple[Contents, ...]) -> None:
+    for made in memos:
+        figures = made.memo.figures
         assert {f.key for f in figures} >= READINGS
         for figure in figures:
             assert all(np.isfinite(a).all() for a in every_array(figure))
@@ -55,8 +53,9 @@ def test_loading_figure_says_its_ends_and_marks() -> None:
     assert figure.alternative == ("Curve rising from 99.9 mV at 1 kΩ to 99.9 V at 1 GΩ. "
                                   "Instruments: meter: 50.0 V.")
     assert figure.y.high >= 109.9
-    assert [(n.text, n.target) for n in figure.notes] == [("meter: 50.0 V", pytest.approx((1e6, 50),
-                                                                                   rel=1e-9, abs=0))]
+    note, = figure.notes
+    assert note.text == "meter: 50.0 V"
+    assert note.target == pytest.approx((1e6, 50), rel=1e-9, abs=0)
     assert "range of permittivity" in figure.caption
     assert "Shaded" not in loading_figure(PAIR, OHMS, volts, []).caption
 

@@ -25,7 +25,7 @@ def test_flags_are_within_the_picture_and_clear_of_each_other(
         assert right <= 1
         assert bottom >= 0
         assert top <= 1
-    apart = {p for p in points}
+    apart = set(points)
     if len(apart) == len(points):
         assert [(a.x, b.x) for a, b in combinations(found, 2) if a.clashes(b)] == []
 
