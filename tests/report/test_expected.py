@@ -36,7 +36,7 @@ def test_the_finding_is_what_the_run_says(quay: Investigation) -> None:
     assert f"can drive {show(abs(port.voltage / port.impedance), 'A')} through" in said
     reading = next(r for r in quay.sheet.rows if (r.pair.a, r.instrument.key) == (
         "black@near", "digital-10M")).reading.text
-    assert f"the digital meter, 10 MΩ shows {reading} (" in said
+    assert f"the digital meter (10 MΩ) shows {reading} (" in said
     assert "what capacitive coupling looks like" in said
     assert f"sends {show(abs(quay.run.residual), 'A')} back by earth" in said
 

@@ -18,7 +18,7 @@ from .investigation import Investigation
 from .memo import Block, Paragraph, Part
 from .sheet_lines import SheetLine, sheet_lines
 from .tables import Column, Table
-from .words import point_words
+from .words import point_words, tool_words
 
 INSTRUMENTS = 6  # columns of readings that a page holds
 LINES = 16  # of a table in the text; longer ones keep the pairs with earth, the annex the rest
@@ -155,8 +155,9 @@ def _line_sentences(line: SheetLine) -> str:
                   key=lambda r: abs(r.voltage))
     if len(rows) > 1:
         most, least = rows[-1].instrument, rows[0].instrument
-        said.append(f"If all is as described, the {most.name} shows {line.reading(most, 'V')}, "
-                    f"and the {least.name} {line.reading(least, 'V')}.")
+        said.append(f"If all is as described, the {tool_words(most.name)} shows "
+                    f"{line.reading(most, 'V')}, and the {tool_words(least.name)} "
+                    f"{line.reading(least, 'V')}.")
     if len(rows) > 1 and not math.isnan(row.source_capacitance):
         said.append("Both together are what capacitive coupling looks like; a reading that stays "
                     "up on the instrument of low impedance is not explained by it.")
@@ -208,7 +209,8 @@ def _residual_sentences(investigation: Investigation) -> str:
     line = max(investigation.lines, key=lambda x: x.residual_added)
     worst = max(line.rows, key=lambda r: abs(r.residual_added))
     return (f"{said} The most that a measurement adds to that is "
-            f"{show(line.residual_added, 'A')}, by the {worst.instrument.name} on {line.name}.")
+            f"{show(line.residual_added, 'A')}, by the {tool_words(worst.instrument.name)} on "
+            f"{line.name}.")
 
 
 def _tables(
@@ -270,7 +272,7 @@ def _length(investigation: Investigation, line: SheetLine) -> Figure:
     run, pair = investigation.run, line.first.pair
     unit = FOOT if investigation.customary else 1.0
     longest = unit * even_axis("", "", 0.0, 1.8 * run.length / unit).high
-    lengths = np.linspace(longest / 60, longest, 60)
+    lengths = longest * np.linspace(0.1, 1.0, 60) ** 2  # closest where the curves are steepest
     ports = ports_along(run, pair, lengths)
     curves = {t.name: voltages_across(t, ports, frequency=run.frequency)
               for t in _meters(investigation)[:4]}

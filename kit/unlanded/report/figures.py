@@ -169,7 +169,8 @@ def length_figure(
         x=even_axis("Run length", unit, 0.0, float(along[-1])),
         y=even_axis("Voltage, RMS", "V", 0.0, max(top, 1e-3)),
         caption=f"Voltage on {where}, against the length of the run, on each instrument. "
-        f"{_band_words(band, f', for {first}')}The run as it is: {here}.",
+        f"{_band_words(band, f', for {first}')}The run as it is: {here}. A step is a "
+        "change of the instrument's range.",
         alternative=f"Curves of voltage over run lengths up to {end}. At {here}: {listed(at)}.",
         numbers=tuple(at),
         bands=(Band(along, edges[0], edges[1], f"{RANGE}, {first}", 0),) if band else (),

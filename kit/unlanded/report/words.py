@@ -29,6 +29,16 @@ def pair_words(a: str, b: str, *, end: bool = True) -> str:
     return f"{names}, {ends[0]} end" if ends and end else names
 
 
+def tool_words(name: str) -> str:
+    """An instrument's name as a sentence takes it, which has commas of its own.
+
+    >>> tool_words("digital meter, 10 MΩ"), tool_words("coil tester")
+    ('digital meter (10 MΩ)', 'coil tester')
+    """
+    kind, _, more = name.partition(", ")
+    return f"{kind} ({more})" if more else name
+
+
 def listed(words: tuple[str, ...] | list[str], last: str = "and") -> str:
     """Words joined as a sentence lists them, with `last` before the last of them.
 
