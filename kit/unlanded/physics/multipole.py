@@ -5,12 +5,18 @@ multipoles at the centre z_i (λ = q / 2π ε_filler, everything complex in the 
 
     φ(z) = Re Σ_i [ −λ_i ln(z − z_i) + Σ_m A_im (b_i / (z − z_i))^m ]  + images in the wall
 
-A covered conductor answers the incoming harmonic L_n (w/b)^n with A_n = ρ_n conj(L_n).
-Written for the scaled unknowns x_m = sqrt(m / |ρ_m|) A_m, real parts then imaginary parts, this
-is a symmetric system K x = −g λ, and the conductors' potentials are V = (P₀ − gᵀ K⁻¹ g) λ.
-Reciprocity makes K symmetric; energy makes it positive definite whenever every cover has at
-least the filler's permittivity, so that one Cholesky factorisation of [[K, g], [gᵀ, P₀]]
-holds the wanted Schur complement in its last rows.
+A covered conductor answers the incoming harmonic L_n (w/b)^n with A_n = ρ_n conj(L_n). Let r list
+the pairs (conductor, order m). In the scaled unknowns x_r = √(m / |ρ_r|) A_r the answers are
+
+    −sign(ρ_r) x_r + Σ_s [ conj(S_rs x_s) − H_rs x_s ] = −Σ_j conj(g_rj) λ_j
+
+where S, symmetric, is what the others' multipoles do and H, Hermitian, what the images do. As a
+real system K x = −g λ in Re x_1, Im x_1, Re x_2, … it is symmetric, and the conductors' potentials
+are V = (P₀ − gᵀ K⁻¹ g) λ. K is positive definite, being an energy, whenever every cover has at
+least the filler's permittivity. Then the Cholesky factor UᵀU of [[K, g], [gᵀ, P₀]] shows in its
+last columns, the rows y_k above a block U_c, how V = P λ converges:
+
+    P = U_cᵀ U_c,    and with the first k unknowns alone    P_k = P + Σ_{l>k} y_lᵀ y_l.
 
 Sources: the harmonic expansion of covered wires is that of Clements, Paul and Adams, IEEE Trans.
 EMC-17 (1975) 238; images in a plane and a circle are textbook (Smythe).
@@ -21,6 +27,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -91,126 +98,132 @@ def reflection(geometry: Geometry, orders: int) -> Real:
 
 @dataclass(frozen=True)
 class System:
-    """The symmetric system of a batch, for multipoles listed as (conductor, order).
+    """The symmetric system of a batch of B sections, for N multipoles and n charges.
 
-    `lower` (B, 2N + n, 2N + n) is the lower triangle of [[K, g], [gᵀ, P₀]] with the unknowns in
-    the order: real and imaginary parts of the first `coarse` multipoles, the n charges, then the
-    remaining multipoles. So the leading block is the system truncated to the first `coarse` multipoles,
-    and one factorisation yields the answer at both truncations.
+    `upper` (B, 2N + n, 2N + n) is the Cholesky factor U of [[K, g], [gᵀ, P₀]] when `definite`
+    (only its upper triangle is meant), else that matrix itself. `coarse`, ascending, are numbers
+    of multipoles at which the series is also cut. A = `amplitude` × x, (B, N).
     """
 
-    lower: Real
-    coarse: int
+    upper: Real
+    coarse: tuple[int, ...]
     charges: int
     definite: bool
-    amplitude: Real  # A = amplitude × x, (B, N)
+    amplitude: Real
 
-    def inverse_potential_coefficients(self) -> tuple[Real, Real]:
-        """P⁻¹ (B, n, n) at the coarse and at the full truncation, for V = P λ."""
-        start, stop = 2 * self.coarse, 2 * self.coarse + self.charges
-        if not self.definite:
-            whole = _symmetric(self.lower)
-            return (_inverse_block(whole[:, :stop, :stop], start, stop),
-                    _inverse_block(whole, start, stop))
-        factor = np.linalg.cholesky(self.lower)  # reads the lower triangle only
-        own = np.linalg.inv(factor[:, start:stop, start:stop])
-        coarse = own.swapaxes(-1, -2) @ own
-        if stop == self.lower.shape[-1]:
-            return coarse, coarse
-        gain = np.linalg.solve(factor[:, stop:, stop:], factor[:, stop:, start:stop] @ own)
-        return coarse, coarse + gain.swapaxes(-1, -2) @ gain
+    def inverse_potential_coefficients(self) -> Real:
+        """P⁻¹ for V = P λ, cut at each of `coarse` and in full: (cuts + 1, B, n, n)."""
+        stop = self.upper.shape[-1] - self.charges
+        ends = [2 * k for k in self.coarse] + [stop]
+        own, coupling = self.upper[:, stop:, stop:], self.upper[:, :stop, stop:]
+        if self.definite:
+            own = np.triu(own)
+            potential = [own.swapaxes(-1, -2) @ own]
+            for start, end in zip(ends[-2::-1], ends[:0:-1], strict=True):
+                y = coupling[:, start:end]
+                potential.insert(0, potential[0] + y.swapaxes(-1, -2) @ y)
+        else:
+            potential = [
+                own - coupling[:, :k].swapaxes(-1, -2)
+                @ np.linalg.solve(self.upper[:, :k, :k], coupling[:, :k])
+                for k in ends
+            ]
+        return np.linalg.inv(np.array(potential))
 
     def response(self, charges: Real) -> tuple[Complex, Real]:
         """Coefficients A (N,) and potentials V (n,) of the first section, for charges λ (n,)."""
-        start, stop = 2 * self.coarse, 2 * self.coarse + self.charges
-        whole = _symmetric(self.lower[:1])[0]
-        inner = np.r_[0:start, stop : len(whole)]
-        g = whole[inner, start:stop]
-        x = np.linalg.solve(whole[np.ix_(inner, inner)], -g @ charges)
-        volts = whole[start:stop, start:stop] @ charges + g.T @ x
-        rest = start + (len(inner) - start) // 2
-        re = np.concatenate([x[: self.coarse], x[start:rest]])
-        im = np.concatenate([x[self.coarse : start], x[rest:]])
-        return np.asarray(self.amplitude[0] * (re + 1j * im)), volts
+        stop = self.upper.shape[-1] - self.charges
+        whole = np.triu(self.upper[0]) if self.definite else self.upper[0]
+        inner, coupling, own = whole[:stop, :stop], whole[:stop, stop:], whole[stop:, stop:]
+        x = -np.linalg.solve(inner, coupling @ charges)
+        volts = own.T @ (own @ charges) if self.definite else own @ charges + coupling.T @ x
+        return np.asarray(self.amplitude[0] * (x[0::2] + 1j * x[1::2])), volts
 
 
-def _symmetric(lower: Real) -> Real:
-    below = np.tril(lower, -1)
-    return np.asarray(np.tril(lower) + below.swapaxes(-1, -2))
-
-
-def _inverse_block(matrix: Real, start: int, stop: int) -> Real:
-    unit = np.zeros((matrix.shape[-1], stop - start))
-    unit[start:stop] = np.eye(stop - start)
-    return np.asarray(np.linalg.solve(matrix, unit[None])[:, start:stop])
-
-
-def assemble(geometry: Geometry, conductor: Index, order: Index, coarse: int) -> System:
-    """The system for multipoles of order `order[r]` (from 1) at conductor `conductor[r]`.
-
-    They are listed order by order, conductor by conductor within an order, those of the coarse
-    truncation first.
-    """
-    size, n = len(order), geometry.centre.shape[-1]
-    rho = reflection(geometry, int(order.max()))[:, conductor, order - 1]
-    weight = np.sqrt(np.abs(rho))
-    same, conjugate, g, p0 = _interaction(geometry, conductor, order, weight)
-    matrix = np.zeros((len(weight), 2 * size + n, 2 * size + n))
-    charge = slice(2 * coarse, 2 * coarse + n)
-    # Runs of rows and columns: (place in the matrix, multipoles, imaginary parts?).
-    runs = [(0, slice(0, coarse), False), (coarse, slice(0, coarse), True)]
-    if coarse < size:
-        rest = size - coarse
-        runs += [(charge.stop, slice(coarse, size), False),
-                 (charge.stop + rest, slice(coarse, size), True)]
-    plus, minus = same.real - conjugate.real, -same.real - conjugate.real
-    mixed = -same.imag - conjugate.imag
-    for k, (place, rows, imaginary) in enumerate(runs):
-        here = slice(place, place + rows.stop - rows.start)
-        for at, columns, other in runs[: k + 1]:
-            there = slice(at, at + columns.stop - columns.start)
-            if imaginary and not other:
-                matrix[:, here, there] = mixed[:, columns, rows].swapaxes(-1, -2)
-            else:
-                block = mixed if other != imaginary else minus if other else plus
-                matrix[:, here, there] = block[:, rows, columns]
-        part = -g.imag[:, rows] if imaginary else g.real[:, rows]
-        if place < charge.start:
-            matrix[:, charge, here] = part.swapaxes(-1, -2)
-        else:
-            matrix[:, here, charge] = part
-    matrix[:, charge, charge] = p0
+def assemble(
+    geometry: Geometry, conductor: Index, order: Index, coarse: tuple[int, ...]
+) -> System:
+    """The system for multipoles of order `order[r]` (from 1) at conductor `conductor[r]`."""
+    rho = reflection(geometry, int(order.max()))
+    listed = _Listed(conductor, order, np.sqrt(np.abs(rho)))
+    stop, n = 2 * len(order), geometry.centre.shape[-1]
+    matrix = np.empty((len(rho), stop + n, stop + n))
+    g, p0 = _fill(matrix[:, :stop, :stop].view(complex), geometry, listed)
+    matrix[:, 0:stop:2, stop:], matrix[:, 1:stop:2, stop:] = g.real, g.imag
+    matrix[:, stop:, :stop] = matrix[:, :stop, stop:].swapaxes(-1, -2)
+    matrix[:, stop:, stop:] = p0
     # An order that the cover does not answer (|ρ| rounded to nothing) keeps a plain 1.
-    sign = np.where(rho > _NO_ANSWER, -1.0, 1.0)
-    for place, rows, _ in runs:
-        diagonal = np.arange(place, place + rows.stop - rows.start)
-        matrix[:, diagonal, diagonal] += sign[:, rows]
-    return System(matrix, coarse, n, bool(np.all(sign > 0)), weight / np.sqrt(order))
+    sign = np.where(listed.of(rho) > _NO_ANSWER, -1.0, 1.0)
+    diagonal = np.arange(stop)
+    matrix[:, diagonal, diagonal] += np.repeat(sign, 2, axis=-1)
+    definite = bool(np.all(sign > 0))
+    if definite:
+        _factorise(matrix)
+    return System(matrix, coarse, n, definite, listed.of(listed.weight) / np.sqrt(order))
 
 
-def _interaction(geometry: Geometry, conductor: Index, order: Index, weight: Real
-                 ) -> tuple[Complex, Complex | Real, Complex, Real]:
-    """What the multipoles do to each other (S on A, H on conj A), to the charges (g), and P₀."""
-    direct, g, p0 = _direct(geometry, conductor, order, weight)
+def _factorise(matrix: Real) -> None:
+    """Put the Cholesky factor U into the upper triangle of each matrix, where it stands."""
+    from scipy.linalg.lapack import dpotrf
+
+    for each in matrix:  # the transpose is in LAPACK's order of columns, so nothing is copied
+        _, failed = dpotrf(each.T, lower=1, overwrite_a=1, clean=0)
+        if failed:
+            raise np.linalg.LinAlgError("the multipole system is not positive definite")
+
+
+@dataclass(frozen=True)
+class _Listed:
+    """Conductor and order (N,) of the multipoles, √|ρ| of all conductors and orders (B, n, top)."""
+
+    conductor: Index
+    order: Index
+    weight: Real
+
+    def of(self, values: Real) -> Real:
+        """From (B, n, top), the values of the listed multipoles (B, N)."""
+        return values[:, self.conductor, self.order - 1]
+
+    def spread(self, base: Complex) -> Complex:
+        """√|ρ_r| base[i, j]^m for each multipole r = (i, m) and conductor j: (B, N, n)."""
+        powers = np.moveaxis(_powers(base, self.weight.shape[-1]), -1, 1)
+        powers = powers[:, self.order - 1, self.conductor]
+        powers *= self.of(self.weight)[..., None]
+        return np.asarray(powers)
+
+    def facing(self, spread: Complex) -> Complex:
+        """spread[r, j] with the conductor j of each multipole s: (B, N, N)."""
+        return spread.take(self.conductor, axis=-1)
+
+
+def _fill(rows: Complex, geometry: Geometry, listed: _Listed) -> tuple[Complex, Real]:
+    """Fill K, given as complex rows (B, 2N, N); return conj(g) (B, N, n) and P₀ (B, n, n).
+
+    Read as complex numbers, its rows of Re x and Im x are conj(S) − H and −i (conj(S) + H).
+    """
+    direct, g, p0 = _direct(geometry, listed)
     if geometry.wall == "none":
-        return direct, np.zeros((1, 1, 1)), g, p0
-    image = _plane_image if geometry.wall == "plane" else _pipe_image
-    conjugate, g_image, p_image = image(geometry, conductor, order, weight)
-    return direct, conjugate, g + g_image, p0 + p_image
+        rows[:, 0::2] = direct
+    else:
+        image = _plane_image if geometry.wall == "plane" else _pipe_image
+        mirrored, g_image, p_image = image(geometry, listed)
+        np.subtract(direct, mirrored, out=rows[:, 0::2])
+        direct += mirrored
+        g, p0 = g + g_image, p0 + p_image
+    np.multiply(direct, -1j, out=rows[:, 1::2])
+    return g, p0
 
 
-def _direct(geometry: Geometry, conductor: Index, order: Index, weight: Real
-            ) -> tuple[Complex, Complex, Real]:
-    """Conductors upon each other: S (B, N, N), g (B, N, n), P₀ (B, n, n)."""
+def _direct(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
+    """Conductors upon each other: conj(S) (B, N, N), conj(g) (B, N, n), P₀ (B, n, n)."""
     z, b = geometry.centre, geometry.cover
-    n = z.shape[-1]
+    own = np.arange(z.shape[-1])
     apart = z[:, :, None] - z[:, None, :]
-    own = np.arange(n)
     apart[:, own, own] = np.inf
-    powers = _powers((-b[:, :, None] / apart)[:, conductor, :], order) * weight[..., None]
-    matrix = powers[:, :, conductor]
-    matrix = matrix * matrix.swapaxes(-1, -2)
-    matrix *= _binomials(int(order.max(initial=1)))[np.ix_(order - 1, order - 1)]
+    spread = listed.spread(-np.conj(b[:, :, None] / apart))
+    facing = listed.facing(spread)
+    matrix = facing * facing.swapaxes(-1, -2)
+    matrix *= _binomials(listed.order)
     apart[:, own, own] = b
     p0 = -np.log(np.abs(apart))
     p0[:, own, own] += np.log(b / geometry.metal) / geometry.ratio
@@ -218,80 +231,90 @@ def _direct(geometry: Geometry, conductor: Index, order: Index, weight: Real
         # Only differences of potential count at zero total charge: any unit of length will do,
         # and one larger than the section keeps the matrix positive definite.
         p0 += np.log(8 * (np.abs(apart).max(axis=(-1, -2), keepdims=True) + b.max()))
-    return matrix, powers / np.sqrt(order)[:, None], p0
+    return matrix, spread / np.sqrt(listed.order)[:, None], p0
 
 
-def _pipe_image(geometry: Geometry, conductor: Index, order: Index, weight: Real
-                ) -> tuple[Complex, Complex, Real]:
-    """Images in the pipe: H (B, N, N), and what they add to g and P₀."""
+def _plane_image(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
+    """Images in the plane: H (B, N, N), and what they add to conj(g) and P₀."""
+    z, b = geometry.centre, geometry.cover
+    apart: Complex = z[:, :, None] - np.conj(z[:, None, :])
+    spread = listed.spread(-b[:, :, None] / apart)
+    facing = listed.facing(spread)
+    matrix = facing * np.conj(facing.swapaxes(-1, -2))
+    matrix *= _binomials(listed.order)
+    return matrix, -spread.conj() / np.sqrt(listed.order)[:, None], np.log(np.abs(apart))
+
+
+def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
+    """Images in the pipe: H (B, N, N), and what they add to conj(g) and P₀.
+
+    With c = R² − z_i conj(z_j), u = b_i conj(z_j) / c, v = b_j z_i / c and p = b_i b_j (R / c)²,
+
+        H_mn = Σ_k k C(m,k) C(n,k) / √(mn) u^(m−k) v^(n−k) p^k
+
+    between the orders m of conductor i and n of j. With u = |u| τ, τ^m stands before the sum, and
+    the sum over k is a product of a real and a complex matrix.
+    """
     z, b = geometry.centre, geometry.cover
     radius = geometry.pipe_radius[:, None, None]
-    across = radius**2 - np.conj(z[:, None, :]) * z[:, :, None]
-    top = int(order.max(initial=1))
-    # h_nm = Σ_k k C(n,k) C(m,k) / √(nm) · α^(m−k) γ^(n−k) β^k splits into two triangular factors.
-    alpha = b[:, None, :] * z[:, :, None] / across
-    beta = np.sqrt(b[:, None, :] * b[:, :, None]) * radius / across
-    factor = _shifted_powers(alpha, top)
-    factor *= _triangle(top)
-    factor *= _powers_up(beta, top)[..., None, :]
-    h = np.conj(factor.swapaxes(1, 2)) @ factor.swapaxes(-1, -2)
-    if len(order) == top * z.shape[-1]:  # every conductor has every order: no need to pick
-        matrix = h.transpose(0, 3, 1, 4, 2).reshape(len(h), len(order), len(order))
-    else:
-        matrix = h[:, conductor[:, None], conductor, order[:, None] - 1, order - 1]
-    matrix *= weight[:, :, None]
-    matrix *= weight[:, None, :]
-    toward = (b[:, :, None] * np.conj(z[:, None, :]) / across)[:, conductor, :]
-    g = -_powers(toward, order) * (weight / np.sqrt(order))[..., None]
+    across: Complex = radius**2 - z[:, :, None] * np.conj(z[:, None, :])
+    toward = b[:, :, None] * np.conj(z[:, None, :]) / across
+    count, n, top = listed.weight.shape
+    i, j = np.triu_indices(n)
+    tau = np.exp(1j * np.angle(toward[:, i, j]))
+    p = b[:, i] * b[:, j] * (radius[..., 0] / across[:, i, j]) ** 2
+    left = _shifted_powers(np.abs(toward[:, i, j]), top) * listed.weight[:, i, None, :]
+    right = _shifted_powers(np.conj(toward[:, j, i]), top) * listed.weight[:, j, None, :]
+    right *= _powers(p / tau, top)[..., None]
+    block = (left.swapaxes(-1, -2) @ right.view(float)).view(complex)
+    block *= _powers(tau, top)[..., None]
+    whole = np.empty((count, top, n, top, n), dtype=complex)
+    for k in range(len(i)):
+        whole[:, :, j[k], :, i[k]] = np.conj(block[:, k].swapaxes(-1, -2))
+        whole[:, :, i[k], :, j[k]] = block[:, k]
+    matrix = whole.reshape(count, top * n, top * n)
+    place = (listed.order - 1) * n + listed.conductor
+    if len(place) < top * n:
+        matrix = matrix.take(place, axis=1).take(place, axis=2)
+    g = -listed.spread(np.conj(toward)) / np.sqrt(listed.order)[:, None]
     return matrix, g, np.log(np.abs(across) / radius)
 
 
-def _plane_image(geometry: Geometry, conductor: Index, order: Index, weight: Real
-                 ) -> tuple[Complex, Complex, Real]:
-    """Images in the plane: H (B, N, N), and what they add to g and P₀."""
-    z, b = geometry.centre, geometry.cover
-    apart = z[:, :, None] - np.conj(z[:, None, :])
-    powers = _powers((-b[:, :, None] / apart)[:, conductor, :], order) * weight[..., None]
-    matrix = powers[:, :, conductor]
-    matrix = matrix * np.conj(matrix.swapaxes(-1, -2))
-    matrix *= _binomials(int(order.max(initial=1)))[np.ix_(order - 1, order - 1)]
-    return matrix, -powers / np.sqrt(order)[:, None], np.log(np.abs(apart))
-
-
-def _powers(base: Complex, order: Index) -> Complex:
-    """base[:, r, :] to the power order[r]."""
-    return np.asarray(base ** order[:, None])
-
-
-def _powers_up(base: Complex, top: int) -> Complex:
+def _powers(base: Real | Complex, top: int) -> Any:
     """base^1 .. base^top along a new last axis."""
-    out = np.repeat(base[..., None], top, axis=-1)
-    return np.asarray(np.cumprod(out, axis=-1))
+    out = np.empty((*base.shape, top), dtype=base.dtype)
+    out[...] = base[..., None]
+    return np.multiply.accumulate(out, axis=-1, out=out)
 
 
-def _shifted_powers(base: Complex, top: int) -> Complex:
-    """base^(m − k) for m, k = 1..top along two new last axes, 0 above the diagonal."""
-    powers = np.concatenate([np.ones_like(base)[..., None], _powers_up(base, top)], axis=-1)
-    m = np.arange(top)
-    return np.asarray(powers[..., np.maximum(m[:, None] - m[None, :], 0)])
+def _shifted_powers(base: Any, top: int) -> Any:
+    """C(n, k) √(k / n) base^(n − k) for k, n = 1..top along two new last axes, 0 for n < k."""
+    padded = np.zeros((*base.shape, 2 * top - 1), dtype=base.dtype)
+    padded[..., top - 1] = 1.0
+    padded[..., top:] = _powers(base, top - 1)
+    shifted = np.lib.stride_tricks.sliding_window_view(padded, top, axis=-1)[..., ::-1, :]
+    return np.multiply(shifted, _triangle(top), out=np.empty(shifted.shape, dtype=base.dtype))
+
+
+def _binomials(order: Index) -> Real:
+    """(m + n − 1)! / ((m − 1)! (n − 1)! √(m n)) between the orders m, n of the multipoles."""
+    return _binomial_table(int(order.max()))[order[:, None] - 1, order - 1]
 
 
 @lru_cache(maxsize=8)
-def _binomials(top: int) -> Real:
-    """(m + n − 1)! / ((m − 1)! (n − 1)! √(m n)) for m, n = 1..top."""
-    m = np.arange(1.0, top + 1)
-    logs = np.cumsum(np.concatenate([[0.0], np.log(np.arange(1.0, 2 * top))]))
+def _binomial_table(top: int) -> Real:
     k = np.arange(1, top + 1)
+    logs = np.cumsum(np.concatenate([[0.0], np.log(np.arange(1.0, 2 * top))]))
     return np.asarray(
         np.exp(logs[k[:, None] + k - 1] - logs[k - 1][:, None] - logs[k - 1])
-        / np.sqrt(m[:, None] * m)
+        / np.sqrt(k[:, None] * k)
     )
 
 
 @lru_cache(maxsize=8)
 def _triangle(top: int) -> Real:
-    """C(m, k) √(k / m) for m, k = 1..top, 0 above the diagonal."""
+    """C(n, k) √(k / n) for k, n = 1..top, 0 for n < k."""
     logs = np.cumsum(np.concatenate([[0.0], np.log(np.arange(1.0, top + 1))]))
-    m, k = np.arange(1, top + 1)[:, None], np.arange(1, top + 1)[None, :]
-    inside = np.exp(logs[m] - logs[k] - logs[np.maximum(m - k, 0)]) * np.sqrt(k / m)
-    return np.asarray(np.where(k <= m, inside, 0.0))
+    k, n = np.arange(1, top + 1)[:, None], np.arange(1, top + 1)[None, :]
+    inside = np.exp(logs[n] - logs[k] - logs[np.maximum(n - k, 0)]) * np.sqrt(k / n)
+    return np.asarray(np.where(k <= n, inside, 0.0))
