@@ -95,7 +95,11 @@ _Found = tuple[int, str, str, str]
 
 
 def _told(name: str, found: Sequence[_Found]) -> Iterator[Mistake]:
-    ordered = sorted(found, key=lambda f: f[0])
+    """In the order of the rows; of several mistakes in one cell, the first that was found."""
+    cells: dict[tuple[int, str], _Found] = {}
+    for one in found:
+        cells.setdefault(one[:2], one)
+    ordered = sorted(cells.values(), key=lambda f: f[0])
     for row, column, rule, given in ordered[:NAMED]:
         yield Mistake(f'{name} row {row}, column "{column}"', rule, given)
     if len(ordered) > NAMED:
@@ -153,7 +157,7 @@ def _devices(rows: pd.DataFrame, found: list[_Found]) -> dict[str, Device]:
         if not name or name in devices:
             found.append((number, "device", "is there twice" if name else "is missing", name))
         elif np.isnan(rated):
-            found.append((number, "rated [mA]", "is missing or not a number", ""))
+            found.append((number, "rated [mA]", "is missing", ""))
         else:
             try:
                 devices[name] = Device(float(f"{rated / 1e3:.12g}"), kind or "general",
@@ -169,7 +173,8 @@ def _circuits(rows: pd.DataFrame, devices: Mapping[str, Device]) -> list[_Found]
     found: list[_Found] = []
 
     def check(column: str, wrong: Any, rule: Any) -> None:
-        found.extend((int(r), column, rule(t) if callable(rule) else rule, str(t))
+        found.extend((int(r), column, rule(t) if callable(rule) else rule,
+                      t if isinstance(t, str) else "")
                      for r, t in zip(rows["row"][wrong], rows[column][wrong], strict=True))
 
     check("device", ~rows["device"].isin(list(devices)),
@@ -177,7 +182,7 @@ def _circuits(rows: pd.DataFrame, devices: Mapping[str, Device]) -> list[_Found]
     check("line", ~rows["line"].isin(["", "L", *LINES, "balanced"]),
           "must be L, L1, L2, L3, balanced or empty")
     measured = rows["leakage [mA]"].notna()
-    check("length [m]", rows["length [m]"].isna() & ~measured, "is missing or not a number")
+    check("length [m]", rows["length [m]"].isna() & ~measured, "is missing")
     check("cable", (rows["cable"] == "") & ~measured, "is missing")
     check("pinned", ~rows["pinned"].isin(["", "yes", "no"]), "must be yes, no or empty")
     classes = rows["equipment"].map({t: _is_class(t) for t in rows["equipment"].unique()})
