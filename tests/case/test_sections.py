@@ -54,6 +54,19 @@ def test_singles_lie_in_their_conduit() -> None:
     assert section(HERON.replace('"metal"', '"plastic"')).surround is None
 
 
+@pytest.mark.parametrize("layout", ["in conduit", "singles"])
+def test_an_unlike_single_has_its_own_size(layout: str) -> None:
+    text = HERON if layout == "in conduit" else "\n".join(
+        line for line in HERON.replace('"in conduit"', '"singles"').split("\n")
+        if not line.startswith(("bore", "wall", "seed")))
+    size = {c.name: c for c in section(text).conductors}
+    # solid, under 0.8 mm of PVC for both sizes (IEC 60227-3, from memory)
+    for name, area in (("green-yellow", 4e-6), ("brown", 2.5e-6)):
+        radius = math.sqrt(area / math.pi)
+        assert size[name].radius == pytest.approx(radius, rel=1e-12, abs=0)
+        assert size[name].outer == pytest.approx(radius + 0.8e-3, rel=1e-12, abs=0)
+
+
 def test_flat_twin_has_a_bare_earth_between() -> None:
     text = changed(
         QUAY, ('"laid up"', '"flat twin and earth"\nearth_conductor = "1.5 mm²"'),
