@@ -75,8 +75,10 @@ def check(case: Path) -> None:
 @main.command()
 @click.argument("case", type=FILE)
 @click.option("--csv", "csv_file", type=FILE, help="Write the sheet to this file as CSV.")
+@click.option("--field", is_flag=True, help="Make the sheet to take to site, CASE-field.pdf, and "
+              "CASE-field.csv to fill in.")
 @refusing
-def sheet(case: Path, csv_file: Path | None) -> None:
+def sheet(case: Path, csv_file: Path | None, field: bool) -> None:
     """Print what every instrument should read on every pair, if all is well."""
     from .case.loading import load_case
     from .report.case_memo import investigate
@@ -84,6 +86,9 @@ def sheet(case: Path, csv_file: Path | None) -> None:
     from .report.sheet_table import sheet_table
     from .report.tables import csv_text, plain
 
+    if field:
+        write_field_sheet(case)
+        return
     readings = investigate(load_case(case)).sheet
     if csv_file is not None:
         write_new(csv_file, csv_text(sheet_table(readings)).encode("utf-8-sig"))
@@ -221,6 +226,42 @@ def rerun(folder: Path, refresh: bool) -> None:
         sys.exit(1)
 
 
+@main.command()
+@click.argument("case", type=FILE)
+@click.option("--readings", type=FILE, help="A CSV of readings, such as the field sheet's.")
+@refusing
+def causes(case: Path, readings: Path | None) -> None:
+    """Say what the case's readings mean, and what to measure next."""
+    from .case.loading import load_case
+    from .case.observed import with_readings
+    from .report.case_memo import investigate
+    from .report.causes import causes_text
+
+    loaded = load_case(case)
+    investigation = investigate(with_readings(loaded, readings) if readings else loaded)
+    width = max(60, shutil.get_terminal_size((100, 24)).columns)
+    click.echo(causes_text(investigation, width))
+    click.echo(f"\n{CAUTION}")
+
+
+def write_field_sheet(case: Path) -> None:
+    """Make the PDF to take to site and the CSV to fill in, beside the reader."""
+    from .case.loading import load_case
+    from .report.case_memo import investigate
+    from .report.field_sheet import field_csv, field_memo
+    from .report.memo_pdf import pdf_bytes
+    from .report.tables import csv_text
+
+    investigation = investigate(load_case(case))
+    made = field_memo(investigation, date=datetime.date.today())
+    paper = "us-letter" if investigation.customary else "a4"
+    for path, data in ((Path(f"{case.stem}-field.pdf"), pdf_bytes(made, {}, paper=paper)),
+                       (Path(f"{case.stem}-field.csv"),
+                        csv_text(field_csv(investigation)).encode("utf-8-sig"))):
+        write_new(path, data)
+        click.echo(f"Wrote {path}")
+
+
 def write_new(path: Path, data: bytes) -> None:
     """Write a file that is not there yet; whole, or not at all."""
     try:
@@ -234,3 +275,7 @@ def write_new(path: Path, data: bytes) -> None:
     except BaseException:
         path.unlink(missing_ok=True)
         raise
+
+
+if __name__ == "__main__":
+    main()
