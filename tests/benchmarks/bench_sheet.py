@@ -1,7 +1,7 @@
 """Time of a full reading sheet, and of the demo memo as a whole process.
 
-Run with `python tests/benchmarks/bench_sheet.py`. The sheet is that of the Larkmoor run, seven cores
-on a tray, with eight instruments, and its bands; peers in the same run are a bare solve of the run
+Run with `python tests/benchmarks/bench_sheet.py`. The sheet is that of the Larkmoor run, seven
+cores on a tray, with eight instruments, and its bands; peers in the same run are bare solves of it
 and a process that only imports numpy. Targets: the sheet under 20 ms, the memo under 6 s.
 """
 
