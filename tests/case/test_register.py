@@ -54,7 +54,8 @@ def test_a_byte_order_mark_semicolons_tabs_and_decimal_commas_are_read(tmp_path)
 @pytest.mark.parametrize(
     ("old", "new", "line"),
     [("RCD 1,desks", "RCDs 1,desks",
-      '5, column "device": is not a device of this register (did you mean "RCD 1"?); given RCDs 1.'),
+      '5, column "device": is not a device of this register (did you mean "RCD 1"?); '
+      "given RCDs 1."),
      ("38.5", "far", '5, column "length [m]": is not a number; given far.'),
      ("38.5", "-3", '5, column "length [m]": must be 0 to 100000; given -3.'),
      ("38.5", "", '5, column "length [m]": is missing.'),

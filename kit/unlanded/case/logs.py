@@ -28,7 +28,7 @@ NAMED = 5  # bad rows named one by one; the rest are counted
 
 
 @dataclass(frozen=True)
-class Reading:
+class Intake:
     """What was read, and what was not.
 
     Parameters
@@ -47,7 +47,7 @@ class Reading:
     disordered: int
 
 
-def read_log(path: Path, *, zone: str | None = None) -> tuple[Log, Reading]:
+def read_log(path: Path, *, zone: str | None = None) -> tuple[Log, Intake]:
     """The log in a CSV file, in order of time, and what was wrong with it.
 
     Times are ISO 8601 or year-month-day first. Those that say their offset need no zone; others
@@ -62,7 +62,7 @@ def read_log(path: Path, *, zone: str | None = None) -> tuple[Log, Reading]:
     order, repeated, disordered = _in_order(seconds[good])
     seconds, current = seconds[good][order], current[good][order]
     log = Log(seconds, current, _hours(seconds, said), str(said))
-    return log, Reading(len(table), bad, int((~good).sum()), repeated, disordered)
+    return log, Intake(len(table), bad, int((~good).sum()), repeated, disordered)
 
 
 def _columns(name: str, headings: list[str]) -> tuple[str, str, float]:

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 from ..errors import Refused
 from ..study.history import History, history
 from ..study.residual import Margin, residual_margin
 from ..study.run import Run
 from ..study.standing import Leak, run_leak
 from .loading import Case
-from .logs import read_log
+from .logs import Intake, read_log
 
 THE_RUN = "this run"
 
@@ -28,13 +30,11 @@ def case_margin(case: Case, run: Run, low: Run, high: Run) -> Margin:
                            run.supply)
 
 
-def case_history(case: Case, margin: Margin) -> History | None:
-    """What the case's log says against its device; None where it has no log."""
+def case_history(case: Case, margin: Margin) -> tuple[History, Intake] | None:
+    """What the case's log says against its device, and how it was read; None without a log."""
     table = case.content.log
     if table is None:
         return None
-    folder = case.path.parent if case.path else None
-    if folder is None:
-        raise Refused("log.file", "belongs beside a case that is a file", given=table.file)
-    log, _ = read_log(folder / table.file, zone=table.zone)
-    return history(log, limit=margin.device.non_operating, step=table.step)
+    folder = case.path.parent if case.path else Path()
+    log, intake = read_log(folder / table.file, zone=table.zone)
+    return history(log, limit=margin.device.non_operating, step=table.step), intake

@@ -12,20 +12,14 @@ from ..reference.devices import ANSWERS, BREAK_TIME, ring_wave
 from ..reference.limits import STANDING_SHARE
 from ..reference.records import Source
 from ..study.ends import Driven
-from ..study.history import History
 from ..study.inrush import Inrush, run_inrush
 from ..study.residual import Margin, added_pieces, longest_run, most_pieces
 from ..study.standing import without_line
 from ..study.trip import MeasuredTrip, measured_trips
 from ..units import show, show_length
 from .investigation import Investigation
-from .margin_figures import (
-    added_figure,
-    budget_figure,
-    log_figure,
-    per_cent,
-    trip_time_figure,
-)
+from .margin_figures import added_figure, budget_figure, per_cent, trip_time_figure
+from .margin_log import log_blocks, milliamperes
 from .memo import Block, Bullets, Caution, Paragraph, Part
 from .tables import Column, Table
 from .words import listed, pair_words
@@ -73,7 +67,7 @@ def margin_part(investigation: Investigation) -> Part | None:
         Part("What would help", (Bullets(tuple(_cures(margin))),)),
     ]
     if found := case_history(investigation.case, margin):
-        blocks.append(Part("The current log", tuple(_log_blocks(found, margin))))
+        blocks.append(Part("The current log", tuple(log_blocks(*found, margin))))
     return Part("Residual-current margin", tuple(blocks))
 
 
@@ -144,10 +138,11 @@ def _verdict_words(margin: Margin) -> str:
 def shares_table(margin: Margin) -> Table:
     """What each contribution brings."""
     rows = tuple(
-        (s.name, str(leak.count), f"{100 * leak.use:.3g}", leak.line, _ma(s.arithmetic),
-         _ma(s.expected), _ma(s.along))
+        (s.name, str(leak.count), f"{100 * leak.use:.3g}", leak.line, milliamperes(s.arithmetic),
+         milliamperes(s.expected), milliamperes(s.along))
         for leak, s in zip(margin.leaks, margin.shares, strict=True))
-    total = ("All together", "", "", "", _ma(margin.arithmetic), _ma(margin.expected), "")
+    total = ("All together", "", "", "", milliamperes(margin.arithmetic),
+             milliamperes(margin.expected), "")
     return Table(
         "standing", "What stands behind the device.",
         (Column("Contribution"), Column("Pieces", "", "right"), Column("Use", "%", "right"),
@@ -164,7 +159,7 @@ def limits_table(margin: Margin) -> Table:
     d = margin.device
     limits = [("recommended share", margin.recommended), ("must not trip", d.non_operating),
               ("lowest that may trip it", d.band.low), ("must trip", d.rated)]
-    rows = tuple((word, _ma(limit), *(_ma(m) for m in margin.to(limit)))
+    rows = tuple((word, milliamperes(limit), *(milliamperes(m) for m in margin.to(limit)))
                  for word, limit in limits if math.isfinite(limit)
                  and (word != "lowest that may trip it" or limit != d.non_operating))
     return Table("margin", "Margin of the standing current to each limit.",
@@ -172,10 +167,6 @@ def limits_table(margin: Margin) -> Table:
                   Column("Worst credible", "mA", "right")), rows,
                  "Below 0: exceeded. Worst credible: 2.5 % of the draws exceed it. "
                  + (RULE if math.isfinite(margin.recommended) else ""))
-
-
-def _ma(value: float) -> str:
-    return f"{1e3 * value:.3g}".replace("-", "−")
 
 
 def _run_words(investigation: Investigation, margin: Margin) -> Iterator[str]:
@@ -311,32 +302,6 @@ def _cures(margin: Margin) -> Iterator[str]:
                "drive's maker allows it, and a device of type B or as the maker asks.")
     if margin.device.ramp_test is None:
         yield "Ramp-test the device with its loads off, and write the result into the case."
-
-
-def _log_blocks(found: History, margin: Margin) -> Iterator[Block]:
-    hour = int(found.above_by_hour.argmax())
-    low, high = margin.credible
-    median = found.percentiles[50]
-    agrees = "agrees with" if low <= median <= high else "does not agree with"
-    words = (f"Recorded: {show(found.recorded / 3600, 'h')}, with {found.gaps} gaps of together "
-             f"{show(found.missing / 3600, 'h')}; {found.over_range} samples over range. Median "
-             f"{show(median, 'A')}, which {agrees} the computed {show(low, 'A')} to "
-             f"{show(high, 'A')}; 99 % of the time at most {show(found.percentiles[99], 'A')}. "
-             f"Above {show(found.limit, 'A')} for {show(found.above / 3600, 'h')}, the longest "
-             f"stretch {show(found.longest_above, 's')}")
-    if found.above > 0:
-        words += (f", most of it from {hour}:00 to {hour + 1}:00 on the site's clock "
-                  f"({found.log.zone})")
-    yield Paragraph(f"{words}. {len(found.steps)} changes look like a load switching.")
-    if found.steps:
-        biggest = sorted(found.steps, key=lambda s: -abs(s.size))[:10]
-        yield Table("log-steps", "The largest steps in the log.",
-                    (Column("After", "h", "right"), Column("Hour of the day", "", "right"),
-                     Column("Change", "mA", "right")),
-                    tuple((f"{(s.seconds - found.log.seconds[0]) / 3600:.2f}",
-                           f"{int(s.hour):02d}:{int(s.hour % 1 * 60):02d}", _ma(s.size))
-                          for s in biggest))
-    yield log_figure(found, margin)
 
 
 def margin_sources(investigation: Investigation) -> Iterator[tuple[str, Source]]:

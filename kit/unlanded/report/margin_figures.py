@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from itertools import pairwise
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from ..study.history import History
+from ..study.history import GAP, History
 from ..study.residual import Margin
 from ..study.trip import MeasuredTrip
 from ..units import show
@@ -20,6 +20,7 @@ from .words import cut, listed
 _A = "A"
 MARKED = 7  # instruments on the trip-time picture
 DRAWN = 900  # stretches of a log that a picture can show
+LONGEST_GAPS = 20
 
 
 def budget_figure(margin: Margin) -> Figure:
@@ -193,35 +194,51 @@ def per_cent(chance: float) -> str:
 def log_figure(history: History, margin: Margin) -> Figure:
     """The logged current with its steps, against the device and the computed standing current."""
     log = history.log
-    hours = (log.seconds - log.seconds[0]) / 3600
-    shown = np.where(np.isfinite(log.current), log.current, np.nan)
-    starts = np.unique(np.linspace(0, len(hours) - 1, DRAWN).astype(int))
-    low, high = (1e3 * edge.reduceat(shown, starts) for edge in (np.fmin, np.fmax))
+    days = log.seconds[-1] - log.seconds[0] > 2 * 86400
+    unit, length = ("d", 86400.0) if days else ("h", 3600.0)
+    along = (log.seconds - log.seconds[0]) / length
+    shown = 1e3 * np.where(np.isfinite(log.current), log.current, np.nan)
     steps = history.steps[:200]
-    at = [(s.seconds - log.seconds[0]) / 3600 for s in steps]
-    computed = [1e3 * i for i in margin.credible]
-    ends = [0.0, float(hours[-1])]
+    at = _floats([(s.seconds - log.seconds[0]) / length for s in steps])
+    stretches = list(_stretches(along, shown))
+    ends = (0.0, float(along[-1]))
+    low, high = (1e3 * i for i in margin.credible)
     return Figure(
         key="log", title="Logged residual current, and its steps",
-        x=even_axis("Time since the first sample", "h", *ends),
+        x=even_axis("Time since the first sample", unit, *ends, parts=7),
         y=even_axis("Residual current, RMS", "mA", 0.0,
-                    1.05 * max(float(np.nanmax(high)), 1e3 * history.limit)),
-        caption="Logged current, from lowest to highest in each stretch of time. Marks: changes "
-        "that look like a load switching, at the level before them. Shaded across: the computed "
-        "standing current, 95 % of its draws.",
-        alternative=f"Logged current over {show(ends[1], 'h')}, median "
+                    1.05 * max(float(np.nanmax(shown)), 1e3 * history.limit)),
+        caption="Logged current, from lowest to highest in each stretch of time; a gap is left "
+        "open. Marks: changes that look like a load switching, at the level before them. Shaded "
+        "across: the computed standing current, 95 % of its draws.",
+        alternative=f"Logged current over {ends[1]:.3g} {unit}, median "
         f"{show(history.percentiles[50], 'A')}, above the limit of {show(history.limit, 'A')} for "
         f"{_share(history)} of the time, with {len(history.steps)} steps.",
         numbers=(f"median {show(history.percentiles[50], 'A')}",
                  f"above {show(history.limit, 'A')}: {_share(history)}"),
-        bands=(_block((0.0, ends[1]), (computed[0], computed[1]), "computed standing current", 2),
-               Band(hours[starts], low, high, "logged, lowest to highest", 0)),
+        bands=(_block(ends, (low, high), "computed standing current", 2),
+               *(Band(x, least, most, "", 0) for x, least, most in stretches)),
         references=(Reference(1e3 * history.limit, "y",
                               f"must not trip, {show(history.limit, 'A')}"),),
-        lines=(Line(hours[starts], high, "", 0),),
-        points=(Points(_floats(at), _floats(1e3 * np.interp(at, hours, shown)), "steps", 3,
+        lines=tuple(Line(x, most, "" if i else "logged", 0)
+                    for i, (x, _, most) in enumerate(stretches)),
+        points=(Points(at, _floats(np.interp(at, along, shown)), "steps", 3,
                        tuple(show(s.size, "A") for s in steps)),) if steps else (),
     )
+
+
+def _stretches(
+    along: NDArray[np.float64], shown: NDArray[np.float64]
+) -> Iterator[tuple[NDArray[np.float64], NDArray[np.float64], NDArray[np.float64]]]:
+    """Time, lowest and highest, thinned to what a picture can show, between the longest gaps."""
+    interval = np.diff(along)
+    gaps = np.flatnonzero(interval > GAP * np.median(interval))
+    longest = np.sort(gaps[np.argsort(-interval[gaps])[:LONGEST_GAPS]])
+    for x, y in zip(np.split(along, longest + 1), np.split(shown, longest + 1), strict=True):
+        bins = max(2, int(DRAWN * len(x) / len(along)))
+        starts = np.unique(np.linspace(0, len(x) - 1, bins).astype(int))
+        if len(x) > 1:
+            yield x[starts], np.fmin.reduceat(y, starts), np.fmax.reduceat(y, starts)
 
 
 def _share(history: History) -> str:
