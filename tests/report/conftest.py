@@ -49,15 +49,9 @@ def sites(quay: Investigation, mill: Investigation, moor: Investigation,
 
 
 @pytest.fixture(scope="session")
-def memos(sites: tuple[Investigation, ...]) -> tuple[Contents, ...]:
-    """Of the memo of each."""
-    return tuple(case_contents(site, date=DAY, prepared_by="A. Engineer") for site in sites)
-
-
-@pytest.fixture(scope="session")
-def contents(memos: tuple[Contents, ...]) -> Contents:
+def contents(quay: Investigation) -> Contents:
     """Of the memo of Tern Quay."""
-    return memos[0]
+    return case_contents(quay, date=DAY, prepared_by="A. Engineer")
 
 
 @pytest.fixture(scope="session")

@@ -5,6 +5,8 @@ import hashlib
 import json
 from collections.abc import Callable
 
+import pytest
+
 from unlanded.report import case_memo
 from unlanded.report.case_memo import case_contents
 from unlanded.report.folder import Contents, results_text
@@ -12,6 +14,13 @@ from unlanded.report.investigation import Investigation
 from unlanded.report.memo import Caution, Verbatim
 
 DAY = datetime.date(2026, 3, 9)
+
+
+@pytest.fixture
+def brief(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Memos of the circuit alone, which are made at once."""
+    monkeypatch.setattr(case_memo, "PARTS", (case_memo.circuit_part,))
+    monkeypatch.setattr(case_memo, "RESULTS", {})
 
 
 def test_the_order_of_the_parts(contents: Contents) -> None:
@@ -37,16 +46,16 @@ def test_the_case_and_its_fingerprint_can_be_computed_again(contents: Contents,
     assert hashlib.sha256(texts[0].encode()).hexdigest() == contents.memo.fingerprint
 
 
-def test_every_memo_has_the_caution(memos: tuple[Contents, ...]) -> None:
-    for made in memos:
-        boxes = [b for p in made.memo.parts for b in p.blocks if isinstance(b, Caution)]
-        assert any("never proves a conductor dead" in i for b in boxes for i in b.items)
+def test_every_memo_has_the_caution(contents: Contents) -> None:
+    boxes = [b for p in contents.memo.parts for b in p.blocks if isinstance(b, Caution)]
+    assert any("never proves a conductor dead" in i for b in boxes for i in b.items)
 
 
+@pytest.mark.usefixtures("brief")
 def test_us_units_bring_letter_paper_and_american_dates(
-    memos: tuple[Contents, ...], mill: Investigation
+    quay: Investigation, mill: Investigation
 ) -> None:
-    metric, customary, *_ = memos
+    metric, customary = (case_contents(s, date=DAY) for s in (quay, mill))
     assert (metric.paper, metric.memo.language) == ("a4", "en-GB")
     assert (customary.paper, customary.memo.language) == ("us-letter", "en-US")
     assert case_contents(mill, date=DAY, paper="a4").paper == "a4"
@@ -63,6 +72,7 @@ def test_the_whole_sheet_goes_beside_the_memo(contents: Contents) -> None:
     assert "sheet" in [t.key for t in contents.more_tables]
 
 
+@pytest.mark.usefixtures("brief")
 def test_a_matrix_too_wide_for_a_page_goes_beside_the_memo(
     written: Callable[..., Investigation]
 ) -> None:
@@ -76,6 +86,7 @@ def test_a_matrix_too_wide_for_a_page_goes_beside_the_memo(
     assert "capacitance" in [t.key for t in made.more_tables]
 
 
+@pytest.mark.usefixtures("brief")
 def test_names_for_the_title_block(quay: Investigation) -> None:
     memo = case_contents(quay, date=DAY, prepared_by="A", checked_by="B").memo
     assert (memo.prepared_by, memo.checked_by, memo.case_file) == ("A", "B", "tern-quay.toml")

@@ -4,6 +4,8 @@ import numpy as np
 import pytest
 
 from unlanded.errors import Refused
+from unlanded.report.circuit import circuit_part
+from unlanded.report.expected import expected_part
 from unlanded.report.figure import Figure
 from unlanded.report.figures import (
     InstrumentMark,
@@ -12,13 +14,11 @@ from unlanded.report.figures import (
     sheet_figure,
     sheet_marks,
 )
-from unlanded.report.folder import Contents
 from unlanded.report.investigation import Investigation
 from unlanded.study.readings import Pair, usual_pairs
 
 PAIR = Pair("black@near")
 OHMS = np.geomspace(1e3, 1e9, 25)
-READINGS = {"section", "sheet", "loading", "length"}
 
 
 def every_array(figure: Figure) -> list[np.ndarray]:
@@ -27,14 +27,14 @@ def every_array(figure: Figure) -> list[np.ndarray]:
     return [*arrays, figure.field.values] if figure.field else arrays
 
 
-def test_figures_of_every_site_are_whole(memos: tuple[Contents, ...]) -> None:
-    for made in memos:
-        figures = made.memo.figures
-        assert {f.key for f in figures} >= READINGS
+def test_figures_of_every_site_are_whole(sites: tuple[Investigation, ...]) -> None:
+    for site in sites:
+        blocks = (*circuit_part(site).blocks, *expected_part(site).blocks)
+        figures = [b for b in blocks if isinstance(b, Figure)]
+        assert {f.key for f in figures} == {"section", "sheet", "loading", "length"}
         for figure in figures:
             assert all(np.isfinite(a).all() for a in every_array(figure))
-            if figure.key in READINGS:
-                assert all(n in figure.alternative for n in figure.numbers)
+            assert all(n in figure.alternative for n in figure.numbers)
             for note in figure.notes:
                 assert figure.x.low <= note.x <= figure.x.high
                 assert figure.y.low <= note.y <= figure.y.high
