@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from ..reference.records import Source
+from .causes import causes_sources
 from .cores import core_sources
 from .investigation import Investigation
 from .margin import margin_sources
@@ -38,6 +39,7 @@ def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
     for tool in investigation.instruments:
         yield tool.name, tool.source
     yield from margin_sources(investigation)
+    yield from causes_sources(investigation)
     yield from METHODS
 
 

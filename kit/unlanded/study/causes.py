@@ -9,22 +9,24 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 
 from ..errors import Refused
+from .coupling import Real
 from .evidence import Draws, Integral, Problem
 from .hypotheses import CAUSES, Cause, prior_shares, variants
-from .likelihood import likelihood
+from .likelihood import Likelihood, likelihood
 from .observation import Observation
-from .reduced import Real, Reduced
+from .reduced import Reduced
 from .scene import MANY, Group, Scene, groups, suspects_in
 
 STABLE = 0.01  # error of the odds that is aimed at
 _DROPPED = 1e-4  # of the likeliest, below which a combination is not taken further
 _KEPT = 24  # combinations, at most
+_SHARP = 1e-3  # odds against the likeliest below which no sharper ones are asked for
 _EARLY = 3  # doublings, at most, while suspects are still being added
 
 
@@ -68,6 +70,7 @@ class Explanation:
     ----------
     reduced : the run, with its suspects
     readings : that were explained
+    shares : of the causes before any reading
     hypotheses : that were not dropped
     error : standard deviation of the odds of the likeliest cause by the quadrature, relative
     points : of the quadrature, over all hypotheses
@@ -79,7 +82,6 @@ class Explanation:
     hypotheses: tuple[Hypothesis, ...]
     error: float
     points: int
-    _cache: dict[str, object] = field(default_factory=dict, repr=False)
 
     @cached_property
     def posterior(self) -> Real:
@@ -157,7 +159,7 @@ class Explanation:
                    for n, c in zip(self.reduced.suspects, h.causes, strict=True))
 
     @cached_property
-    def _likelihood(self):  # type: ignore[no-untyped-def]
+    def _likelihood(self) -> Likelihood:
         return likelihood(self.readings, top=self.reduced.top)
 
 
@@ -192,7 +194,8 @@ def explain(
         search.settle(beam, stable, None if last else _EARLY)
         beam = _likely(beam) if not last else beam
     found = tuple(search.finished(b) for b in beam)
-    return Explanation(reduced, tuple(readings), prior, found, _error(beam),
+    return Explanation(reduced, tuple(readings), prior, found,
+                       math.hypot(*_error_parts(beam)),
                        sum(b.points for b in beam))
 
 
@@ -235,13 +238,15 @@ class _Search:
         return made
 
     def settle(self, beam: Sequence[_Candidate], stable: float, doublings: int | None) -> None:
-        """Double the points of what matters until the odds are stable."""
+        """Double the points of what the error of the odds comes from, until they are stable."""
         done = 0
         while doublings is None or done < doublings:
             done += 1
-            total = sum(b.weight for b in beam)
-            loose = [b.integral for b in beam if b.integral and not b.integral.exhausted
-                     and b.error > stable and b.error * b.weight > stable / 20 * total]
+            parts = _error_parts(beam)
+            if math.hypot(*parts) <= stable:
+                return
+            loose = [b.integral for b, part in zip(beam, parts, strict=True)
+                     if part > max(parts) / 3 and b.integral and not b.integral.exhausted]
             if not loose:
                 return
             for integral in loose:
@@ -279,13 +284,15 @@ class _Heard:
         self._likelihood = likelihood([readings[k] for k in heard], top=top)
 
     def gain(self, volts: Real) -> Real:
+        """Of all the readings (K, Q)."""
         made = np.ones((self._count, volts.shape[1]))
         if self._heard:
             made[self._heard] = self._likelihood.gain(volts)
         return made
 
     def misfit(self, volts: Real) -> Real:
-        return self._likelihood.misfit(volts)
+        """Of those that are heard."""
+        return np.asarray(self._likelihood.misfit(volts))
 
 
 def _likely(beam: Sequence[_Candidate]) -> list[_Candidate]:
@@ -293,16 +300,19 @@ def _likely(beam: Sequence[_Candidate]) -> list[_Candidate]:
     return [b for b in ranked[:_KEPT] if b.weight > _DROPPED * ranked[0].weight]
 
 
-def _error(beam: Sequence[_Candidate]) -> float:
-    """Of the odds of the likeliest against the rest."""
+def _error_parts(beam: Sequence[_Candidate]) -> list[float]:
+    """What each adds to the relative error of the odds of the likeliest against the rest.
+
+    Odds beyond 1000 to 1 need not be as sharp.
+    """
     best = max(beam, key=lambda b: b.weight)
     rest = sum(b.weight for b in beam if b is not best)
-    scatter = math.hypot(*(b.weight * b.error for b in beam if b is not best))
-    return math.hypot(best.error, scatter / rest if rest else 0.0)
+    rest = max(rest, _SHARP * best.weight)
+    return [b.error if b is best else b.error * b.weight / rest for b in beam]
 
 
 def _shared(h: Hypothesis, share: float) -> Real:
-    return share * h.draws.weight / h.draws.weight.sum()
+    return np.asarray(share * h.draws.weight / h.draws.weight.sum())
 
 
 def _joined(made: Sequence[tuple[Real, Real]]) -> tuple[Real, Real]:

@@ -115,7 +115,7 @@ class Integral:
     @property
     def points(self) -> int:
         """Points used in all."""
-        return SCRAMBLINGS * 2**self._level
+        return SCRAMBLINGS << self._level
 
     @property
     def draws(self) -> Draws:
@@ -130,15 +130,15 @@ class Integral:
 
     @property
     def _values(self) -> Real:
-        return np.concatenate([p.weight for p in self._parts], axis=1).mean(axis=1)
+        return np.asarray(np.concatenate([p.weight for p in self._parts], axis=1).mean(axis=1))
 
     def _drawn(self, scrambling: int, start: int, stop: int) -> tuple[Real, Real, Real]:
         """Sizes (q,), scores (q, d) and the density they were drawn with (q,)."""
         d = self._problem.dimensions
-        even, part, z = (a[start:stop] for a in _student_points(d, scrambling, stop))
+        even, other, z = (a[start:stop] for a in _student_points(d, scrambling, stop))
         size, density, k, share = self._cells.at(even)
         middle = self._nodes.middle(k, share)
-        part = np.minimum(np.searchsorted(np.cumsum(_PARTS), part), len(_PARTS) - 1)
+        part = np.minimum(np.searchsorted(np.cumsum(_PARTS), other), len(_PARTS) - 1)
         root = self._nodes.root[k]
         score = _each(root, part, z) + np.where(_BELIEF[part] > 0, 1, 0)[:, None] * middle
         inverse, scale = self._nodes.inverse[k], self._nodes.scale[k]
@@ -173,7 +173,7 @@ class _Nodes:
     @cached_property
     def inverse(self) -> Real:
         """Of each root (G, P, d, d)."""
-        return np.linalg.inv(self.root)
+        return np.asarray(np.linalg.inv(self.root))
 
     @cached_property
     def scale(self) -> Real:

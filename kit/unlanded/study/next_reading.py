@@ -10,18 +10,21 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..physics.network import EARTH
 from ..reference.instruments import Instrument
 from .causes import Explanation, Hypothesis, quantiles
+from .coupling import Real, Scores
 from .hypotheses import Cause
 from .likelihood import error_chance, misread_share, reference_chance
 from .observation import ACTIONS, NOTHING, Action
 from .readings import Pair
-from .reduced import Real, Scores
-from .scene import Scene, Solved, instruments_of, rms
+from .reduced import instruments_of
+from .scene import Scene, Solved, rms
 
 ADDED_RESISTOR = 100e3  # ohm
 LIGHT = 300e3  # ohm: an instrument of more hardly loads, and a resistor beside it is another one
@@ -49,14 +52,15 @@ class Prospect:
     ----------
     candidate : the reading
     bits : information about the causes that it is expected to give
-    predicted : by causes of the suspects, the voltage across the instrument at 5, 50 and 95 %
+    predicted : by the cause on the suspect that it is taken on, the voltage across the instrument
+        at 5, 50 and 95 %
     trip_chance : chance that its current passes what must not trip the device
     over_chance : chance that the voltage passes the instrument's largest range
     """
 
     candidate: Candidate
     bits: float
-    predicted: Mapping[tuple[Cause, ...], tuple[float, float, float]]
+    predicted: Mapping[Cause, tuple[float, float, float]]
     trip_chance: float
     over_chance: float
 
@@ -115,6 +119,24 @@ def _cost(candidate: Candidate, costs: Mapping[str, float]) -> float:
     return costs.get(candidate.instrument.key, 1.0) + extra
 
 
+def simplest(prospects: Sequence[Prospect]) -> tuple[Prospect, ...]:
+    """Those that may be taken, without any that a simpler one on the same instrument makes idle.
+
+    Simpler is one with fewer actions and no resistor, or an earlier one; idle is one that tells
+    hardly more.
+    """
+    kept: list[Prospect] = []
+    for p in sorted((p for p in prospects if p.allowed), key=_effort):
+        same = (q for q in kept if q.candidate.instrument == p.candidate.instrument)
+        if all(p.bits > 1.05 * q.bits + 0.01 for q in same):
+            kept.append(p)
+    return tuple(p for p in prospects if p in kept)
+
+
+def _effort(p: Prospect) -> int:
+    return len(p.candidate.actions) + math.isfinite(p.candidate.resistor)
+
+
 class _Set:
     """Draws of one hypothesis, of even weight, spread over the variants that it stands for."""
 
@@ -138,10 +160,11 @@ class _Set:
         return self._known[c]
 
 
-def _even(weight: Real) -> np.ndarray:
+def _even(weight: Real) -> NDArray[np.intp]:
     """Indices of `_DRAWS` draws, each as often as its weight says."""
     reached = np.cumsum(weight)
-    return np.searchsorted(reached, (np.arange(_DRAWS) + 0.5) / _DRAWS * reached[-1])
+    at = np.searchsorted(reached, (np.arange(_DRAWS) + 0.5) / _DRAWS * reached[-1])
+    return np.asarray(at, dtype=np.intp)
 
 
 def _filled(scores: Scores, tools: Sequence[Instrument]) -> Scores:
@@ -198,24 +221,32 @@ def _prospect(
     top = c.instrument.ranges[-1].full_scale
     edges = _edges(c, np.concatenate([v for _, v, _ in found_there]))
     shown: dict[tuple[Cause, ...], Real] = {}
-    volts: dict[tuple[Cause, ...], list[Real]] = {}
+    volts: dict[Cause, list[tuple[Real, Real]]] = {}
+    suspect = _suspect(found, c)
     for d, v, _ in found_there:
         unknown = _unknown(found, d.causes, c)
         chances = _chances(c, v, edges, found.reduced.top, unknown).mean(axis=0)
         shown[d.causes] = shown.get(d.causes, 0.0) + d.share / whole * chances
         if not unknown:
-            volts.setdefault(d.causes, []).append(v)
+            volts.setdefault(d.causes[suspect], []).append((v, np.full(len(v), d.share)))
     through_earth = EARTH in (c.pair.a, c.pair.b)
-    trip = sum(d.share * float(np.mean(i > non_operating)) for d, _, i in found_there) * through_earth
+    trip = through_earth * sum(d.share * float(np.mean(i > non_operating))
+                               for d, _, i in found_there)
     over = sum(d.share * float(np.mean(v > top)) for d, v, _ in found_there)
     return Prospect(c, _information(np.array(list(shown.values()))), {
-        causes: _three(np.concatenate(parts)) for causes, parts in volts.items()},
-        trip / whole, over / whole)
+        cause: _three(parts) for cause, parts in volts.items()}, trip / whole, over / whole)
 
 
-def _three(volts: Real) -> tuple[float, float, float]:
-    low, middle, high = quantiles(volts, np.ones_like(volts), (0.05, 0.5, 0.95))
+def _three(parts: Sequence[tuple[Real, Real]]) -> tuple[float, float, float]:
+    volts, weights = (np.concatenate(x) for x in zip(*parts, strict=True))
+    low, middle, high = quantiles(volts, weights, (0.05, 0.5, 0.95))
     return float(low), float(middle), float(high)
+
+
+def _suspect(found: Explanation, c: Candidate) -> int:
+    """Index of the suspect that the reading is taken on."""
+    names = [p.rpartition("@")[0] for p in (c.pair.a, c.pair.b)]
+    return next((k for k, s in enumerate(found.reduced.suspects) if s in names), 0)
 
 
 def _unknown(found: Explanation, causes: tuple[Cause, ...], c: Candidate) -> bool:
@@ -240,7 +271,7 @@ def _chances(c: Candidate, volts: Real, edges: Real, top: float, unknown: bool) 
     """Chance of each display between the edges (Q, B), given the voltage (Q,)."""
     ends = [-math.inf, *edges, math.inf]
     reference = np.array([reference_chance(a, b, top=top)
-                          for a, b in zip(ends, ends[1:], strict=False)])
+                          for a, b in pairwise(ends)])
     reference /= reference.sum()
     if unknown:
         return reference[None]

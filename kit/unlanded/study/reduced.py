@@ -10,7 +10,7 @@ a coordinate, a normal score of mean 0 and standard deviation 1.
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -21,26 +21,17 @@ from ..errors import Refused
 from ..physics.network import EARTH
 from ..reference.instruments import Instrument
 from ..reference.records import Source, Value
+from .coupling import Coupling, Real, Scores, score_of
 from .ends import Bonded, Driven, Joined, Open, Termination, Through, word
 from .hypotheses import CONTACT, ENDS, LOAD_ANGLE, Variant, size_at, size_range
 from .observation import Action
 from .readings import Pair
 from .run import Run
 
-Real = NDArray[np.float64]
 Complex = NDArray[np.complex128]
-Scores = Mapping[str, Real]
-"""Normal scores (Q,) by coordinate; a coordinate that is not there is 0."""
 
-_JUDGED = Source("spread of what a case describes", "judgement")
-GEOMETRY_SPREAD = Value(0.15, "", _JUDGED)  # one standard deviation of each capacitance's logarithm
-LIMIT_SCORE = Value(2.0, "", _JUDGED)  # standard deviations at which the permittivity's limits lie
-SUPPLY_SPREAD = Value(0.03, "", _JUDGED)  # one standard deviation of the supply's voltage
-OPEN_SURROUND = Value(5e-12, "F/m", Source("a conductor of a cable in the open to floor, wall and "
-                                           "metalwork around it", "judgement"))
-OPEN_SPREAD = Value(0.75, "", _JUDGED)  # one standard deviation of its logarithm
-UNDESCRIBED = Value(100e-12, "F/m", Source("two cores of building or control cable, section not "
-                                           "described", "common practice"), 20e-12, 300e-12)
+SUPPLY_SPREAD = Value(0.03, "", Source("spread of the supply's voltage, one standard deviation",
+                                       "judgement"))
 _BOND = 100.0  # S: 10 mΩ, where one bonded end of a conductor is under suspicion
 
 
@@ -134,10 +125,7 @@ class Reduced:
     @property
     def coordinates(self) -> tuple[str, ...]:
         """Names of the unknowns of the run itself."""
-        each = tuple(f"{what} {name}" for name in self.suspects for what in ("live", "earth"))
-        if not self.described:
-            return ("supply", *each)
-        return ("supply", "permittivity", *each)
+        return ("supply", *self._coupling.coordinates)
 
     @property
     def top(self) -> float:
@@ -163,9 +151,13 @@ class Reduced:
 
     def capacitances(self, scores: Scores, name: str) -> tuple[Real, Real]:
         """Of a free conductor to the live conductors, and to earthed ones and all else (Q,) [F]."""
-        each = self.capacitance(scores)[:, self.free.index(name)]
+        each = self._coupling.at(scores)[:, self.free.index(name)]
         live = np.append(self._live, False)
         return each[:, live].sum(axis=1), each[:, ~live].sum(axis=1)
+
+    def capacitance(self, scores: Scores) -> Real:
+        """Of the free conductors to all others and to earth (Q, m, n + 1) [F]."""
+        return self._coupling.at(scores)
 
     def solve(
         self, capacitance: Real, scores: Scores, defects: Sequence[Defect],
@@ -176,10 +168,10 @@ class Reduced:
         `capacitance` is that of `capacitance(scores)`, the same after all actions.
         """
         energised = "neighbours off" not in actions
-        supply = 1 + SUPPLY_SPREAD.likely * _score(scores, "supply")
+        supply = 1 + SUPPLY_SPREAD.likely * score_of(scores, "supply")
         held = (self._held * energised)[:, None] * supply[:, None]
         c = capacitance
-        among = c[:, :, self._columns]
+        among = c[:, :, self._coupling.columns]
         omega = self.omega[:, None, None]
         total = c.sum(axis=2)
         y = 1j * omega[..., None] * (np.eye(len(self.free)) * total[:, None] - among)
@@ -213,7 +205,7 @@ class Reduced:
         """Of an instrument (H, Q), its burden anywhere within its tolerance."""
         from scipy.special import ndtr
 
-        share = 2 * ndtr(_score(scores, f"instrument {tool.key}")) - 1
+        share = 2 * ndtr(score_of(scores, f"instrument {tool.key}")) - 1
         return np.asarray(burden_admittance[:, None] / (1 + tool.tolerance * share))
 
     def _at(self, state: State, point: str, scores: Scores) -> tuple[int | None, Complex]:
@@ -222,7 +214,7 @@ class Reduced:
             k = self.free.index(name)
             half = 0.5 if end == "far" else -0.5
             return k, state.volts[:, :, k] + half * state.induced[:, :, k]
-        supply = 1 + SUPPLY_SPREAD.likely * _score(scores, "supply")
+        supply = 1 + SUPPLY_SPREAD.likely * score_of(scores, "supply")
         return None, self._volts(point)[:, None] * supply * state.energised
 
     def _volts(self, point: str) -> Complex:
@@ -252,73 +244,14 @@ class Reduced:
         return np.asarray(np.abs(self._held[0, :-1]) > 0.1 * self.run.supply.voltage)
 
     @cached_property
-    def _columns(self) -> list[int]:
-        return [self.run.section.names.index(n) for n in self.free]
+    def _coupling(self) -> Coupling:
+        return Coupling(self.run, self.low, self.high, self.free, self.suspects, self._live,
+                        self.described)
 
     def _fixed(self, c: Real) -> Real:
         fixed = c.copy()
-        fixed[:, :, self._columns] = 0.0
+        fixed[:, :, self._coupling.columns] = 0.0
         return fixed
-
-    @cached_property
-    def _partial(self) -> Real:
-        """Logarithms of the capacitances of the free conductors to all, low, likely and high.
-
-        (3, m, n + 1) [ln F]; the last column is to earth.
-        """
-        made = []
-        for run in (self.low, self.run, self.high):
-            c = run.matrix[self._columns] * self.run.length
-            direct = -c
-            direct[range(len(c)), self._columns] = 0.0
-            made.append(np.column_stack([direct, np.maximum(c.sum(axis=1), 0.0)]))
-        return np.log(np.maximum(made, 1e-21))
-
-    def capacitance(self, scores: Scores) -> Real:
-        """Of the free conductors to all others and to earth (Q, m, n + 1) [F]."""
-        if not self.described:
-            return self._assumed(scores)
-        low, likely, high = self._partial
-        z = _score(scores, "permittivity")[:, None, None] / LIMIT_SCORE.likely
-        log = likely + np.where(z > 0, z * (high - likely), z * (likely - low))
-        c = np.exp(log)
-        c[:, :, -1] += self._open * self.run.length
-        live = np.append(self._live, False)
-        for k, name in enumerate(self.free):
-            for what, columns in (("live", live), ("earth", ~live)):
-                if f"{what} {name}" in scores:
-                    spread = GEOMETRY_SPREAD.likely if what == "live" else self._earth_spread[k]
-                    c[:, k, columns] *= np.exp(spread * scores[f"{what} {name}"])[:, None]
-        # Two free conductors have one capacitance between them.
-        among = c[:, :, self._columns]
-        c[:, :, self._columns] = np.sqrt(among * among.swapaxes(1, 2))
-        return np.asarray(c)
-
-    @property
-    def _open(self) -> float:
-        """What a conductor has to surroundings that the section does not show [F/m]."""
-        return OPEN_SURROUND.likely if self.run.section.surround is None else 0.0
-
-    @cached_property
-    def _earth_spread(self) -> Real:
-        """One standard deviation of the logarithm of each free conductor's, to all not live (m,).
-
-        The computed part and what surroundings that the section does not show add vary apart.
-        """
-        shown = np.exp(self._partial[1])[:, ~np.append(self._live, False)].sum(axis=1)
-        hidden = self._open * self.run.length
-        return np.asarray(np.hypot(GEOMETRY_SPREAD.likely * shown, OPEN_SPREAD.likely * hidden)
-                          / (shown + hidden))
-
-    def _assumed(self, scores: Scores) -> Real:
-        count = max(int(self._live.sum()), 1)
-        c = np.zeros((len(_score(scores, "supply")), len(self.free), len(self._live) + 1))
-        for k, name in enumerate(self.free):
-            live, earth = (self.run.length * _spread(_score(scores, f"{what} {name}"), UNDESCRIBED)
-                           for what in ("live", "earth"))
-            c[:, k, :-1] = np.where(self._live, live[:, None] / count, 0.0)
-            c[:, k, -1] = earth
-        return c
 
     @cached_property
     def _ties(self) -> tuple[_Tie, ...]:
@@ -391,6 +324,11 @@ def may_be_suspect(run: Run, name: str) -> bool:
                                 and any(isinstance(t, Open) for t in ends))
 
 
+def free_conductors(run: Run) -> tuple[str, ...]:
+    """Conductors that nothing feeds and nothing bonds."""
+    return tuple(n for n in run.section.names if _free(run, n))
+
+
 def _free(run: Run, name: str) -> bool:
     return not any(isinstance(end[name], Driven | Bonded) or _joined_to_held(run, end[name])
                    for end in (run.near, run.far))
@@ -400,18 +338,6 @@ def _joined_to_held(run: Run, t: Termination) -> bool:
     """Whether an end is joined straight to a conductor that is driven or bonded."""
     return isinstance(t, Joined) and any(
         isinstance(end[t.other], Driven | Bonded) for end in (run.near, run.far))
-
-
-def _score(scores: Scores, name: str) -> Real:
-    some = next(iter(scores.values()))
-    return scores.get(name, np.zeros_like(some))
-
-
-def _spread(score: Real, given: Value) -> Real:
-    """The value at a normal score, spread evenly over the logarithm of its range."""
-    from scipy.special import ndtr
-
-    return size_at(ndtr(score), given)
 
 
 def instruments_of(tools: Sequence[Instrument]) -> tuple[str, ...]:

@@ -10,10 +10,11 @@ import numpy as np
 
 from ..physics.burden import Burden
 from ..reference.instruments import Instrument
+from .coupling import Real, Scores
 from .hypotheses import Cause, Variant, size_range
 from .observation import Action, Observation
 from .readings import Pair
-from .reduced import Complex, Defect, Real, Reduced, Scores, State, instruments_of
+from .reduced import Complex, Defect, Reduced, State, instruments_of
 
 MANY = 40  # readings that one explanation takes
 

@@ -1,0 +1,266 @@
+"""What the odds come to on one conductor, and the sentences that say so.
+
+A finding says what, how sure, and what it leaves open. It never says that a conductor is dead.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
+from ..reference.records import Source, Value
+from ..units import show, show_length
+from .causes import Explanation, quantiles
+from .coupling import Real
+from .hypotheses import LEAKAGE, Cause
+from .observation import NOTHING
+from .readings import Pair
+from .scene import Solved, rms
+
+DECIDED = 0.8  # share of a cause from which the finding names it alone
+SUSPECT_READING = 0.5  # chance of a misread from which a reading counts as one that does not fit
+NOT_EXCLUDED = 10.0  # to 1: odds below which the readings do not exclude a size
+ACCEPTED_INSULATION = Value(1e6, "Ω", Source("IEC 60364-6", "from memory",
+                                             "insulation resistance, to 500 V"))
+LEAKS: tuple[Cause, Cause] = ("leakage to a live neighbour", "leakage to earth")
+_BINS = 32
+
+Range = tuple[float, float, float]
+"""Values that 5, 50 and 95 % of the posterior lie below."""
+
+
+@dataclass(frozen=True)
+class Finding:
+    """What the readings come to on one conductor.
+
+    Parameters
+    ----------
+    suspect : the conductor
+    cause, share : the likeliest cause, and its share
+    second, second_share : the next one
+    size : of the likeliest cause, [ohm] or [V]; None where it has none
+    coupling : capacitance to the live conductors under it [F]; None where nothing is known of it
+    leak_limit : leakage above which the readings cannot exclude it beside the capacitive coupling
+        [ohm]; NaN where they exclude all of it
+    leak_odds : of capacitive coupling over leakage below 1 MΩ
+    current : that capacitive coupling drives through a bond from the conductor to earth [A]
+    misfits : indices of readings that fit nothing
+    alike : whether no reading speaks clearly for either of the two likeliest causes
+    """
+
+    suspect: str
+    cause: Cause
+    share: float
+    second: Cause
+    second_share: float
+    size: Range | None
+    coupling: Range | None
+    leak_limit: float
+    leak_odds: float
+    current: Range
+    misfits: tuple[int, ...]
+    alike: bool
+
+    @property
+    def decided(self) -> bool:
+        """Whether the likeliest cause is named alone."""
+        return self.share >= DECIDED
+
+    @property
+    def felt(self) -> bool:
+        """Whether the coupled current could reach what is felt."""
+        return self.current[2] >= PERCEPTION_CURRENT.likely
+
+
+def finding(found: Explanation, suspect: str) -> Finding:
+    """What the readings come to on one of the suspects."""
+    odds = found.odds(suspect)
+    cause, second = sorted(odds, key=odds.__getitem__, reverse=True)[:2]
+    sizes, size_weights = found.sizes(suspect, cause)
+    live, _, weights = found.capacitances(suspect, cause)
+    sized = len(sizes) > 0 and float(np.ptp(sizes)) > 0
+    misfits = tuple(k for k in range(len(found.readings))
+                    if found.misread(k) > SUSPECT_READING)
+    return Finding(
+        suspect, cause, odds[cause], second, odds[second],
+        credible(sizes, size_weights) if sized else None,
+        None if cause == "none of these" else credible(live, weights),
+        _leak_limit(found, suspect), _leak_odds(found, suspect), coupled_current(found, suspect),
+        misfits, _alike(found, suspect, cause, second))
+
+
+def coupled_current(found: Explanation, suspect: str) -> Range:
+    """What capacitive coupling drives through a bond from the suspect to earth [A].
+
+    With capacitances as the readings leave them under that cause.
+    """
+    made = []
+    for h, share in found.of_cause(suspect, "capacitive coupling"):
+        solved = Solved(h.scene, h.draws.size, h.scene.scores(h.draws.score))
+        v, z = solved.port(Pair(f"{suspect}@far"), NOTHING)
+        made.append((rms(v / z), share * h.draws.weight / h.draws.weight.sum()))
+    if not made:
+        return (0.0, 0.0, 0.0)
+    values, weights = (np.concatenate(x) for x in zip(*made, strict=True))
+    return credible(values, weights)
+
+
+def credible(values: Real, weights: Real) -> Range:
+    """What 5, 50 and 95 % of the weighted values lie below."""
+    low, middle, high = quantiles(values, weights, (0.05, 0.5, 0.95))
+    return float(low), float(middle), float(high)
+
+
+def _alike(found: Explanation, suspect: str, first: Cause, second: Cause) -> bool:
+    told = (found.told(suspect, k) for k in range(len(found.readings)))
+    return all(abs(t.get(first, 0.0) - t.get(second, 0.0)) < math.log10(3) for t in told)
+
+
+def _leak_odds(found: Explanation, suspect: str) -> float:
+    """Of capacitive coupling over a leakage that an installation's insulation must not have."""
+    poor = 0.0
+    for cause in LEAKS:
+        sizes, weights = found.sizes(suspect, cause)
+        poor += float(weights[sizes < ACCEPTED_INSULATION.likely].sum())
+    good = found.odds(suspect)["capacitive coupling"]
+    return good / poor if poor > 0 else math.inf
+
+
+def _leak_limit(found: Explanation, suspect: str) -> float:
+    """The least resistance from which on no leakage is ten times less likely than none."""
+    plain = found.odds(suspect)["capacitive coupling"] / found.shares["capacitive coupling"]
+    edges = np.geomspace(LEAKAGE.low, LEAKAGE.high, _BINS + 1)
+    limits = []
+    for cause in LEAKS:
+        sizes, weights = found.sizes(suspect, cause)
+        held = np.histogram(sizes, edges, weights=weights)[0] * _BINS
+        open_to = NOT_EXCLUDED * held >= plain * found.shares[cause]
+        first = _BINS - int(np.argmin(np.append(open_to[::-1], False)))
+        limits.append(edges[first] if first < _BINS else math.inf)
+    least = min(limits)
+    return float(least) if math.isfinite(least) else math.nan
+
+
+def sentences(
+    found: Explanation, made: Finding, *, customary: bool = False
+) -> Iterator[str]:
+    """What, how sure, and what it leaves open; then how much the coupling could drive.
+
+    Lengths are in feet if `customary`.
+    """
+    yield headline(found, made)
+    if made.coupling is not None and made.decided:
+        yield f"The capacitance to the live conductors comes out at {span(made.coupling, 'F')}."
+    if made.cause != "none of these":
+        for k in made.misfits:
+            yield (f"Reading {k + 1} ({found.readings[k].text}, {found.readings[k].instrument.name}"
+                   ") fits none of the causes that fit the others: take it again.")
+    yield danger(found, made, customary=customary)
+    yield (f"Whatever the odds, “{made.suspect}” counts as live until it is proved otherwise at "
+           "the point of work.")
+
+
+def headline(found: Explanation, made: Finding) -> str:
+    """The finding in one sentence: what, how sure, and what it leaves open."""
+    of = f"on “{made.suspect}”"
+    if not found.readings:
+        return f"No reading has been taken {of}: the odds are those of the trade beforehand."
+    if not made.decided:
+        return (f"The readings {of} cannot tell {made.cause} ({_percent(made.share)}) from "
+                f"{made.second} ({_percent(made.second_share)}): {_why(made)}.")
+    if made.cause == "none of these":
+        return (f"No cause here explains the readings {of} ({odds_words(_ratio(made))} over "
+                f"{made.second}): the run is not as described, or more than one thing is wrong.")
+    if made.cause == "capacitive coupling":
+        return (f"The readings {of} are what capacitive coupling on this run predicts "
+                f"({_over(made)}); {_open(made)}.")
+    return (f"The readings {of} point to {made.cause}{_sized(made)} "
+            f"({odds_words(_ratio(made))} over {made.second}).")
+
+
+def _why(made: Finding) -> str:
+    if made.alike:
+        return "both predict every one of them, within what the instruments can tell"
+    if "none of these" in (made.cause, made.second):
+        other = made.second if made.cause == "none of these" else made.cause
+        return f"{other} fits them only if one of them is misread, or fits them badly"
+    return "both can produce them, the one more easily than the other"
+
+
+def _over(made: Finding) -> str:
+    """The odds over a leakage that matters, and over the next cause of another kind."""
+    said = (f"{odds_words(made.leak_odds)} over leakage below "
+            f"{show(ACCEPTED_INSULATION.likely, 'Ω')}")
+    if made.second in LEAKS:
+        return said
+    return f"{said}, {odds_words(_ratio(made))} over {made.second}"
+
+
+def _ratio(made: Finding) -> float:
+    return made.share / made.second_share if made.second_share > 0 else math.inf
+
+
+def _open(made: Finding) -> str:
+    if math.isnan(made.leak_limit):
+        return f"leakage up to {show(LEAKAGE.high, 'Ω')} is excluded by these instruments"
+    return (f"leakage above {show(made.leak_limit, 'Ω', 1)} cannot be excluded by these "
+            "instruments")
+
+
+def _sized(made: Finding) -> str:
+    if made.size is None:
+        return ""
+    return f" of {span(made.size, 'V' if made.cause == 'magnetic pick-up' else 'Ω')}"
+
+
+def span(values: Range, unit: str) -> str:
+    """From the lower to the upper end of a range.
+
+    >>> span((1.9e5, 2e5, 2.31e5), "Ω"), span((1.21, 1.23, 1.24), "V")
+    ('190 kΩ to 230 kΩ', 'about 1.2 V')
+    """
+    low, high = show(values[0], unit, 2), show(values[2], unit, 2)
+    return f"{low} to {high}" if low != high else f"about {low}"
+
+
+def danger(found: Explanation, made: Finding, *, customary: bool = False) -> str:
+    """What the coupled current means, with the limits of IEC 60479-1."""
+    most, length = made.current[2], found.reduced.run.length
+    felt, let_go = PERCEPTION_CURRENT.likely, LET_GO_CURRENT.likely
+    drives = f"Coupling alone drives up to {show(most, 'A', 2)} through a bond to earth"
+    if most >= let_go:
+        return (f"{drives}. That is above the {show(let_go, 'A')} from which a hand may not let "
+                "go (IEC 60479-1): this coupled voltage can injure.")
+    if most >= felt:
+        return (f"{drives}. That is above the {show(felt, 'A')} that is felt and makes one start "
+                "(IEC 60479-1): a fall or a jerk can injure.")
+    if most <= 0:
+        return "No live conductor couples to it as the run is described."
+    reach = show_length(length * felt / most, customary=customary, digits=2)
+    return (f"{drives}, below the {show(felt, 'A')} that is felt (IEC 60479-1); it grows with "
+            f"length, and reaches that on {reach} of this run. That a coupled voltage cannot hurt "
+            "is true of small capacitances only.")
+
+
+def odds_words(ratio: float) -> str:
+    """Odds as they are said.
+
+    >>> odds_words(41.2), odds_words(2.345), odds_words(5e4)
+    ('odds 41 to 1', 'odds 2.3 to 1', 'odds over 1000 to 1')
+    """
+    if ratio > 1000:
+        return "odds over 1000 to 1"
+    return f"odds {ratio:.0f} to 1" if ratio >= 10 else f"odds {ratio:.1f} to 1"
+
+
+def _percent(share: float) -> str:
+    return f"{100 * share:.0f} %"
+
+
+def findings(found: Explanation, suspects: Sequence[str] | None = None) -> tuple[Finding, ...]:
+    """Of each suspect, in order."""
+    return tuple(finding(found, s) for s in (suspects or found.reduced.suspects))
