@@ -9,6 +9,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from functools import lru_cache
 
 import numpy as np
 
@@ -127,7 +128,7 @@ def residual_margin(
         raise Refused("standing current", "nothing stands behind the device")
     rows = bank(leaks, supply)
     sets = point_sets(rows.dimensions, seed=seed, points=points)
-    phasors, pieces = drawn(rows, np.concatenate(sets))
+    phasors, pieces = drawn(rows, sets.reshape(-1, rows.dimensions))
     total = phasors.sum(axis=2)
     rest = _rest(rows, leaks, total, pieces, device, supply)
     found = Margin(device, supply, tuple(leaks), total[0], rest,
@@ -142,13 +143,20 @@ def residual_margin(
             device, [leak.all_on() for leak in leaks], supply, seed=seed, points=points).chance)
 
 
-def point_sets(dimensions: int, *, seed: int, points: int) -> list[Real]:
-    """Independently scrambled Sobol' points, `REPLICATES` sets of (points, dimensions)."""
+@lru_cache(maxsize=8)
+def point_sets(dimensions: int, *, seed: int, points: int) -> Real:
+    """Independently scrambled Sobol' points (REPLICATES, points, dimensions), not to be written to.
+
+    They are kept: making them takes longer than all else that a margin needs.
+    """
     from scipy.stats import qmc
 
     generator = np.random.default_rng(seed)
     power = points.bit_length() - 1
-    return [qmc.Sobol(dimensions, seed=generator).random_base2(power) for _ in range(REPLICATES)]
+    made = np.stack([qmc.Sobol(dimensions, seed=generator).random_base2(power)
+                     for _ in range(REPLICATES)])
+    made.setflags(write=False)
+    return made
 
 
 def added_pieces(margin: Margin, leak: str, extra: Sequence[int]) -> tuple[Margin, ...]:

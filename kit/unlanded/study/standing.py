@@ -235,11 +235,13 @@ def drawn(rows: Bank, points: Real) -> tuple[Complex, Real]:
     """
     u = points[:, rows.columns]
     pieces = _triangular(u[..., 0], rows.low, rows.high) * _number(rows, u[..., 3])
-    lead = CAPACITIVE * np.where(rows.free_angle, u[..., 1], 0.0)
-    line = np.where(rows.free_line, np.floor(u[..., 2] * rows.lines) / rows.lines, 0.0)
-    turned = [phasor * pieces * np.exp(1j * (lead - 2 * np.pi * order * line))
-              for order, phasor in zip(rows.orders, rows.phasors, strict=True)]
-    return np.array(turned), pieces
+    free = np.flatnonzero(rows.free_angle | rows.free_line)
+    lead = CAPACITIVE * np.where(rows.free_angle, u[..., 1], 0.0)[:, free]
+    line = np.where(rows.free_line, np.floor(u[..., 2] * rows.lines) / rows.lines, 0.0)[:, free]
+    made = rows.phasors[:, None, :] * pieces
+    for number, order in enumerate(rows.orders):
+        made[number][:, free] *= np.exp(1j * (lead - 2 * np.pi * order * line))
+    return made, pieces
 
 
 def _triangular(u: Real, low: Real, high: Real) -> Real:
