@@ -92,3 +92,46 @@ def test_memo_is_not_written_over_unasked(folder: Path) -> None:
     assert result.exit_code == 2
     assert "is there already" in result.output
     assert list((folder / "tern-quay-memo").iterdir()) == []
+
+
+def test_margin_prints_the_section_and_the_caution() -> None:
+    result = run("margin", SITES / "alder-mill.toml")
+    assert result.exit_code == 0, result.output
+    for words in ("Residual-current margin", "must not trip", "will (370 ms)", "never proves"):
+        assert words in result.output
+
+
+def test_margin_without_a_device_is_one_sentence(folder: Path) -> None:
+    text = QUAY.read_text(encoding="utf-8")
+    start = text.index("[device]")
+    end = text.index("[[readings]]")
+    (folder / "none.toml").write_text(text[:start] + text[end:], encoding="utf-8")
+    result = run("margin", "none.toml")
+    assert result.exit_code == 2
+    assert result.output.strip().startswith("none.toml: has no residual-current device")
+
+
+def test_screen_ranks_and_writes_its_folder(folder: Path) -> None:
+    result = run("screen", SITES / "heron-house-register.csv", "--date", "2026-03-09")
+    assert result.exit_code == 0, result.output
+    assert "7 devices with 17 circuits" in result.output
+    made = folder / "heron-house-register-screen"
+    names = {p.name for p in made.iterdir()}
+    assert names == {"memo.docx", "memo.pdf", "figures", "tables", "results.json", "register.csv"}
+    ranking = (made / "tables" / "ranking.csv").read_text(encoding="utf-8-sig")
+    assert len(ranking.strip().splitlines()) == 8
+    again = run("screen", SITES / "heron-house-register.csv")
+    assert again.exit_code == 2
+    assert "is there already" in again.output
+
+
+def test_screen_lists_the_mistakes_of_a_bad_register(folder: Path) -> None:
+    (folder / "bad.csv").write_text(
+        "device,circuit,rated [mA],line,length [m],cable\nA,,thirty,,,\nB,one,,L1,x,150 pF/m\n",
+        encoding="utf-8")
+    result = run("screen", "bad.csv")
+    assert result.exit_code == 2
+    lines = result.output.strip().splitlines()
+    assert [line.partition(",")[0] for line in lines] == ["bad.csv row 2", "bad.csv row 3",
+                                                          "bad.csv row 3"]
+    assert [p.name for p in folder.iterdir()] == ["bad.csv"]

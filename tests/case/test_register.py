@@ -100,7 +100,7 @@ def test_every_mistake_is_told_at_once_and_many_are_counted(tmp_path):
 @pytest.mark.parametrize(
     ("text", "message"),
     [("", "is empty"), (HEADING, "no row is a device"),
-     (GOOD.replace(",,70", ",,70,,,,"), "is not a CSV that can be read"),
+     (GOOD.replace(",,70", ",,70,,,,"), "row 5: has more cells than the 10"),
      (HEADING.replace("circuit", "device"), "is there twice|is missing")],
 )
 def test_files_that_are_no_register(tmp_path, text, message):

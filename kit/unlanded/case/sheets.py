@@ -6,6 +6,8 @@ as a spreadsheet counts them: the heading is row 1.
 
 from __future__ import annotations
 
+import csv
+import warnings
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -25,19 +27,35 @@ def read_sheet(path: Path) -> pd.DataFrame:
 
     between = _separator(path)
     try:
-        table = pd.read_csv(path, sep=between, dtype=str, keep_default_na=False,
-                            encoding="utf-8-sig", skipinitialspace=True, index_col=False,
-                            on_bad_lines="error", engine="c")
+        with warnings.catch_warnings():
+            warnings.simplefilter("error", pd.errors.ParserWarning)
+            table = pd.read_csv(path, sep=between, dtype=str, keep_default_na=False,
+                                encoding="utf-8-sig", skipinitialspace=True, index_col=False)
     except UnicodeDecodeError as error:
         raise Refused(path.name, "is not UTF-8 text", hint="save it as CSV UTF-8",
                       given=f"byte 0x{error.object[error.start]:02X}") from None
     except pd.errors.EmptyDataError:
         raise Refused(path.name, "is empty") from None
-    except pd.errors.ParserError as error:
-        raise Refused(path.name, "is not a CSV that can be read", given=str(error)) from None
+    except (pd.errors.ParserError, pd.errors.ParserWarning):
+        raise _not_even(path, between) from None
+    table = table.fillna("")  # a row that ends early: spreadsheets leave off empty cells
     table.columns = [str(c).strip() for c in table.columns]
     _refuse_long_cells(table, path.name)
     return table
+
+
+def _not_even(path: Path, between: str) -> Refused:
+    """The refusal of a CSV that a reader cannot make rows of: its first row with cells too many."""
+    csv.field_size_limit(LARGEST)
+    with path.open(encoding="utf-8-sig", newline="") as file:
+        rows = csv.reader(file, delimiter=between)
+        width = len(next(rows))
+        for number, row in enumerate(rows, 2):
+            if len(row) > width:
+                return Refused(f"{path.name} row {number}", f"has more cells than the {width} of "
+                               "the heading", given=f"{len(row)} cells")
+    return Refused(path.name, "is not a CSV that can be read",
+                   hint="a quotation mark is not closed")
 
 
 def _separator(path: Path) -> str:

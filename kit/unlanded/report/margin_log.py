@@ -27,8 +27,9 @@ def log_blocks(found: History, intake: Intake, margin: Margin) -> Iterator[Block
              f"{show(found.percentiles[50], 'A')}, 95 % of the time at most "
              f"{show(found.percentiles[95], 'A')}, 99 % at most "
              f"{show(found.percentiles[99], 'A')}. The computed {show(low, 'A')} to "
-             f"{show(high, 'A')} holds {per_cent(within)} of the samples. Above {show(found.limit, 'A')} for {_span(found.above)}, the longest "
-             f"stretch {_span(found.longest_above)}")
+             f"{show(high, 'A')} holds {per_cent(within)} of the samples. Above "
+             f"{show(found.limit, 'A')} for {_span(found.above)}, the longest stretch "
+             f" {_span(found.longest_above)}")
     if found.above > 0:
         hour = int(found.above_by_hour.argmax())
         words += (f", most of it from {hour}:00 to {hour + 1}:00 on the site's clock "
