@@ -100,5 +100,6 @@ def _cover(orders: Complex, rho: Real, w: Complex, a: float, b: float) -> Real:
     t = (a / b) ** (2 * np.arange(1, len(orders) + 1))
     inner: Complex = np.asarray(np.conj(orders) * (1 + 1 / rho) / (1 - t))
     # t_n = (a/b)²ⁿ goes into the base of the second series.
-    inward, outward = _series(inner, w / b), _series(inner, a**2 / b * np.conj(1 / w))
+    outside: Complex = np.conj(a**2 / (b * w))
+    inward, outward = _series(inner, w / b), _series(inner, outside)
     return np.asarray(inward.real - outward.real)
