@@ -193,8 +193,9 @@ class Network:
             matrix[:, j, i] -= y
         for names, c in self._matrices:
             # A node may stand for several conductors, whose charges then add.
-            at = np.eye(size + 1)[[number[n] for n in names]]
-            matrix += 1j * omega[:, None, None] * (at.T @ c @ at)
+            at, which = np.unique([number[n] for n in names], return_inverse=True)
+            fold = np.eye(len(at))[which]
+            matrix[:, at[:, None], at] += 1j * omega[:, None, None] * (fold.T @ c @ fold)
         row = nodes
         for branches in self._branches:
             rows = np.arange(row, row + len(branches.pairs))

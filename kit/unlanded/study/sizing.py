@@ -37,7 +37,7 @@ Quantity: TypeAlias = Callable[[RunBatch], Real]
 """From a batch of runs to a result (B,)."""
 
 SCAN = 129
-DRAWS = 256
+DRAWS = 128
 _TOLERANCE = 1e-12
 
 
@@ -144,9 +144,9 @@ def _stretches(
 
     met = values <= 0
     edges = [float(grid[0])] if met[0] else []
-    for k in np.flatnonzero(met[1:] != met[:-1]):
-        edges.append(float(brentq(over, grid[k], grid[k + 1], xtol=_TOLERANCE * grid[k + 1],
-                                  rtol=_TOLERANCE)))
+    edges += [float(brentq(over, grid[k], grid[k + 1], xtol=_TOLERANCE * grid[k + 1],
+                           rtol=_TOLERANCE))
+              for k in np.flatnonzero(met[1:] != met[:-1])]
     if met[-1]:
         edges.append(float(grid[-1]))
     return tuple(zip(edges[::2], edges[1::2], strict=True))
@@ -182,12 +182,19 @@ def by_length(
     With a `coverage` c [1], what the share c of the draws stays under; it needs an `UncertainRun`.
     """
     if isinstance(run, UncertainRun) and coverage is not None:
+        drawn = run
+
         def covered(lengths: Real) -> Real:
-            drawn = quantity(run.stretched(lengths, DRAWS)).reshape(len(lengths), -1)
-            return np.asarray(np.quantile(drawn, coverage, axis=1))
+            # One length at a time: long ones need many sections, short ones only one.
+            return np.array([np.quantile(quantity(drawn.stretched([x], DRAWS)), coverage)
+                             for x in lengths])
         return covered
     plain = run.run if isinstance(run, UncertainRun) else run
-    return lambda lengths: quantity(RunBatch.of(plain, length=lengths))
+
+    def nominal(lengths: Real) -> Real:
+        parts = np.array_split(lengths, max(1, len(lengths) // 16))
+        return np.concatenate([quantity(RunBatch.of(plain, length=part)) for part in parts])
+    return nominal
 
 
 def by_run(

@@ -1,0 +1,308 @@
+"""False operation: whether stray coupling keeps a load on, by what margin, and what cures it.
+
+The run is taken as it is with its contacts open. The voltage on the load, or a lamp's current, is
+held against what the load is sure to be off at. Cures are the same run changed.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from ..errors import Refused
+from ..physics.burden import Burden
+from ..physics.lamp import rectified_current
+from ..physics.screen import own_screens
+from ..reference.loads import Threshold
+from ..units import show
+from .batch import Ports, RunBatch
+from .ends import Bonded, Driven, Open, Termination, Through
+from .readings import Pair
+from .run import Run
+from .sizing import Bleeder, Met, bleeder, by_length, solve_for
+from .spread import COVERAGE, coverage_interval
+from .uncertain import UncertainRun
+
+Real = NDArray[np.float64]
+DRAWS = 1024
+LOW_VOLTAGE = 24.0  # of a control circuit, RMS [V]
+SHORTEST, LONGEST = 5.0, 3e3  # metres that the longest run is looked for in
+
+
+@dataclass(frozen=True)
+class Watched:
+    """A load whose state matters, on a pair of the run.
+
+    Parameters
+    ----------
+    name : as the memo calls it
+    pair : where it is; the run has its impedance there already, but for a lamp's chips
+    threshold : of its kind
+    rated : voltage, where the thresholds are shares of it [V]
+    off_at, on_at : from its data sheet, in place of the kind's [V], [A] for a lamp
+    conducts_from : voltage of a lamp's lit chips with their rectifier [V]
+    series_capacitance : before them [F]; infinite without one
+    """
+
+    name: str
+    pair: Pair
+    threshold: Threshold
+    rated: float | None = None
+    off_at: float | None = None
+    on_at: float | None = None
+    conducts_from: float = 50.0
+    series_capacitance: float = math.inf
+
+    @property
+    def limits(self) -> tuple[float, float]:
+        """Sure to be off at the first, sure to be on at the second [V] or [A]."""
+        kind = self.threshold
+        off = kind.volts(kind.off_at, self.rated) if self.off_at is None else self.off_at
+        on = kind.volts(kind.on_at, self.rated) if self.on_at is None else self.on_at
+        if not 0 < off < on:
+            raise Refused(self.name, "must be sure to be off at less than it is sure to be on at",
+                          given=f"{off:g} and {on:g}")
+        return off, on
+
+    @property
+    def unit(self) -> str:
+        """Of the limits and levels."""
+        return "A" if self.threshold.measure == "lamp current" else "V"
+
+    def state(self, level: float) -> str:
+        """In words: off, between, or on."""
+        off, on = self.limits
+        return self.threshold.states[0 if level <= off else 2 if level >= on else 1]
+
+
+@dataclass(frozen=True)
+class Cure:
+    """A change of the run that may let go of the load.
+
+    Parameters
+    ----------
+    name : what is done
+    level : voltage [V] or lamp current [A] that is left
+    state : of the load then, in words
+    works : whether the load is then sure to be off
+    watts : that the cure takes while the circuit is on
+    note : of its price
+    bleeder : its values, where it is one
+    """
+
+    name: str
+    level: float
+    state: str
+    works: bool
+    watts: float = 0.0
+    note: str = ""
+    bleeder: Bleeder | None = None
+
+
+@dataclass(frozen=True, eq=False)
+class Operation:
+    """What a load does with its contacts open.
+
+    Parameters
+    ----------
+    watched : the load
+    level : voltage on it [V], or a lamp's mean current [A]
+    low, high : its coverage interval
+    current : through its impedance [A], NaN where the run has none on the pair
+    state : in words
+    margin : how far under its limit it stays, relative to that limit [1]; negative when over
+    chances : of being off, between, and on, over the draws [1]
+    longest : lengths of the run [m] at which it is sure to be off, nominally
+    longest_covered : the same for 95 % of the draws
+    cures : those that work first, by the watts they take
+    """
+
+    watched: Watched
+    level: float
+    low: float
+    high: float
+    current: float
+    state: str
+    margin: float
+    chances: tuple[float, float, float]
+    longest: Met
+    longest_covered: Met
+    cures: tuple[Cure, ...]
+
+
+def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Operation:
+    """The state of a load, its margin, the longest run, and the cures; raises `Refused`."""
+    run = uncertain.run
+    watched = _by_current(run, watched)
+    off, on = watched.limits
+    level = float(level_on(RunBatch.of(run), watched)[0])
+    drawn = level_on(uncertain.draws(DRAWS, seed=seed), watched)
+    low, high = coverage_interval(drawn[:, None], COVERAGE)
+    chances = (float(np.mean(drawn <= off)), float(np.mean((drawn > off) & (drawn < on))),
+               float(np.mean(drawn >= on)))
+    longest, covered = _longest(uncertain, watched)
+    return Operation(watched, level, float(low[0]), float(high[0]), level * _admittance(run, watched),
+                     watched.state(level), (off - level) / off, chances, longest, covered,
+                     tuple(_ranked(_cures(run, watched))))
+
+
+def level_on(batch: RunBatch, watched: Watched, admittance: ArrayLike = 0.0) -> Real:
+    """Voltage on the load [V], or a lamp's mean current [A] (B,), with an admittance beside it."""
+    return port_level(batch.port(watched.pair.a, watched.pair.b), watched, batch.run.frequency,
+                      admittance)
+
+
+def port_level(
+    port: Ports, watched: Watched, frequency: float, admittance: ArrayLike = 0.0
+) -> Real:
+    """The same from the port of the load; broadcasts with the admittance [S]."""
+    loaded = port.loaded(admittance)
+    if watched.threshold.measure == "voltage":
+        return np.abs(loaded)
+    impedance = port.impedance / (1 + np.asarray(admittance) * port.impedance)
+    if math.isfinite(watched.series_capacitance):
+        impedance = impedance - 1j / (2 * np.pi * frequency * watched.series_capacitance)
+    return rectified_current(voltage=loaded.ravel(), impedance=impedance.ravel(),
+                             frequency=frequency, conducts_from=watched.conducts_from
+                             ).reshape(loaded.shape)
+
+
+def _longest(uncertain: UncertainRun, watched: Watched) -> tuple[Met, Met]:
+    """Lengths at which the load is sure to be off, nominally and for most of the draws."""
+    def met(coverage: float | None, high: float, scan: int) -> Met:
+        result = by_length(uncertain, lambda b: level_on(b, watched), coverage=coverage)
+        return solve_for(result, watched.limits[0], low=SHORTEST, high=high, scan=scan)
+
+    nominal = met(None, LONGEST, 65)
+    # A long run needs many sections: the draws are not asked far beyond the nominal answer.
+    beyond = min((2 * c for c in nominal.crossings), default=LONGEST)
+    return nominal, met(COVERAGE, min(beyond, LONGEST), 17)
+
+
+def _admittance(run: Run, watched: Watched) -> float:
+    """Of the load that the run has on the pair [S]; 1 for a lamp, NaN where there is none."""
+    if watched.threshold.measure == "lamp current":
+        return 1.0
+    nodes = {run.node(watched.pair.a), run.node(watched.pair.b)}
+    own = [t.burden for a, b, t in run.closed if {a, b} == nodes]
+    return abs(sum(complex(b.admittance(run.frequency)) for b in own)) if own else math.nan
+
+
+def _by_current(run: Run, watched: Watched) -> Watched:
+    """An input that is off at a current too: its limit in volts, through its own impedance."""
+    leak = watched.threshold.off_current
+    admittance = _admittance(run, watched)
+    if leak is None or watched.off_at is not None or not admittance > 0:
+        return watched
+    off, on = watched.limits
+    return replace(watched, off_at=max(off, min(leak.likely / admittance, 0.999 * on)))
+
+
+def _ranked(cures: Iterator[Cure]) -> list[Cure]:
+    return sorted(cures, key=lambda c: (not c.works, c.watts, c.level))
+
+
+def _cures(run: Run, watched: Watched) -> Iterator[Cure]:
+    port = RunBatch.of(run).port(watched.pair.a, watched.pair.b)
+    yield from _resistor(run, watched, port)
+    yield from _capacitor(run, watched, port)
+    yield from _spares(run, watched)
+    yield from _own_cable(run, watched)
+    if watched.threshold.measure == "voltage" and run.supply.voltage > LOW_VOLTAGE:
+        yield from _low_voltage(run, watched)
+    yield from _at_supply(run, watched)
+
+
+def _cure(name: str, level: float, watched: Watched, **more: object) -> Cure:
+    return Cure(name, level, watched.state(level), level <= watched.limits[0],
+                **more)  # type: ignore[arg-type]
+
+
+def _resistor(run: Run, watched: Watched, port: Ports) -> Iterator[Cure]:
+    found = bleeder(
+        lambda r: port_level(port, watched, run.frequency, 1 / r), watched.limits[0],
+        live_voltage=run.supply.voltage)
+    if found is not None:
+        text = f"resistor across the load, {show(found.value, 'Ω')}"
+        yield _cure(text, found.result, watched, watts=found.power, bleeder=found,
+                    note=f"{_sold(found.power_rating, 'W')}, {_sold(found.voltage_rating, 'V')}; "
+                         "hot while the circuit is on")
+
+
+def _sold(rating: float, unit: str) -> str:
+    return f"rated {show(rating, unit)}" if math.isfinite(rating) else "beyond the ratings sold"
+
+
+def _capacitor(run: Run, watched: Watched, port: Ports) -> Iterator[Cure]:
+    def left(farads: Real) -> Real:
+        return port_level(port, watched, run.frequency, 2j * np.pi * run.frequency * farads)
+
+    met = solve_for(left, watched.limits[0], low=1e-9, high=10e-6)
+    if met.nowhere:
+        return
+    farads = met.stretches[-1][0]
+    amperes = 2 * math.pi * run.frequency * farads * run.supply.voltage
+    yield _cure(f"capacitor across the load, at least {show(farads, 'F')}",
+                float(left(np.array([farads]))[0]), watched,
+                note=f"draws {show(amperes, 'A')} without heat; rated for across-the-line use, with "
+                     "a resistor in series against inrush, and checked against resonance")
+
+
+def _spares(run: Run, watched: Watched) -> Iterator[Cure]:
+    spares = [n for n in run.section.names
+              if isinstance(run.near[n], Open) and isinstance(run.far[n], Open)
+              and f"{n}@near" not in (watched.pair.a, watched.pair.b)
+              and f"{n}@far" not in (watched.pair.a, watched.pair.b)]
+    if spares:
+        bonded = replace(run, near={**run.near, **dict.fromkeys(spares, Bonded("earth"))},
+                         capacitance=run.matrix)
+        yield _cure(f"spare cores ({', '.join(spares)}) bonded to earth at the near end",
+                    _level(bonded, watched), watched)
+
+
+def _own_cable(run: Run, watched: Watched) -> Iterator[Cure]:
+    live = [n for n in run.section.names
+            if isinstance(run.near[n], Driven) or isinstance(run.far[n], Driven)]
+    if live:
+        apart = replace(run, capacitance=own_screens(
+            run.matrix, [run.section.index(n) for n in live]))
+        yield _cure(f"the live core ({', '.join(live)}) in an earthed screen or a cable of its own",
+                    _level(apart, watched), watched, note="a screen earthed at one end or at both")
+
+
+def _low_voltage(run: Run, watched: Watched) -> Iterator[Cure]:
+    if watched.rated is None:
+        return
+    share = LOW_VOLTAGE / run.supply.voltage
+    changed = replace(run, supply=replace(run.supply, voltage=LOW_VOLTAGE), capacitance=run.matrix,
+                      near=_scaled(run, "near", share**2), far=_scaled(run, "far", share**2))
+    low = replace(watched, rated=watched.rated * share,
+                  off_at=watched.limits[0] * share, on_at=watched.limits[1] * share)
+    yield _cure(f"control circuit at {show(LOW_VOLTAGE, 'V')} AC, coil of the same power",
+                _level(changed, low), low, note="check the voltage drop when the coil picks up")
+
+
+def _scaled(run: Run, end: str, share: float) -> Mapping[str, Termination]:
+    return {n: replace(t, burden=Burden(t.burden.resistance * share, t.burden.inductance * share,
+                                        t.burden.capacitance / share,
+                                        t.burden.front_resistance * share))
+            if isinstance(t, Through) else t for n, t in getattr(run, end).items()}
+
+
+def _at_supply(run: Run, watched: Watched) -> Iterator[Cure]:
+    live = [n for n in run.section.names if isinstance(run.near[n], Driven)]
+    if not live or watched.pair.a in {f"{n}@{end}" for n in live for end in ("near", "far")}:
+        return
+    dead_end = replace(run, near={**run.near, **dict.fromkeys(live, Open())},
+                       capacitance=run.matrix)
+    yield _cure(f"the contact at the supply's end of the live core ({', '.join(live)}), by an "
+                "interposing relay or a direct-current circuit", _level(dead_end, watched), watched,
+                note="nothing alternating goes out while it is open")
+
+
+def _level(run: Run, watched: Watched) -> float:
+    return float(level_on(RunBatch.of(run), watched)[0])
