@@ -48,6 +48,17 @@ _CONTENTS = {
     "Run": "study.run",
     "Pair": "study.readings",
     "reading_sheet": "study.readings",
+    # residual-current devices and their margin
+    "Device": "reference.devices",
+    "personnel_time": "reference.devices",
+    "capacitive_leak": "study.standing",
+    "resistive_leak": "study.standing",
+    "equipment_leak": "study.standing",
+    "run_leak": "study.standing",
+    "residual_margin": "study.residual",
+    "longest_run": "study.residual",
+    "measured_trips": "study.trip",
+    "regroup": "study.regrouping",
     # case files and memos
     "load_case": "case.loading",
     "build_run": "case.build",

@@ -1,7 +1,7 @@
-"""Screening a register, and regrouping a board: times, memory, and how they grow.
+"""Screening a register, regrouping a board, reading a log: times, memory, and how they grow.
 
 Run: python tests/benchmarks/bench_screen.py
-The registers are made here by a seeded generator; nothing in them is real.
+The registers and logs are made here by a seeded generator; nothing in them is real.
 """
 
 from __future__ import annotations
@@ -14,9 +14,11 @@ from pathlib import Path
 
 import numpy as np
 
+from unlanded.case.logs import read_log
 from unlanded.case.register import read_register
 from unlanded.case.screening import screen_register
 from unlanded.reference.equipment import TYPICAL
+from unlanded.study.history import history
 from unlanded.study.regrouping import Circuit, Place, regroup
 from unlanded.study.supply import Supply
 
@@ -44,24 +46,45 @@ def write_register(path: Path, circuits: int, seed: int = 7) -> int:
 
 
 def bench_screen() -> bool:
-    with tempfile.TemporaryDirectory() as folder:  # what is imported where it is used, once
-        write_register(Path(folder) / "first.csv", 1_000)
-        screen_register(read_register(Path(folder) / "first.csv"), Path(folder), Supply(230.0, 50.0))
+    _screen(1_000)  # what is imported where it is used is imported here, once
     print(f"{'circuits':>9} {'devices':>8} {'read s':>7} {'screen s':>9} {'total s':>8} {'MB':>6}")
-    total = 0.0
     for circuits in (1_000, 10_000, 100_000):
-        with tempfile.TemporaryDirectory() as folder:
-            path = Path(folder) / "register.csv"
-            devices = write_register(path, circuits)
-            began = time.perf_counter()
-            register = read_register(path)
-            read = time.perf_counter()
-            screen_register(register, Path(folder), Supply(230.0, 50.0))
-            total = time.perf_counter() - began
-            peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
-            print(f"{circuits:9} {devices:8} {read - began:7.2f} {total - read + began:9.2f} "
-                  f"{total:8.2f} {peak:6.0f}")
+        devices, read, total = _screen(circuits)
+        peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
+        print(f"{circuits:9} {devices:8} {read:7.2f} {total - read:9.2f} {total:8.2f} {peak:6.0f}")
     return total < 10 and peak < 1500
+
+
+def _screen(circuits: int) -> tuple[int, float, float]:
+    """Devices, seconds to read the register, and seconds in all."""
+    with tempfile.TemporaryDirectory() as folder:
+        path = Path(folder) / "register.csv"
+        devices = write_register(path, circuits)
+        began = time.perf_counter()
+        register = read_register(path)
+        read = time.perf_counter() - began
+        screen_register(register, Path(folder), Supply(230.0, 50.0))
+        return devices, read, time.perf_counter() - began
+
+
+def bench_log(rows: int = 1_000_000) -> bool:
+    """A log of a million rows, some of them bad, read and searched for steps."""
+    draw = np.random.default_rng(3)
+    current = 6 + 0.05 * draw.standard_normal(rows) + 3 * (np.arange(rows) // 5000 % 2)
+    stamps = np.datetime_as_string(np.datetime64("2026-03-02T00:00:00") + np.arange(rows))
+    with tempfile.TemporaryDirectory() as folder:
+        path = Path(folder) / "log.csv"
+        lines = [f"{t},{i:.2f}" for t, i in zip(stamps, current, strict=True)]
+        lines[1234] = "yesterday,OL"
+        path.write_text("time,residual [mA]\n" + "\n".join(lines) + "\n", encoding="utf-8")
+        began = time.perf_counter()
+        log, intake = read_log(path, zone="UTC")
+        read = time.perf_counter() - began
+        found = history(log, limit=8e-3)
+        took = time.perf_counter() - began
+    print(f"log of {rows} rows: read {read:.2f} s, searched {took - read:.2f} s; "
+          f"{len(found.steps)} steps, {intake.bad_rows} bad row")
+    return took < 10 and len(found.steps) == rows // 5000 - 1
 
 
 def bench_regroup() -> bool:
@@ -87,4 +110,4 @@ def bench_regroup() -> bool:
 
 
 if __name__ == "__main__":
-    sys.exit(0 if all([bench_screen(), bench_regroup()]) else 1)
+    sys.exit(0 if all([bench_screen(), bench_regroup(), bench_log()]) else 1)

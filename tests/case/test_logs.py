@@ -57,6 +57,14 @@ def test_bad_rows_are_counted_and_named_and_never_dropped_in_silence(tmp_path):
         'log.csv row 5, column "residual [mA]": is not a number; given "".']
 
 
+@pytest.mark.parametrize("stamp", ["9999-01-01 00:00", "1969-12-31 23:59", "0001-01-01 00:00"])
+def test_a_time_that_nobody_believes_is_a_bad_row(tmp_path, stamp):
+    log, said = read(tmp_path, f"time,residual [mA]\n2026-03-09 10:00,5\n{stamp},6\n"
+                               "2026-03-09 10:01,7\n")
+    assert said.bad_rows == 1
+    assert np.diff(log.seconds).tolist() == [60.0]
+
+
 def test_repeated_and_late_stamps(tmp_path):
     log, said = read(tmp_path, "time,residual [mA]\n2026-03-09 10:02,3\n2026-03-09 10:00,1\n"
                                "2026-03-09 10:02,9\n2026-03-09 10:01,2\n")

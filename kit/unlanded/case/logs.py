@@ -24,6 +24,7 @@ if TYPE_CHECKING:
 _UNIT = re.compile(r"[\[(]\s*(A|mA|µA|μA|uA)\s*[\])]\s*$")
 _SCALE = {"A": 1.0, "mA": 1e-3, "µA": 1e-6, "μA": 1e-6, "uA": 1e-6}
 OVER_RANGE = ("ol", "o.l", "o.l.", "over", "overflow", "overload", "over range", "inf", ">")
+EARLIEST, LATEST = np.datetime64("1970-01-01"), np.datetime64("2200-01-01")
 NAMED = 5  # bad rows named one by one; the rest are counted
 
 
@@ -103,8 +104,9 @@ def _seconds(
             stamps[~offset] = _local(text[~offset], zone)
     else:
         stamps = _local(text, zone)
-    epoch = pd.Timestamp(0, tz="UTC")
-    seconds = ((stamps - epoch) / pd.Timedelta(seconds=1)).to_numpy(dtype=float)
+    plain = stamps.dt.tz_localize(None).to_numpy(dtype="datetime64[us]")
+    believed = (plain >= EARLIEST) & (plain < LATEST)  # also not where no time was read
+    seconds = np.where(believed, plain.astype(np.int64) / 1e6, np.nan)
     return seconds, zone or ZoneInfo("UTC")
 
 
