@@ -24,9 +24,9 @@ EMC-17 (1975) 238; images in a plane and a circle are textbook (Smythe).
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import lru_cache, partial
 from typing import Any
 
 import numpy as np
@@ -37,7 +37,9 @@ from .section import Pipe, Plane, Section
 Real = NDArray[np.float64]
 Complex = NDArray[np.complex128]
 Index = NDArray[np.intp]
+Block = Callable[[slice, slice], Complex]  # of a matrix (B, N, N), by its rows and columns
 _NO_ANSWER = 1e-15
+_BAND = 48  # rows of multipoles filled together
 
 
 @dataclass(frozen=True)
@@ -144,22 +146,31 @@ def assemble(
     geometry: Geometry, conductor: Index, order: Index, coarse: tuple[int, ...]
 ) -> System:
     """The system for multipoles of order `order[r]` (from 1) at conductor `conductor[r]`."""
+    _keep_freed_memory()
     rho = reflection(geometry, int(order.max()))
     listed = _Listed(conductor, order, np.sqrt(np.abs(rho)))
     stop, n = 2 * len(order), geometry.centre.shape[-1]
     matrix = np.empty((len(rho), stop + n, stop + n))
-    g, p0 = _fill(matrix[:, :stop, :stop].view(complex), geometry, listed)
-    matrix[:, 0:stop:2, stop:], matrix[:, 1:stop:2, stop:] = g.real, g.imag
-    matrix[:, stop:, :stop] = matrix[:, :stop, stop:].swapaxes(-1, -2)
-    matrix[:, stop:, stop:] = p0
     # An order that the cover does not answer (|ρ| rounded to nothing) keeps a plain 1.
     sign = np.where(listed.of(rho) > _NO_ANSWER, -1.0, 1.0)
-    diagonal = np.arange(stop)
-    matrix[:, diagonal, diagonal] += np.repeat(sign, 2, axis=-1)
     definite = bool(np.all(sign > 0))
+    g, p0 = _fill(matrix[:, :stop, :stop].view(complex), geometry, listed, definite)
+    matrix[:, 0:stop:2, stop:], matrix[:, 1:stop:2, stop:] = g.real, g.imag
+    matrix[:, stop:, stop:] = p0
+    np.einsum("bkk->bk", matrix)[:, :stop] += np.repeat(sign, 2, axis=-1)
     if definite:
         _factorise(matrix)
     return System(matrix, coarse, n, definite, listed.of(listed.weight) / np.sqrt(order))
+
+
+@lru_cache(maxsize=1)
+def _keep_freed_memory() -> None:
+    """Let the C library keep what is freed between batches, once in a process.
+
+    Fetching fresh pages from the system takes longer than the arithmetic on them. The GNU library
+    sets how much it keeps by the largest block freed so far, up to 32 MiB; others do not mind.
+    """
+    np.empty(31 << 20, dtype=np.uint8)
 
 
 def _factorise(matrix: Real) -> None:
@@ -191,39 +202,54 @@ class _Listed:
         powers *= self.of(self.weight)[..., None]
         return np.asarray(powers)
 
-    def facing(self, spread: Complex) -> Complex:
-        """spread[r, j] with the conductor j of each multipole s: (B, N, N)."""
-        return spread.take(self.conductor, axis=-1)
+    def between(self, there: Complex, back: Complex, rows: slice, columns: slice) -> Complex:
+        """there[r, j] back[s, i] (m + n − 1)! / ((m − 1)! (n − 1)! √(m n)), r = (i, m), s = (j, n).
+
+        From what the multipoles in `rows` do at a conductor j, and those in `columns` at i.
+        """
+        table = _binomials(self.weight.shape[-1])
+        block = there[:, rows].take(self.conductor[columns], axis=-1)
+        block *= back[:, columns].take(self.conductor[rows], axis=-1).swapaxes(-1, -2)
+        block *= table[self.order[rows, None] - 1, self.order[columns] - 1]
+        return np.asarray(block)
 
 
-def _fill(rows: Complex, geometry: Geometry, listed: _Listed) -> tuple[Complex, Real]:
+def _fill(
+    k: Complex, geometry: Geometry, listed: _Listed, upper_only: bool
+) -> tuple[Complex, Real]:
     """Fill K, given as complex rows (B, 2N, N); return conj(g) (B, N, n) and P₀ (B, n, n).
 
     Read as complex numbers, its rows of Re x and Im x are conj(S) − H and −i (conj(S) + H).
     """
     direct, g, p0 = _direct(geometry, listed)
-    if geometry.wall == "none":
-        rows[:, 0::2] = direct
-    else:
+    mirrored = None
+    if geometry.wall != "none":
         image = _plane_image if geometry.wall == "plane" else _pipe_image
         mirrored, g_image, p_image = image(geometry, listed)
-        np.subtract(direct, mirrored, out=rows[:, 0::2])
-        direct += mirrored
         g, p0 = g + g_image, p0 + p_image
-    np.multiply(direct, -1j, out=rows[:, 1::2])
+    size = len(listed.order)
+    for start in range(0, size, _BAND if upper_only else size):
+        rows = slice(start, start + _BAND if upper_only else size)
+        columns = slice(start, size)
+        real, imaginary = k[:, 0::2][:, rows, columns], k[:, 1::2][:, rows, columns]
+        block = direct(rows, columns)
+        if mirrored is None:
+            real[...] = block
+        else:
+            image_block = mirrored(rows, columns)
+            np.subtract(block, image_block, out=real)
+            block += image_block
+        np.multiply(block, -1j, out=imaginary)
     return g, p0
 
 
-def _direct(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
-    """Conductors upon each other: conj(S) (B, N, N), conj(g) (B, N, n), P₀ (B, n, n)."""
+def _direct(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Real]:
+    """Conductors upon each other: blocks of conj(S), conj(g) (B, N, n), P₀ (B, n, n)."""
     z, b = geometry.centre, geometry.cover
     own = np.arange(z.shape[-1])
     apart = z[:, :, None] - z[:, None, :]
     apart[:, own, own] = np.inf
     spread = listed.spread(-np.conj(b[:, :, None] / apart))
-    facing = listed.facing(spread)
-    matrix = facing * facing.swapaxes(-1, -2)
-    matrix *= _binomials(listed.order)
     apart[:, own, own] = b
     p0 = -np.log(np.abs(apart))
     p0[:, own, own] += np.log(b / geometry.metal) / geometry.ratio
@@ -231,22 +257,20 @@ def _direct(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real
         # Only differences of potential count at zero total charge: any unit of length will do,
         # and one larger than the section keeps the matrix positive definite.
         p0 += np.log(8 * (np.abs(apart).max(axis=(-1, -2), keepdims=True) + b.max()))
-    return matrix, spread / np.sqrt(listed.order)[:, None], p0
+    return partial(listed.between, spread, spread), spread / np.sqrt(listed.order)[:, None], p0
 
 
-def _plane_image(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
-    """Images in the plane: H (B, N, N), and what they add to conj(g) and P₀."""
+def _plane_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Real]:
+    """Images in the plane: blocks of H, and what they add to conj(g) and P₀."""
     z, b = geometry.centre, geometry.cover
     apart: Complex = z[:, :, None] - np.conj(z[:, None, :])
     spread = listed.spread(-b[:, :, None] / apart)
-    facing = listed.facing(spread)
-    matrix = facing * np.conj(facing.swapaxes(-1, -2))
-    matrix *= _binomials(listed.order)
-    return matrix, -spread.conj() / np.sqrt(listed.order)[:, None], np.log(np.abs(apart))
+    block = partial(listed.between, spread, spread.conj())
+    return block, -spread.conj() / np.sqrt(listed.order)[:, None], np.log(np.abs(apart))
 
 
-def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, Real]:
-    """Images in the pipe: H (B, N, N), and what they add to conj(g) and P₀.
+def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Real]:
+    """Images in the pipe: blocks of H, and what they add to conj(g) and P₀.
 
     With c = R² − z_i conj(z_j), u = b_i conj(z_j) / c, v = b_j z_i / c and p = b_i b_j (R / c)²,
 
@@ -277,7 +301,7 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Complex, Complex, 
     if len(place) < top * n:
         matrix = matrix.take(place, axis=1).take(place, axis=2)
     g = -listed.spread(np.conj(toward)) / np.sqrt(listed.order)[:, None]
-    return matrix, g, np.log(np.abs(across) / radius)
+    return lambda rows, columns: matrix[:, rows, columns], g, np.log(np.abs(across) / radius)
 
 
 def _powers(base: Real | Complex, top: int) -> Any:
@@ -296,13 +320,9 @@ def _shifted_powers(base: Any, top: int) -> Any:
     return np.multiply(shifted, _triangle(top), out=np.empty(shifted.shape, dtype=base.dtype))
 
 
-def _binomials(order: Index) -> Real:
-    """(m + n − 1)! / ((m − 1)! (n − 1)! √(m n)) between the orders m, n of the multipoles."""
-    return _binomial_table(int(order.max()))[order[:, None] - 1, order - 1]
-
-
 @lru_cache(maxsize=8)
-def _binomial_table(top: int) -> Real:
+def _binomials(top: int) -> Real:
+    """(m + n − 1)! / ((m − 1)! (n − 1)! √(m n)) for m, n = 1..top."""
     k = np.arange(1, top + 1)
     logs = np.cumsum(np.concatenate([[0.0], np.log(np.arange(1.0, 2 * top))]))
     return np.asarray(
