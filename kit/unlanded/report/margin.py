@@ -113,8 +113,9 @@ def _standing_words(margin: Margin) -> Iterator[str]:
            f"{show(margin.expected, 'A')} is expected, and 95 % of the draws lie between "
            f"{show(low, 'A')} and {show(high, 'A')}.")
     yield _verdict_words(margin)
-    yield ("This is of a moment taken at random; the spread of the device itself is in it. With "
-           f"everything on it is {per_cent(margin.chance_all_on)}.")
+    if margin.chance_all_on > 0:
+        yield ("A chance is of a moment taken at random, and the device's own spread is in it. "
+               f"With everything on it is {per_cent(margin.chance_all_on)}.")
     if any(leak.fast for leak in margin.leaks):
         yield ("Drives leak at their switching frequency and its multiples, which is counted here "
                "as one band at the weight that the device's standard gives it, in full where it is "
@@ -131,7 +132,13 @@ def _verdict_words(margin: Margin) -> str:
         to, _ = margin.to(margin.recommended)
         words += (f"; to the recommended share, {show(margin.recommended, 'A')}, it is "
                   f"{show(to, 'A')} as expected")
-    return (f"{words}. The chance of a trip is {per_cent(margin.chance)} "
+    return f"{words}. {_chance_words(margin)}"
+
+
+def _chance_words(margin: Margin) -> str:
+    if margin.chance == 0:
+        return "No draw of it reaches the band in which the device may trip."
+    return (f"The chance of a trip is {per_cent(margin.chance)} "
             f"(± {per_cent(2 * margin.chance_error)} of calculation).")
 
 
@@ -256,7 +263,7 @@ def _trip_blocks(margin: Margin, trips: Sequence[MeasuredTrip]) -> Iterator[Bloc
         said = listed(list(dict.fromkeys(t.verdict for t in quiet)), "or")
         yield Paragraph(f"On every other pair no instrument adds more than "
                         f"{show(max(t.added for t in quiet), 'A')}, and it {said} trip the device: "
-                        f"{listed(list(pairs))}.")
+                        f"{'; '.join(pairs)}.")
     yield trip_time_figure(margin, trips)
 
 
