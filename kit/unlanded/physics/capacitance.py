@@ -122,7 +122,8 @@ def _truncated(geometry: Geometry, terms: Index, tolerance: float) -> tuple[Solv
     error, smallest = _error(rough, fine)
     # What covers that touch leave after m orders is about exp(−c √m) of the largest element; the
     # power would be 2, and a half more makes three in four meet the tolerance at the next trial.
-    growth = np.log(smallest * tolerance) / np.log(smallest * np.minimum(error, 0.5))
+    excess = np.clip(error, tolerance, 0.5)
+    growth = np.log(smallest * tolerance) / np.log(smallest * excess)
     return Solved(fine, system, conductor, order), error, np.clip(growth**2.5, 1.05, 2.5)
 
 
