@@ -29,6 +29,7 @@ _TAIL = 8.0  # degrees of freedom
 _EVEN = 0.1  # share of sizes drawn evenly, for what the nodes may have missed
 _SOFT = 4.0  # degrees of freedom of the misfits in the search: one that is far off hardly pulls
 _STEP = 1e-4
+_LEAST_GAIN = 1e-300
 _BELIEF = np.array([1.0, 0.1, 0.0])  # in the readings' curvature, of each part of the mixture
 _PARTS = np.array([0.6, 0.25, 0.15])  # and its share
 
@@ -162,13 +163,15 @@ class _Nodes:
     """Sizes (G,) in rising order, and the posterior of the scores there.
 
     Its mode (G, d), and for each part of the mixture a root of the covariance (G, P, d, d); the
-    logarithm of what Laplace's method makes of the integral (G,).
+    logarithm of what Laplace's method makes of the integral (G,), and of what it would make of
+    it if misfits were forgiven (G,): that one leads to a peak from far off.
     """
 
     size: Real
     score: Real
     root: Real
     height: Real
+    soft: Real
 
     @cached_property
     def inverse(self) -> Real:
@@ -188,7 +191,7 @@ class _Nodes:
 
     def with_more(self, other: _Nodes) -> _Nodes:
         both = [np.concatenate([getattr(self, n), getattr(other, n)])
-                for n in ("size", "score", "root", "height")]
+                for n in ("size", "score", "root", "height", "soft")]
         order = np.argsort(both[0])
         return _Nodes(*(b[order] for b in both))
 
@@ -200,19 +203,23 @@ def _closed_in(problem: Problem) -> _Nodes:
         return _laplace(problem, np.array([0.5]), np.zeros((1, d)), 8)
     size = (np.arange(20) + 0.5) / 20
     nodes = _laplace(problem, np.concatenate([[0.0], size, [1.0]]), np.zeros((22, d)), 5)
-    for _ in range(12):
-        gap = np.diff(nodes.size)
-        height = np.maximum(nodes.height[:-1], nodes.height[1:])
-        mass = gap * np.exp(height - nodes.height.max())
-        rough = np.abs(np.diff(nodes.height)) > 0.7
-        wanted = np.flatnonzero(rough & (mass > 0.02 * mass.sum()) & (gap > 1e-6))
+    for _ in range(16):
+        wanted = np.union1d(_coarse(nodes.size, nodes.height), _coarse(nodes.size, nodes.soft))
         if not len(wanted):
             break
-        wanted = wanted[np.argsort(mass[wanted])[-8:]]
         middle = (nodes.size[wanted] + nodes.size[wanted + 1]) / 2
         start = (nodes.score[wanted] + nodes.score[wanted + 1]) / 2
         nodes = nodes.with_more(_laplace(problem, middle, start, 2))
     return nodes
+
+
+def _coarse(size: Real, height: Real) -> NDArray[np.intp]:
+    """Cells that matter and over which the integrand changes too much to be drawn straight."""
+    gap = np.diff(size)
+    mass = gap * np.exp(np.maximum(height[:-1], height[1:]) - height.max())
+    rough = np.abs(np.diff(height)) > 0.7
+    wanted = np.flatnonzero(rough & (mass > 0.02 * mass.sum()) & (gap > 1e-6))
+    return np.asarray(wanted[np.argsort(mass[wanted])[-6:]])
 
 
 def _laplace(problem: Problem, size: Real, score: Real, steps: int) -> _Nodes:
@@ -228,9 +235,11 @@ def _laplace(problem: Problem, size: Real, score: Real, steps: int) -> _Nodes:
     parts = plain + _BELIEF[:, None, None] * (curve - plain)[:, None]
     root = np.linalg.cholesky(np.linalg.inv(parts))
     gain = problem.likelihood.gain(problem.predict(size, score))
-    height = (np.log(gain).sum(axis=0) - (score**2).sum(axis=1) / 2
-              + np.log(np.diagonal(root[:, 0], axis1=1, axis2=2)).sum(axis=1))
-    return _Nodes(size, score, root, height)
+    rest = (np.log(np.diagonal(root[:, 0], axis1=1, axis2=2)).sum(axis=1)
+            - (score**2).sum(axis=1) / 2)
+    height = rest + np.log(np.maximum(gain, _LEAST_GAIN)).sum(axis=0)
+    forgiven = rest - (_SOFT + 1) / 2 * np.log1p(misfit**2 / _SOFT).sum(axis=1)
+    return _Nodes(size, score, root, height, forgiven)
 
 
 def _linear(problem: Problem, size: Real, score: Real) -> tuple[Real, Real, Real]:

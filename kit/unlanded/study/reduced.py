@@ -107,9 +107,8 @@ class Reduced:
     @cached_property
     def free(self) -> tuple[str, ...]:
         """Conductors whose voltage is unknown, in the section's order."""
-        known = self.suspects if self.described else ()
         return tuple(n for n in self.run.section.names
-                     if (self.described and _free(self.run, n)) or n in known
+                     if (self.described and _free(self.run, n))
                      or (n in self.suspects and may_be_suspect(self.run, n)))
 
     @cached_property
