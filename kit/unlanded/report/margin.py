@@ -283,7 +283,9 @@ def _trip_tables(trips: Sequence[MeasuredTrip]) -> Iterator[Table]:
 def _trip_cell(trip: MeasuredTrip) -> str:
     if trip.verdict == "will" and math.isfinite(trip.longest):
         return f"will ({show(trip.longest, 's', 2)})"
-    return f"may ({per_cent(trip.chance)})" if trip.verdict == "may" else trip.verdict
+    if trip.verdict == "may":  # in which the instrument's own tolerance counts too
+        return f"may ({per_cent(min(trip.chance, 0.9999))})"
+    return trip.verdict
 
 
 def _cures(margin: Margin) -> Iterator[str]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from itertools import pairwise
 
 import numpy as np
@@ -96,7 +96,7 @@ def trip_time_figure(margin: Margin, trips: Sequence[MeasuredTrip]) -> Figure:
     if device.kind == "delayed":
         shortest = [device.shortest_time(i) for i in amperes]
         lines.append(Line(1e3 * amperes, _floats(shortest), "time for which it must not trip", 2))
-    x = log_axis("Residual current, RMS", "mA", 1e3 * least * 0.8, 1e3 * most)
+    x = _currents(1e3 * least * 0.8, 1e3 * most)
     y = log_axis("Time to trip", "s", 0.01, 10.0)
     band = 1e3 * device.band.low, 1e3 * max(device.band.high, 1.0001 * device.band.low)
     labels = [f"{cut(t.instrument.name, 26)}: {t.verdict}" for t in marked]
@@ -114,8 +114,16 @@ def trip_time_figure(margin: Margin, trips: Sequence[MeasuredTrip]) -> Figure:
         points=tuple(Points(_floats([1e3 * t.expected]), _floats([_height(t)]), style=i + 3,
                             texts=(label,))
                      for i, (t, label) in enumerate(zip(marked, labels, strict=True))),
-        notes=_notes(marked, labels, x, y),
+        notes=_notes(marked, labels, x, y, lambda at: device.longest_time(1e-3 * x.value(at))),
     )
+
+
+def _currents(low: float, high: float) -> Axis:
+    """A log axis in mA with ticks at 1, 2 and 5 of each decade."""
+    powers = range(math.floor(math.log10(low)), math.ceil(math.log10(high)))
+    ticks = tuple((m * 10.0**p, f"{m * 10.0**p:g}") for p in powers for m in (1, 2, 5)
+                  if low <= m * 10.0**p <= high)
+    return Axis("Residual current, RMS", "mA", low, high, "log", ticks)
 
 
 def _marked(trips: Sequence[MeasuredTrip], least: float) -> list[MeasuredTrip]:
@@ -147,13 +155,23 @@ def _within(trip: MeasuredTrip) -> str:
 
 
 def _notes(
-    marked: Sequence[MeasuredTrip], labels: Sequence[str], x: Axis, y: Axis
+    marked: Sequence[MeasuredTrip],
+    labels: Sequence[str],
+    x: Axis,
+    y: Axis,
+    longest: Callable[[float], float],
 ) -> tuple[Note, ...]:
+    """Words clear of the curve of `longest` times, which is a function of the place along x."""
     spots = [(x.fraction(1e3 * t.expected), y.fraction(_height(t))) for t in marked]
+
+    def curve(at: float) -> float:
+        time = longest(at)
+        return y.fraction(time) if math.isfinite(time) else -1.0
+
     return tuple(
         Note(x.value(f.x), y.value(f.height), text, "right" if f.leftward else "left",
              (x.value(f.x), y.value(f.y)))
-        for f, text in zip(flags(spots, labels), labels, strict=True))
+        for f, text in zip(flags(spots, labels, curve), labels, strict=True))
 
 
 def added_figure(leak: str, margins: Sequence[tuple[int, Margin]]) -> Figure:
