@@ -9,7 +9,7 @@ from example_causes import FAR, OMEGA, reduced, seen
 from unlanded.reference.instruments import INSTRUMENTS
 from unlanded.study.hypotheses import Variant, variants
 from unlanded.study.readings import Pair
-from unlanded.study.scene import Scene, groups, rms, suspects_in
+from unlanded.study.scene import Scene, average, groups, rms, suspects_in
 
 PLAIN = Variant("capacitive coupling")
 DIGITAL = INSTRUMENTS["digital-10M"]
@@ -65,6 +65,26 @@ def test_groups_hold_what_the_readings_cannot_tell_apart() -> None:
 
 def test_harmonics_add_as_squares() -> None:
     assert float(rms(np.array([[3.0], [4.0j]]))[0]) == pytest.approx(5.0, rel=1e-12, abs=0)
+
+
+@pytest.mark.parametrize("share", [0.1, -0.2])
+def test_an_averaging_instrument_counts_a_third_of_a_third_harmonic(share: float) -> None:
+    # cos t + k cos 3t with no further zero: its rectified average is (2/π)(1 − k/3).
+    got = average(np.array([[100.0], [100.0 * share]]), (1, 3))[0]
+    assert got == pytest.approx(100 * (1 - share / 3), rel=1e-4, abs=0)
+
+
+def test_a_moving_coil_meter_averages_and_a_digital_one_does_not() -> None:
+    from example_causes import run
+    from unlanded.study.supply import Supply
+
+    coil = INSTRUMENTS["moving-coil"]
+    scene = Scene(reduced(run(supply=Supply(230.0, 50.0, harmonics={3: 0.2}))), (PLAIN,), ())
+    zeros = np.zeros((1, len(scene.coordinates)))
+    readings = [seen(coil, "120 V", Pair("hot@far")), seen(DIGITAL, "230.0 V", Pair("hot@far"))]
+    averaged, squared = scene.volts(readings, np.array([0.5]), zeros)[:, 0]
+    assert averaged == pytest.approx(230 * (1 - 0.2 / 3), rel=1e-3, abs=0)
+    assert squared == pytest.approx(230 * np.sqrt(1.04), rel=1e-5, abs=0)
 
 
 def test_the_suspects_of_a_reading() -> None:

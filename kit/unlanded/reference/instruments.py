@@ -17,6 +17,7 @@ from ..physics.burden import Burden
 from .limits import BODY_CAPACITANCE, BODY_FRONT_RESISTANCE, BODY_SHUNT_RESISTANCE
 from .records import Source
 
+Responds = Literal["rms", "average"]
 Kind = Literal["digital", "analogue", "indicator", "proximity", "body"]
 
 _CLASS = Source("typical of the class of instrument", "common practice")
@@ -89,6 +90,7 @@ class Instrument:
     tolerance : of the burden, ± [1], 0.1 for 10 %; 0 to below 1
     source : of all of it
     note : what an engineer should bear in mind
+    responds : to the RMS value, or to the rectified average and scaled for a sine
     """
 
     key: str
@@ -99,6 +101,7 @@ class Instrument:
     tolerance: float
     source: Source
     note: str = ""
+    responds: Responds = "rms"
 
     def __post_init__(self) -> None:
         object.__setattr__(self, "ranges", tuple(self.ranges))
@@ -210,6 +213,7 @@ def custom_instrument(
     full_scale: float = 1000.0,
     threshold: float | None = None,
     tolerance: float = 0.0,
+    responds: Responds = "rms",
 ) -> Instrument:
     """An instrument of one range from its own data sheet; every quantity in SI.
 
@@ -220,7 +224,7 @@ def custom_instrument(
     capacitance : beside it, with the leads [F], at least 0
     inductance : in series with the resistance [H], at least 0
     percent, counts, resolution, full_scale : as in `Range`
-    threshold, tolerance : as in `Instrument`
+    threshold, tolerance, responds : as in `Instrument`
 
     Raises `Refused` naming the instrument, with everything that is wrong.
 
@@ -233,7 +237,7 @@ def custom_instrument(
     except Refused as refusal:
         raise refusal.at(f'instrument "{key}"') from None
     return Instrument(key, name, kind, ranges, threshold, tolerance,
-                      Source("described in the case", "seen"))
+                      Source("described in the case", "seen"), responds=responds)
 
 
 def moving_coil(
@@ -272,6 +276,7 @@ def moving_coil(
     return Instrument(
         key, name, "analogue", tuple(ranges), None, tolerance, _CLASS,
         "its resistance rises with the range: turn to a higher one and the reading changes",
+        "average",
     )
 
 

@@ -21,6 +21,7 @@ from .words import cut, listed
 FLOOR = 0.01  # volts: less is drawn as this
 SHOWN_SHARE = 1e-3  # of a cause, below which a picture leaves it out
 NEXT = 8  # measurements on one picture
+READ = 13  # style of what was read: a cross in the seventh colour, black
 LEAST_TOLD = -4.0  # powers of ten
 
 
@@ -103,7 +104,7 @@ def predicted_figure(found: Explanation, suspect: str, *, key: str) -> Figure:
         x=log_axis("Voltage, RMS", "V", FLOOR * 0.8, 1.5 * float(volts.max())),
         y=_rows([_short(k, r) for k, r in numbered]),
         caption="For each reading, the voltage that each cause predicts from all the other "
-        "readings: median, and the range that 90 % lies in. Hollow squares: what was read (for a "
+        "readings: median, and the range that 90 % lies in. Black crosses: what was read (for a "
         "lamp, its threshold).",
         alternative="A row for each reading with a range for each cause. " + _fit_words(
             numbered, drawn),
@@ -148,8 +149,8 @@ def _shown(numbered: Sequence[tuple[int, Observation]]) -> list[Points]:
     volts = [r.value if math.isfinite(r.value) else
              (r.low if math.isfinite(r.low) else r.high) for _, r in numbered]
     heights = np.array([row + 0.35 for row in range(len(numbered))])
-    return [Points(np.maximum(volts, FLOOR), heights, "read", 1,
-                   tuple(r.text for _, r in numbered), hollow=True)]
+    return [Points(np.maximum(volts, FLOOR), heights, "read", READ,
+                   tuple(r.text for _, r in numbered))]
 
 
 def next_figure(prospects: Sequence[Prospect]) -> Figure:

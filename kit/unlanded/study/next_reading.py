@@ -206,7 +206,7 @@ def met(solved: Solved, c: Candidate) -> tuple[Real, Real]:
         y = solved.admittance(r.burden, c.instrument) + 1 / c.resistor
         loaded = v / (1 + y * z)
         open_still = np.isnan(volts)
-        volts = np.where(open_still, rms(loaded), volts)
+        volts = np.where(open_still, solved.felt(loaded, c.instrument), volts)
         amperes = np.where(open_still, rms(loaded * y), amperes)
         over = (volts > r.full_scale) & open_still & (r is not c.instrument.ranges[-1])
         volts = np.where(over, np.nan, volts)

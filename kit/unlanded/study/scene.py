@@ -16,6 +16,7 @@ from .observation import Action, Observation
 from .readings import Pair
 from .reduced import Complex, Defect, Reduced, State, instruments_of
 
+_SAMPLES = 360  # of one period, for the rectified average
 MANY = 40  # readings that one explanation takes
 
 
@@ -86,10 +87,10 @@ class Scene:
         return self._defect(name, variant, size, scores).size
 
     def volts(self, readings: Sequence[Observation], size: Real, score: Real) -> Real:
-        """What is across the instrument of each reading (K, Q), RMS over the harmonics [V]."""
+        """What each reading's instrument responds to (K, Q) [V]."""
         solved = Solved(self, size, self.scores(score))
-        made = [rms(solved.loaded(r.pair, r.actions, solved.admittance(r.burden, r.instrument)
-                                  + 1 / r.resistor)) for r in readings]
+        made = [solved.felt(solved.loaded(r.pair, r.actions, solved.admittance(
+            r.burden, r.instrument) + 1 / r.resistor), r.instrument) for r in readings]
         return np.array(made).reshape(len(readings), len(size))
 
     def _suspects(self) -> Iterator[tuple[str, Variant]]:
@@ -129,6 +130,12 @@ class Solved:
         v, z = self.port(pair, actions)
         return np.asarray(v / (1 + admittance * z))
 
+    def felt(self, phasors: Complex, tool: Instrument) -> Real:
+        """What an instrument responds to (Q,), of phasors over the harmonics (H, Q)."""
+        if tool.responds == "average" and len(phasors) > 1:
+            return average(phasors, self._reduced.orders)
+        return rms(phasors)
+
     def admittance(self, burden: Burden, tool: Instrument) -> Complex:
         """Of an instrument (H, Q) [S]."""
         y = burden.admittance(self._reduced.omega / (2 * np.pi))
@@ -138,6 +145,16 @@ class Solved:
 def rms(phasors: Complex) -> Real:
     """Over harmonics (H, Q) to (Q,)."""
     return np.asarray(np.sqrt((np.abs(phasors) ** 2).sum(axis=0)))
+
+
+def average(phasors: Complex, orders: Sequence[int]) -> Real:
+    """Rectified average of (H, Q) to (Q,), scaled so that a sine reads its RMS value.
+
+    >>> bool(abs(average(np.array([[230.0], [0.0]]), (1, 3))[0] - 230) < 0.01)
+    True
+    """
+    turns = np.exp(2j * np.pi * np.outer(np.arange(_SAMPLES) / _SAMPLES, orders))
+    return np.asarray(np.abs((turns @ phasors).real).mean(axis=0) * np.pi / 2)
 
 
 def suspects_in(observation: Observation, suspects: Sequence[str]) -> frozenset[str]:
