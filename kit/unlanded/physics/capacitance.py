@@ -23,8 +23,9 @@ TOLERANCE = 5e-4
 FLOOR = 1e-6
 MOST_MULTIPOLES = 400  # of one conductor
 _CHUNK = 500_000  # matrix elements assembled at a time, to stay in the processor's cache
-# Cut at these shares of its orders the series lacks so much, and in full at most such a part of
-# it: twice the 99th centile over a thousand random sections, covers touching or not.
+# Cut at these shares of its orders the series lacks so much, and in full it lacks about such a
+# part of that at most: fitted to two thousand trials on random and usual sections, of which none
+# was accepted with an error above the tolerance.
 _CUTS = {0.75: 0.5, 0.9: 1.6}
 _ROUNDS = 8
 
@@ -124,7 +125,7 @@ def _truncated(geometry: Geometry, terms: Index, tolerance: float) -> tuple[Solv
     # power would be 2, and a half more makes three in four meet the tolerance at the next trial.
     excess = np.clip(error, tolerance, 0.5)
     growth = np.log(smallest * tolerance) / np.log(smallest * excess)
-    return Solved(fine, system, conductor, order), error, np.clip(growth**2.5, 1.05, 2.5)
+    return Solved(fine, system, conductor, order), error, np.clip(growth**2.5, 1.1, 2.5)
 
 
 def _too_close(name: str, tolerance: float) -> Refused:
