@@ -128,6 +128,10 @@ def test_a_drives_fast_current_adds_as_a_square():
     supply = Supply(230.0, 50.0, phases=3)
     found = residual_margin(RCD, [drive, Leak("kit", {1: 5e-3}, "L1")], supply)
     assert found.expected == pytest.approx(13e-3, rel=1e-12, abs=0)
+    # A type B must not trip below 1.0 × rated at 1 kHz (from memory): 12 mA count as 6 mA.
+    slow = Leak("drive", {1: 5e-3}, "L1", fast=12e-3, band=(1e3, 1e3))
+    weighted = residual_margin(Device(30e-3, waveform="B"), [slow], supply)
+    assert weighted.expected == pytest.approx(math.hypot(5e-3, 6e-3), rel=1e-12, abs=0)
 
 
 def test_most_pieces_is_the_last_that_fits():
@@ -149,6 +153,11 @@ def test_longest_run_by_hand():
     resistive = 4e-3 + 0j
     left = longest_run(run, 9e-3, others=resistive)
     assert math.hypot(4e-3, left * abs(run.residual) / 100) == pytest.approx(9e-3, rel=1e-6, abs=0)
+    per_metre = run.residual / 100
+    in_phase = longest_run(run, 9e-3, others=4e-3 * per_metre / abs(per_metre))
+    assert in_phase == pytest.approx(5e-3 / abs(per_metre), rel=1e-9, abs=0)
+    opposed = longest_run(run, 9e-3, others=-4e-3 * per_metre / abs(per_metre))
+    assert opposed == pytest.approx(13e-3 / abs(per_metre), rel=1e-9, abs=0)
     assert longest_run(run, 9e-3, others=10e-3) == 0.0
 
 
