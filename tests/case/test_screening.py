@@ -9,6 +9,7 @@ import pytest
 
 from unlanded.case.register import read_register
 from unlanded.case.screening import screen_register
+from unlanded.errors import Refused
 from unlanded.reference.devices import Device
 from unlanded.reference.equipment import equipment
 from unlanded.study.residual import residual_margin
@@ -79,3 +80,14 @@ def test_the_demo_register_is_regrouped_to_keep_every_margin():
     assert found.regrouping.worst_before < 0 < found.regrouping.worst
     assert found.regrouping.proved
     assert found.regrouping.device_of["RCD 2: kitchen"] == "RCD 2"  # pinned
+
+
+def test_an_unknown_board_is_refused_and_devices_alone_are_screened(tmp_path):
+    path = tmp_path / "register.csv"
+    path.write_text(TEXT, encoding="utf-8")
+    with pytest.raises(Refused, match="board: is not in this register; given X"):
+        screen_register(read_register(path), tmp_path, MAINS, regroup_board="X")
+    path.write_text("\n".join(TEXT.splitlines()[:4]) + "\n", encoding="utf-8")
+    alone = screen_register(read_register(path), tmp_path, MAINS)
+    assert alone.screened.worst.tolist() == [0, 0, 0]
+    assert alone.regrouping is None

@@ -2,6 +2,11 @@
 
 A row without a circuit is a device; the others are circuits, each behind a device of the register.
 Headings that carry a unit are written so: "length [m]". Rows are counted from 1, the heading's.
+
+A device's row has its rated current, kind and type, and in "line" the lines it can serve, all of
+them where it is empty. A circuit's row has its line, length and cable (such as "150 pF/m", or the
+name of a case file beside the register), and its equipment by class with pieces and use; a
+"leakage [mA]" that was measured stands for cable and equipment both.
 """
 
 from __future__ import annotations

@@ -12,6 +12,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from ..errors import Refused, nearest
 from ..reference.equipment import equipment
 from ..study.regrouping import Regrouping, regroup
 from ..study.screening import COLUMNS, Screened, ranks, screen
@@ -49,7 +50,10 @@ def screen_register(
     progress: Callable[[int], object] = lambda _: None,
     regroup_board: str | None = None,
 ) -> Screening:
-    """Screen every device; `folder` holds the case files that the register names as cables."""
+    """Screen every device; `folder` holds the case files that the register names as cables.
+
+    L1, L2 and L3 are 120° apart. `regroup_board` is refused where the register has no such board.
+    """
     cable, spread = _cables(register, folder, supply)
     loads = _loads(register)
     turns, line = _turns(register), register.circuits["line"].to_numpy()
@@ -142,5 +146,8 @@ def _regrouped(register: Register, most: Real, name: str | None) -> Regrouping |
         if not small:
             return None
         name = register.boards[0]
+    if name not in register.boards:
+        raise Refused("board", "is not in this register", given=name,
+                      hint=nearest(name, sorted(set(register.boards))))
     circuits, places = board(register, most, name)
     return regroup(circuits, places) if circuits and len(places) > 1 else None

@@ -159,8 +159,9 @@ def _assumptions(screening: Screening) -> Part:
         ", without harmonics; leakage above the supply's frequency is not in this screening.",
         "A cable leaks by its capacitance per metre and its length, all of it connected. Equipment "
         "leaks at an angle between resistive and capacitive that is drawn for each circuit.",
-        "A circuit whose line is not stated is on any of them. Balanced circuits leak nothing at "
-        "the supply's frequency.",
+        "L1, L2 and L3 are 120° apart. A circuit whose line is not stated is on any of them. "
+        "Balanced circuits leak nothing at the supply's frequency.",
+        "A leakage that was measured stands for the circuit's cable and equipment.",
         f"Each device is drawn {POINTS} times, the same way every time; a chance below 1 % is an "
         "order of magnitude.",
         *(f"Source: {s}." for s in sources),
