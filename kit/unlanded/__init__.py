@@ -59,6 +59,11 @@ _CONTENTS = {
     "longest_run": "study.residual",
     "measured_trips": "study.trip",
     "regroup": "study.regrouping",
+    # what readings mean
+    "observe": "study.observation",
+    "Reduced": "study.reduced",
+    "explain": "study.causes",
+    "next_readings": "study.next_reading",
     # case files and memos
     "load_case": "case.loading",
     "build_run": "case.build",

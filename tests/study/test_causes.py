@@ -144,7 +144,7 @@ def test_without_readings_the_odds_are_those_beforehand() -> None:
 def test_the_supply_is_itself_read() -> None:
     high = [seen("bench-1M", "241.50 V", Pair("hot@far")), seen("digital-10M", "129.9 V")]
     found = explain(reduced(), high)
-    supply = [h for h, _ in found.of_cause("spare", "capacitive coupling")][0]
+    supply = next(h for h, _ in found.of_cause("spare", "capacitive coupling"))
     column = supply.scene.coordinates.index("supply")
     mean = np.average(supply.draws.score[:, column], weights=supply.draws.weight)
     assert 230 * (1 + 0.03 * mean) == pytest.approx(241.5, rel=3e-3, abs=0)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+
 import numpy as np
 import pytest
 from scipy import integrate, stats
@@ -39,7 +41,7 @@ def test_all_displays_of_a_meter_together_have_chance_one() -> None:
 
 def test_the_reference_adds_up_to_one() -> None:
     edges = np.linspace(0, TOP, 500)
-    whole = sum(reference_chance(a, b, top=TOP) for a, b in zip(edges, edges[1:], strict=False))
+    whole = sum(reference_chance(a, b, top=TOP) for a, b in itertools.pairwise(edges))
     assert whole == pytest.approx(1.0, rel=1e-6, abs=0)
     assert reference_chance(300.0, np.inf, top=TOP) == 1e-6
 

@@ -106,7 +106,7 @@ def test_harmonics_are_solved_beside_the_fundamental() -> None:
 
 
 def test_what_is_fed_is_no_suspect() -> None:
-    with pytest.raises(Refused, match='"hot".*fed'):
+    with pytest.raises(Refused, match=r'"hot".*fed'):
         Reduced(run(), run(), run(), ("hot",))
     assert may_be_suspect(run({"spare": Bonded("earth")}), "spare")
     assert not may_be_suspect(run({"spare": Driven("L")}), "spare")

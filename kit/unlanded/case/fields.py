@@ -148,6 +148,7 @@ Share = Annotated[float, _number(0.0, 1.0)]
 SourceResistance = Annotated[float, _quantity("ohm", 0.0, 1e4)]
 SourceInductance = Annotated[float, _quantity("H", 0.0, 10.0)]
 LinearCapacitance = Annotated[float, _quantity("F/m", 0.0, 1e-7)]
+AddedResistance = Annotated[float, _quantity("ohm", 1.0, 1e9)]
 Cost = Annotated[float, _number(0.0, 1e6)]
 Lead = Annotated[float, _number(-90.0, 90.0)]  # degrees
 
