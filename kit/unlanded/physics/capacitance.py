@@ -119,7 +119,7 @@ def _truncated(geometry: Geometry, terms: Index, tolerance: float) -> tuple[Solv
     and how many times more multipoles would meet `tolerance` (B,)."""
     conductor, order, coarse = _listed(terms)
     system = assemble(geometry, conductor, order, coarse)
-    *rough, fine = (_grounded(p, geometry) for p in system.inverse_potential_coefficients())
+    *rough, fine = _grounded(system.inverse_potential_coefficients(), geometry)
     error, smallest = _error(rough, fine)
     # What covers that touch leave after m orders is about exp(−c √m) of the largest element; the
     # power would be 2, and a half more makes three in four meet the tolerance at the next trial.
@@ -189,10 +189,10 @@ def _listed(terms: Index) -> tuple[Index, Index, tuple[int, ...]]:
 
 
 def _grounded(inverse: Real, geometry: Geometry) -> Real:
-    """C from P⁻¹; without a wall, the part that stays when the total charge is zero."""
+    """C from P⁻¹ (cuts, B, n, n); with no wall, the part that stays at zero total charge."""
     if geometry.wall == "none":
-        total = inverse.sum(axis=-1)
-        share = total[:, :, None] * total[:, None, :] / total.sum(axis=-1)[:, None, None]
+        total = inverse.sum(axis=-1, keepdims=True)
+        share = total * total.swapaxes(-1, -2) / total.sum(axis=-2, keepdims=True)
         inverse = inverse - share
     scale = 2 * np.pi * EPSILON_0 * geometry.filler[:, None, None]
     return np.asarray(scale * (inverse + inverse.swapaxes(-1, -2)) / 2)
