@@ -2,8 +2,8 @@
 
     python tests/benchmarks/bench_causes.py [investigations, 2000 when not given] [part]
 
-Parts: calibration, wrong, next, speed; all when not given. Every investigation is drawn from its
-number, so that a run can be repeated.
+Parts: calibration, two (suspects), wrong, next, speed; all when not given. Each investigation is
+drawn from its number, so that a run can be repeated.
 """
 
 from __future__ import annotations
@@ -19,7 +19,7 @@ from pathlib import Path
 import numpy as np
 
 sys.path.insert(0, str(Path(__file__).parent))
-from synthetic import KIT, SUSPECT, Bench, Wrong, usual_kit
+from synthetic import KIT, SECOND, SUSPECT, Bench, Wrong, usual_kit
 
 from unlanded.study.causes import explain, quantiles
 from unlanded.study.finding import LEAKS, finding
@@ -69,6 +69,26 @@ def judged(number: int, wrong: Wrong) -> Verdict:
                    _covers(live, weight, site.coupling),
                    _covers(sizes, size_weight, site.size) if sized else None, found.error,
                    site.cause in LEAKS and site.size >= finding(found, SUSPECT).leak_limit)
+
+
+def judged_both(number: int) -> list[tuple[float, bool]]:
+    """Two suspects, two to four readings on each: share of the likeliest cause, and if right."""
+    site = two_suspects().site(number)
+    digital, low, extra = KIT[0], KIT[1], KIT[number % len(KIT)]
+    wanted = [Candidate(tool, Pair(f"{name}@far"))
+              for name in site.reduced.suspects for tool in (digital, low, extra)[: 2 + number % 2]]
+    found = explain(site.reduced, site.readings(wanted), stable=0.05)
+    out = []
+    for name, variant in site.variants.items():
+        odds = found.odds(name)
+        best = found.likeliest(name)
+        out.append((odds[best], best == variant.cause))
+    return out
+
+
+@cache
+def two_suspects() -> Bench:
+    return Bench(suspects=(SUSPECT, SECOND))
 
 
 def _key(wrong: Wrong) -> Wrong | None:
@@ -148,6 +168,13 @@ def report_calibration(verdicts: Iterable[Verdict], name: str) -> None:
                   f"{(best[mine] == k).mean():.0%}, mean share {shares[mine, k].mean():.2f}")
 
 
+def report_both(pairs: list[list[tuple[float, bool]]]) -> None:
+    stated, right = (np.array(x) for x in zip(*(p for pair in pairs for p in pair), strict=True))
+    print(f"\nTwo suspects together: {len(pairs)} investigations")
+    print(f"  likeliest cause right {right.mean():.1%}, stated on average {stated.mean():.1%}; "
+          f"expected calibration error {_ece(stated, right):.4f}")
+
+
 def _ece(stated: np.ndarray, right: np.ndarray) -> float:
     bins = np.minimum((stated * 10).astype(int), 9)
     return float(sum(abs(stated[bins == b].mean() - right[bins == b].mean()) * (bins == b).mean()
@@ -190,6 +217,8 @@ def main() -> None:
     for name, wrong in WRONGS.items():
         if part in ("calibration" if wrong == Wrong() else "wrong", "all"):
             report_calibration(spread(partial(judged, wrong=wrong), count), name)
+    if part in ("two", "all"):
+        report_both(spread(judged_both, count // 5))
     if part in ("next", "all"):
         report_next(spread(readings_needed, count))
 

@@ -16,7 +16,7 @@ from unlanded.physics.layouts import Core
 from unlanded.physics.section import Section
 from unlanded.reference.instruments import INSTRUMENTS, Instrument
 from unlanded.study.ends import Bonded, Driven
-from unlanded.study.hypotheses import CAUSES, SHARES, Cause, variants
+from unlanded.study.hypotheses import CAUSES, SHARES, Variant, variants
 from unlanded.study.next_reading import Candidate, met
 from unlanded.study.observation import Observation, observe
 from unlanded.study.readings import Pair
@@ -27,7 +27,7 @@ from unlanded.study.supply import Supply
 
 KIT = tuple(INSTRUMENTS[k] for k in ("digital-10M", "low-impedance", "moving-coil", "coil-tester",
                                      "two-pole", "proximity"))
-SUSPECT = "spare"
+SUSPECT, SECOND = "spare", "other"
 
 
 @dataclass(frozen=True)
@@ -61,15 +61,18 @@ def sections() -> list[tuple[tuple[str, ...], list[Section]]]:
 
 
 class Bench:
-    """Draws investigations by their number; the same number gives the same one."""
+    """Draws investigations by their number; the same number gives the same one.
 
-    def __init__(self, wrong: Wrong | None = None) -> None:
-        self.wrong = wrong or Wrong()
+    With more than one suspect, of the cable that has them all.
+    """
+
+    def __init__(self, wrong: Wrong | None = None, suspects: tuple[str, ...] = (SUSPECT,)) -> None:
+        self.wrong, self.suspects = wrong or Wrong(), suspects
         near = {"line": Driven("L"), "neutral": Bonded("N"), "earthed": Bonded("earth")}
         supply = Supply(230.0, 50.0)
         self._runs = [[Run(s, 1.0, supply, {n: near[n] for n in names if n in near}, {},
                            (7e-3,) * len(names)) for s in cables]
-                      for names, cables in sections()]
+                      for names, cables in sections() if set(suspects) <= set(names)]
         self._matrices = [[r.matrix for r in runs] for runs in self._runs]
 
     def site(self, number: int) -> Site:
@@ -81,8 +84,8 @@ class Bench:
                 for r, c in zip(self._runs[which], self._matrices[which], strict=True)]
         factor = self.wrong.capacitance
         truth = Reduced(*(replace(r, capacitance=c * factor) for r, c in
-                          zip(runs, self._matrices[which], strict=True)), (SUSPECT,))
-        return Site(Reduced(*runs, (SUSPECT,)), truth, rng, self.wrong)
+                          zip(runs, self._matrices[which], strict=True)), self.suspects)
+        return Site(Reduced(*runs, self.suspects), truth, rng, self.wrong)
 
 
 class Site:
@@ -91,16 +94,20 @@ class Site:
     def __init__(self, reduced: Reduced, truth: Reduced, rng: np.random.Generator, wrong: Wrong
                  ) -> None:
         self.reduced, self._rng, self._wrong = reduced, rng, wrong
-        self.cause: Cause = CAUSES[rng.choice(len(CAUSES), p=[SHARES[c].likely for c in CAUSES])]
-        own = [v for v in variants(("L",), ("L",)) if v.cause == self.cause]
-        variant = own[rng.choice(len(own), p=[v.share for v in own])]
-        scene = Scene(truth, (variant,), KIT)
+        self.variants = {name: self._variant() for name in truth.suspects}
+        self.cause = self.variants[SUSPECT].cause
+        scene = Scene(truth, tuple(self.variants.values()), KIT)
         score = rng.standard_normal((1, len(scene.coordinates)))
         size = rng.random(1)
         self.scores = scene.scores(score)
         self.size = float(scene.size(SUSPECT, size, self.scores)[0])
         self.coupling = float(truth.capacitances(self.scores, SUSPECT)[0][0])
         self._solved = Solved(scene, size, self.scores)
+
+    def _variant(self) -> Variant:
+        cause = CAUSES[self._rng.choice(len(CAUSES), p=[SHARES[c].likely for c in CAUSES])]
+        own = [v for v in variants(("L",), ("L",)) if v.cause == cause]
+        return own[self._rng.choice(len(own), p=[v.share for v in own])]
 
     def readings(self, candidates: list[Candidate]) -> list[Observation]:
         """What is shown, one after the other."""
@@ -110,7 +117,8 @@ class Site:
     def reading(self, c: Candidate, *, spoilt: bool = False) -> Observation:
         """What one instrument shows."""
         nothing = 0.30 if c.instrument.kind == "proximity" else 0.02
-        about_it = SUSPECT in c.pair.a and self.cause == "none of these"
+        about_it = any(name in (c.pair.a + c.pair.b) and v.cause == "none of these"
+                       for name, v in self.variants.items())
         if spoilt or about_it or self._rng.random() < nothing:
             volts, error = self._anything(), 0.0
         else:
