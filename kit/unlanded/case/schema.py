@@ -12,12 +12,14 @@ from typing import Annotated, Literal, Self
 
 from pydantic import BeforeValidator, Field, field_validator, model_validator
 
-from ..errors import Mistake, Refused
-from ..reference.instruments import INSTRUMENTS, Instrument, Kind, custom_instrument
+from ..errors import Mistake, Refused, nearest
+from ..reference.instruments import INSTRUMENTS, Instrument, Kind, Responds, custom_instrument
 from .behind import DeviceTable, LogTable, Standing
 from .cable import AnyCable, InConduit
+from .causes import Actions, CausesTable
 from .fields import (
     SHOWN_WORDS,
+    AddedResistance,
     Capacitance,
     Counts,
     Frequency,
@@ -40,6 +42,8 @@ from .fields import (
     Voltage,
     entries,
 )
+from .inputs import LoadedTable, OperationTable, SizingTable, SpreadTable
+from .memo import MemoTable
 from .surround import AnySurround
 from .terminations import Ends
 
@@ -85,6 +89,7 @@ class OwnInstrument(Table):
     full_scale: Voltage = 1000.0
     threshold: Voltage | None = None
     tolerance: Share = 0.0
+    responds: Responds = "rms"
 
     @field_validator("key")
     @classmethod
@@ -140,6 +145,8 @@ class Reading(Table):
     a: Point = Field(alias="from", examples=["black@far"])
     b: Point = Field(alias="to", examples=["earth"])
     shows: Shown = Field(examples=["37.2 V"])
+    after: Actions = Field((), examples=[["neighbours off"]])
+    resistor: AddedResistance = Field(math.inf, examples=["100 kohm"])
     note: Line = ""
 
     @model_validator(mode="after")
@@ -173,6 +180,18 @@ class CaseFile(Table):
     log: LogTable | None = None
     own_instruments: Annotated[tuple[OwnInstrument, ...], BeforeValidator(entries)] = ()
     readings: Annotated[tuple[Reading, ...], BeforeValidator(entries)] = ()
+    causes: CausesTable = CausesTable.model_construct()
+    spread: SpreadTable = SpreadTable.model_construct()
+    operation: Annotated[tuple[OperationTable, ...], BeforeValidator(entries)] = ()
+    loaded: Annotated[tuple[LoadedTable, ...], BeforeValidator(entries)] = ()
+    sizing: SizingTable | None = None
+    memo: MemoTable = MemoTable.model_construct()
+
+    @model_validator(mode="after")
+    def _spread_fits(self) -> Self:
+        if found := tuple(self.spread.mistakes(self.run)):
+            raise Refused.all_of(found)
+        return self
 
     @model_validator(mode="after")
     def _behind_a_device(self) -> Self:
@@ -182,6 +201,17 @@ class CaseFile(Table):
         names = [entry.name for entry in self.standing]
         found = [Mistake(f"standing[{count + 1}].name", "is used twice", name)
                  for count, name in enumerate(names) if name in names[:count]]
+        if found:
+            raise Refused.all_of(found)
+        return self
+
+    @model_validator(mode="after")
+    def _adds_known_leaks(self) -> Self:
+        names = [entry.name for entry in self.standing]
+        found = [Mistake(f"memo.added[{count + 1}].leak", "stands behind no device here", leak,
+                         nearest(leak, names) if names else "")
+                 for count, entry in enumerate(self.memo.added)
+                 if (leak := entry.leak) is not None and leak not in names]
         if found:
             raise Refused.all_of(found)
         return self

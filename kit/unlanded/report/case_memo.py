@@ -12,15 +12,22 @@ from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
+from ..case.memo import Chapter
+from .added import added_part
 from .assumptions import assumptions_part
+from .causes import causes_finding, causes_part, causes_results
 from .circuit import capacitance_table, circuit_finding, circuit_part, run_results
 from .expected import annex_part, expected_finding, expected_part, sheet_results
 from .folder import Contents
 from .investigation import Investigation, investigate
 from .margin import margin_finding, margin_part, margin_results
 from .memo import Block, Caution, Memo, Paragraph, Part, Verbatim
+from .operation import operation_finding, operation_part, operation_results
 from .sheet_table import sheet_table
+from .sizing import sizing_part, sizing_results
 from .sources import sources_part
+from .spread import spread_finding, spread_part, spread_results
+from .touch import touch_finding, touch_part, touch_results
 
 __all__ = ["FINDINGS", "PARTS", "RESULTS", "Investigation", "case_contents", "investigate"]
 
@@ -63,7 +70,11 @@ def case_part(investigation: Investigation) -> Part:
 FINDINGS: tuple[Callable[[Investigation], Sequence[Block]], ...] = (
     circuit_finding,
     expected_finding,
+    causes_finding,
     margin_finding,
+    operation_finding,
+    touch_finding,
+    spread_finding,
 )
 """What the summary says of each subject; nothing where the case does not ask."""
 
@@ -72,7 +83,13 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
     circuit_part,
     caution_part,
     expected_part,
+    causes_part,
     margin_part,
+    operation_part,
+    touch_part,
+    sizing_part,
+    spread_part,
+    added_part,
     assumptions_part,
     sources_part,
     annex_part,
@@ -80,11 +97,24 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
 )
 """The parts of the memo, in its order."""
 
+LEFT_OUT: Mapping[Chapter, Callable[[Investigation], Part | None]] = {
+    "expected": expected_part,
+    "causes": causes_part,
+    "margin": margin_part,
+    "annex": annex_part,
+}
+"""The parts that a case may leave out. The summary still says what was found of each."""
+
 RESULTS: Mapping[str, Callable[[Investigation], Any]] = {
     "case": lambda i: {"title": i.case.content.title, "fingerprint": i.case.fingerprint},
     "run": run_results,
     "sheet": sheet_results,
+    "causes": causes_results,
     "margin": margin_results,
+    "operation": operation_results,
+    "touch": touch_results,
+    "sizing": sizing_results,
+    "spread": spread_results,
 }
 """What results.json holds, by its key; None where the case does not ask."""
 
@@ -105,18 +135,20 @@ def case_contents(
     date : that the memo bears; the same case and date give the same files
     template : a firm's own .docx
     paper : "a4" or "us-letter"; that of the case's units when None
-    prepared_by, checked_by : names for the title block
+    prepared_by, checked_by : names for the title block; those of the case when empty
     """
-    case = investigation.case
+    case, chosen = investigation.case, investigation.case.content.memo
+    left_out = [LEFT_OUT[chapter] for chapter in chosen.leave_out if chapter in LEFT_OUT]
     memo = Memo(
         title=case.content.title,
         site=case.content.site,
         case_file=case.name,
         fingerprint=case.fingerprint,
         date=date,
-        parts=tuple(p for make in PARTS if (p := make(investigation)) is not None),
-        prepared_by=prepared_by,
-        checked_by=checked_by,
+        parts=tuple(p for make in PARTS
+                    if make not in left_out and (p := make(investigation)) is not None),
+        prepared_by=prepared_by or chosen.prepared_by,
+        checked_by=checked_by or chosen.checked_by,
         language="en-US" if investigation.customary else "en-GB",
     )
     results = {key: made for key, make in RESULTS.items()

@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 
 from ..reference.instruments import Instrument
+from ..study.banded import length_band, loading_band
 from ..study.ends import Open, Through
 from ..study.readings import ReadingSheet, loading_curve, ports_along, voltages_across
 from ..units import FOOT, show
@@ -23,14 +24,15 @@ from .words import point_words, tool_words
 INSTRUMENTS = 6  # columns of readings that a page holds
 LINES = 16  # of a table in the text; longer ones keep the pairs with earth, the annex the rest
 ANNEX = 40  # of an annex; longer ones are only in sheet.csv
+BANDED = 13  # lengths of the shaded band
 UNFED = 8  # of the summary's table
 CHARTED = 10  # lines on the chart
 NEGLIGIBLE = 1e-6  # amperes: less is said to be less
 
 _HOW_TO_READ = (
-    "Each reading is as the instrument would round it; in brackets the lowest and the highest that "
-    "the limits of the inputs, the tolerance of the instrument's own impedance and its accuracy "
-    "allow, where they differ from it. Pairs that every instrument reads alike, to within 2 % or "
+    "Each reading is as the instrument would round it; in brackets the range it may lie in over "
+    "what is not known of the inputs, the tolerance of the instrument's own impedance and its "
+    "accuracy, where the ends differ from it. Pairs that every instrument reads alike, to within 2 % or "
     "its accuracy, share a line; those that an instrument pulls down come first. “OL” is over "
     "range; “not lit” says only that the voltage is below the indicator's threshold."
 )
@@ -263,9 +265,9 @@ def _amperes(value: float) -> str:
 
 def _loading(investigation: Investigation, line: SheetLine) -> Figure:
     pair, ohms = line.first.pair, np.geomspace(1e3, 1e9, 121)
-    curves = [loading_curve(run, pair, ohms) for run in investigation.runs]
-    return loading_figure(pair, ohms, curves[0], sheet_marks(investigation.sheet, pair),
-                          (np.min(curves, axis=0), np.max(curves, axis=0)))
+    return loading_figure(pair, ohms, loading_curve(investigation.run, pair, ohms),
+                          sheet_marks(investigation.sheet, pair),
+                          loading_band(investigation.uncertain, pair, ohms))
 
 
 def _length(investigation: Investigation, line: SheetLine) -> Figure:
@@ -276,5 +278,8 @@ def _length(investigation: Investigation, line: SheetLine) -> Figure:
     ports = ports_along(run, pair, lengths)
     curves = {t.name: voltages_across(t, ports, frequency=run.frequency)
               for t in _meters(investigation)[:4]}
+    few = np.linspace(lengths[0], lengths[-1], BANDED)
+    low, high = length_band(investigation.uncertain, pair, _meters(investigation)[0], few)
     return length_figure(pair, lengths, curves, length=run.length,
+                         band=(np.interp(lengths, few, low), np.interp(lengths, few, high)),
                          customary=investigation.customary)

@@ -7,9 +7,12 @@ from functools import cached_property
 
 from ..case.build import build_run, case_instruments
 from ..case.loading import Case
+from ..case.uncertainty import uncertain_run
 from ..reference.instruments import Instrument
+from ..study.banded import SpreadSheet, spread_sheet
 from ..study.readings import ReadingSheet, reading_sheet
 from ..study.run import Run
+from ..study.uncertain import UncertainRun
 from .sheet_lines import SheetLine, sheet_lines
 
 
@@ -22,8 +25,10 @@ class Investigation:
     case : as it was read
     run : with the covers' permittivity as it is most likely
     low, high : the same run with the permittivity at the ends of its range
-    sheet : every instrument on every pair, with bands from `low` and `high`
+    sheet : every instrument on every pair, its bands over all that is not known
     instruments : of the sheet, in its order
+    uncertain : the run with what is not known of it
+    spread : what the bands were made from
     """
 
     case: Case
@@ -32,6 +37,8 @@ class Investigation:
     high: Run
     sheet: ReadingSheet
     instruments: tuple[Instrument, ...]
+    uncertain: UncertainRun
+    spread: SpreadSheet
 
     @property
     def customary(self) -> bool:
@@ -53,5 +60,7 @@ def investigate(case: Case) -> Investigation:
     """Solve the case's run, also at the ends of its inputs' ranges; raises `Refused`."""
     run, low, high = (build_run(case, limit) for limit in ("likely", "low", "high"))
     instruments = case_instruments(case)
-    sheet = reading_sheet(run, instruments, low=low, high=high)
-    return Investigation(case, run, low, high, sheet, instruments)
+    uncertain = uncertain_run(case, run)
+    spread = spread_sheet(reading_sheet(run, instruments), uncertain,
+                          coverage=case.content.spread.coverage)
+    return Investigation(case, run, low, high, spread.sheet, instruments, uncertain, spread)

@@ -10,12 +10,18 @@ from .cores import core_sources
 from .investigation import Investigation
 from .margin import margin_sources
 from .memo import Bullets, Paragraph, Part
+from .operation import operation_sources
+from .sizing import sizing_sources
+from .touch import touch_sources
 from .words import listed
 
 METHODS = (
     ("capacitances, by multipoles round each covered conductor",
      Source("Clements, Paul and Adams, IEEE Transactions on Electromagnetic Compatibility",
             "from memory", year=1975)),
+    ("ranges, by propagation of distributions", Source("JCGM 101", "from memory", year=2008)),
+    ("shares of the variance", Source("Saltelli and others, Computer Physics Communications",
+                                      "from memory", "181, 259", 2010)),
     ("return by earth, first term of the series", Source("Carson", "from memory", year=1926)),
 )
 
@@ -40,6 +46,9 @@ def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
         yield tool.name, tool.source
     yield from margin_sources(investigation)
     yield from causes_sources(investigation)
+    yield from operation_sources(investigation)
+    yield from sizing_sources(investigation)
+    yield from touch_sources(investigation)
     yield from METHODS
 
 

@@ -58,13 +58,14 @@ def spread_sheet(
     *,
     coverage: float = COVERAGE,
     stable: float = STABLE,
-    batch: int = 256,
-    most: int = 8192,
+    batch: int = 128,
+    most: int = 2048,
     seed: int = 1,
 ) -> SpreadSheet:
     """The sheet with each reading's coverage interval; arguments as for `propagate`."""
     tools = sheet.instruments
     inputs = (*uncertain.inputs, *(i for tool in tools for i in _tool_inputs(tool)))
+    inputs = inputs or (Input("nothing", uniform(0.0, 1.0)),)
     model = _Shows(uncertain, tools, sheet.rows)
     spread = propagate(model, inputs, coverage=coverage, stable=stable, batch=batch, most=most,
                        seed=seed)

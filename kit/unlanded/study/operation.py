@@ -145,9 +145,10 @@ def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Op
     chances = (float(np.mean(drawn <= off)), float(np.mean((drawn > off) & (drawn < on))),
                float(np.mean(drawn >= on)))
     longest, covered = _longest(uncertain, watched)
-    return Operation(watched, level, float(low[0]), float(high[0]), level * _admittance(run, watched),
-                     watched.state(level), (off - level) / off, chances, longest, covered,
-                     tuple(_ranked(_cures(run, watched))))
+    return Operation(
+        watched, level, float(low[0]), float(high[0]), level * _admittance(run, watched),
+        watched.state(level), (off - level) / off, chances, longest, covered,
+        tuple(_ranked(_cures(run, watched))))
 
 
 def level_on(batch: RunBatch, watched: Watched, admittance: ArrayLike = 0.0) -> Real:
@@ -248,8 +249,8 @@ def _capacitor(run: Run, watched: Watched, port: Ports) -> Iterator[Cure]:
     amperes = 2 * math.pi * run.frequency * farads * run.supply.voltage
     yield _cure(f"capacitor across the load, at least {show(farads, 'F')}",
                 float(left(np.array([farads]))[0]), watched,
-                note=f"draws {show(amperes, 'A')} without heat; rated for across-the-line use, with "
-                     "a resistor in series against inrush, and checked against resonance")
+                note=f"draws {show(amperes, 'A')} without heat; rated for across-the-line use, "
+                     "with a resistor in series against inrush, and checked against resonance")
 
 
 def _spares(run: Run, watched: Watched) -> Iterator[Cure]:

@@ -24,7 +24,7 @@ Model: TypeAlias = Callable[[Real], Real]
 Interval = Literal["symmetric", "shortest"]
 
 COVERAGE = 0.95
-STABLE = 0.02  # of an interval's width
+STABLE = 0.05  # of an interval's width
 LEAST_BATCHES = 4
 _EDGE = 1e-6  # of each tail: no draws beyond, for a distribution without limits has none
 

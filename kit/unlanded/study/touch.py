@@ -90,7 +90,7 @@ class Touch:
 
     @property
     def dangerous(self) -> bool:
-        """Whether a limit is passed over which people were hurt: letting go, pain, stored energy."""
+        """Whether it is fed, or passes a limit of letting go, of charge, or of stored energy."""
         return (self.fed or self.current >= LET_GO_CURRENT.likely
                 or self.charge >= STORED_CHARGE.likely or self.energy >= STORED_ENERGY.likely)
 

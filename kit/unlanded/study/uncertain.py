@@ -18,7 +18,7 @@ from numpy.typing import ArrayLike, NDArray
 from ..physics.capacitance import capacitance_matrices
 from ..physics.multipole import Geometry
 from ..physics.packing import packed_positions
-from ..physics.section import Pipe, Section
+from ..physics.section import Section
 from .batch import RunBatch
 from .run import Run
 from .spread import Distribution, Input, limits, quasi_random, uniform
@@ -85,7 +85,8 @@ class _Surface:
     ) -> _Surface:
         ends = np.array(box)
         x = chebyshev.chebpts1(nodes)
-        grid = np.stack(np.meshgrid(*[x] * len(ends), indexing="ij"), axis=-1).reshape(-1, len(ends))
+        grid = np.stack(np.meshgrid(*[x] * len(ends), indexing="ij"), axis=-1)
+        grid = grid.reshape(-1, len(ends))
         found = matrices(ends[:, 0] + (grid + 1) / 2 * (ends[:, 1] - ends[:, 0]))
         return cls(ends, np.tensordot(np.linalg.inv(_basis(grid, nodes)), found, axes=1), nodes)
 
@@ -114,7 +115,7 @@ def _basis(x: Real, nodes: int) -> Real:
 
 def covers_spread(
     section: Section, permittivity: Mapping[str, tuple[Distribution, Sequence[str]]], *,
-    arrangements: int = 0, seed: int = 1
+    conduit_radius: float | None = None, seed: int = 1
 ) -> SectionSpread:
     """A section whose covers' permittivity varies, and, for singles in a conduit, how they lie.
 
@@ -122,12 +123,13 @@ def covers_spread(
     ----------
     permittivity : by what a reader calls it, its distribution and the conductors that share it:
         the same material has the same permittivity in all of them
-    arrangements : random packings to take from; 0 keeps the conductors where they are
+    conduit_radius : inside, about the origin [m]; None keeps the conductors where they are
+    seed : of the random packings
     """
     inputs = [Input(name, distribution) for name, (distribution, _) in permittivity.items()]
     groups = [[section.index(n) for n in names] for _, names in permittivity.values()]
     base = Geometry.of([section])
-    places = _packings(section, arrangements, seed) if arrangements else None
+    places = None if conduit_radius is None else _packings(section, conduit_radius, seed)
     if places is not None:
         inputs.append(Input("how the singles lie", uniform(0.0, 1.0)))
 
@@ -145,10 +147,9 @@ def covers_spread(
     return SectionSpread(tuple(inputs), geometry, smooth=places is None)
 
 
-def _packings(section: Section, count: int, seed: int) -> NDArray[np.complex128]:
-    assert isinstance(section.surround, Pipe)
+def _packings(section: Section, radius: float, seed: int) -> NDArray[np.complex128]:
     outer = np.array([c.outer for c in section.conductors])
-    place = packed_positions(outer, pipe_radius=section.surround.radius, count=count, seed=seed)
+    place = packed_positions(outer, pipe_radius=radius, count=ARRANGEMENTS, seed=seed)
     return np.asarray(place[..., 0] + 1j * place[..., 1])
 
 

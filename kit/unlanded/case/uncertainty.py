@@ -1,0 +1,123 @@
+"""From a case to its run with what is not known of it, and to what else it asks for."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..physics.section import Plane, Section
+from ..study.run import Run
+from ..study.spread import Distribution, Input, triangular, within
+from ..study.uncertain import (
+    SectionSpread,
+    UncertainRun,
+    covers_spread,
+    sections_spread,
+)
+from .inputs import SpreadTable
+from .loading import Case
+from .runs import run_of
+from .schema import CaseFile, RunTable
+from .sections import section_of
+
+Group = tuple[Distribution, tuple[str, ...]]
+
+
+def uncertain_run(case: Case, run: Run | None = None) -> UncertainRun:
+    """The run of the case with its spread: `[spread]`, and the ranges of the materials.
+
+    `run` is that of the case, where it is there already.
+    """
+    content = case.content
+    run = run_of(content) if run is None else run
+    table = content.spread
+    return UncertainRun(
+        run,
+        _section(content, run.section),
+        None if table.length is None else table.length.over(run.length),
+        _share(table, run.supply.voltage),
+        {label: within(1.0, tolerance) for label, tolerance in table.loads.items()},
+    )
+
+
+def _share(table: SpreadTable, volts: float) -> Distribution | None:
+    return None if table.voltage is None else _Scaled(table.voltage.over(volts), volts)
+
+
+class _Scaled:
+    """A distribution as multiples of a value."""
+
+    def __init__(self, of: Distribution, value: float) -> None:
+        self._of, self._value = of, value
+
+    def ppf(self, q: NDArray[np.float64]) -> NDArray[np.float64]:
+        """Value below which the share q lies, over the value."""
+        return np.asarray(self._of.ppf(q) / self._value)
+
+
+def _section(content: CaseFile, section: Section) -> SectionSpread | None:
+    groups = dict(_covers(content, section))
+    cable = content.run.cable
+    if content.spread.geometry:
+        return _built(content, groups)
+    # Over a plane the singles would lie at another height for each packing.
+    radius = (cable.bore / 2 if cable.layout == "in conduit" and content.spread.arrangement
+              and not isinstance(section.surround, Plane) else None)
+    return (covers_spread(section, groups, conduit_radius=radius) if groups or radius is not None
+            else None)
+
+
+def _covers(content: CaseFile, section: Section) -> Iterator[tuple[str, Group]]:
+    """Conductors whose covers have one permittivity among them, and its distribution."""
+    covered = [c for c in section.conductors if c.outer > c.radius]
+    if (given := content.spread.permittivity) is not None and covered:
+        likely = covered[0].cover_permittivity
+        yield "permittivity of the covers", (given.over(likely), tuple(c.name for c in covered))
+        return
+    low, high = (section_of(content.run, limit).conductors for limit in ("low", "high"))
+    limits: dict[tuple[float, float, float], list[str]] = {}
+    for conductor, least, most in zip(section.conductors, low, high, strict=True):
+        key = (least.cover_permittivity, conductor.cover_permittivity, most.cover_permittivity)
+        if key[0] < key[2]:
+            limits.setdefault(key, []).append(conductor.name)
+    for key, names in limits.items():
+        whose = "the covers" if len(limits) == 1 else f"the covers of {', '.join(names)}"
+        yield f"permittivity of {whose}", (triangular(*key), tuple(names))
+
+
+def _built(content: CaseFile, groups: dict[str, Group]) -> SectionSpread:
+    """A section built anew for each draw of its dimensions and its covers' permittivity."""
+    dimensions = content.spread.geometry
+    inputs = [Input(name, distribution) for name, (distribution, _) in groups.items()]
+    inputs += [Input(_WORDS[key], spread.over(_value(content.run, key)))
+               for key, spread in dimensions.items()]
+
+    def section(values: NDArray[np.float64]) -> Section:
+        covers, sizes = values[: len(groups)], values[len(groups):]
+        made = section_of(_changed(content.run, dict(zip(dimensions, sizes, strict=True))))
+        of = {name: float(value) for value, (_, names) in zip(covers, groups.values(), strict=True)
+              for name in names}
+        return replace(made, conductors=tuple(
+            replace(c, cover_permittivity=of.get(c.name, c.cover_permittivity))
+            for c in made.conductors))
+
+    return sections_spread(inputs, section)
+
+
+_WORDS = {"thickness": "thickness of the covers", "spacing": "spacing", "gap": "gap to the earthed "
+          "surround"}
+
+
+def _value(run: RunTable, key: str) -> float:
+    return float(getattr(run.surround if key == "gap" else run.cable, key))
+
+
+def _changed(run: RunTable, sizes: dict[str, float]) -> RunTable:
+    own = {k: float(v) for k, v in sizes.items() if k != "gap"}
+    update: dict[str, object] = {"cable": run.cable.model_copy(update=own)}
+    if "gap" in sizes and run.surround is not None:
+        update["surround"] = run.surround.model_copy(update={"gap": float(sizes["gap"])})
+    return run.model_copy(update=update)

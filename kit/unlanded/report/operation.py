@@ -1,0 +1,149 @@
+"""False operation as the memo tells it: what each load does, how far it is from it, what cures it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from functools import lru_cache
+from typing import Any
+
+import numpy as np
+
+from ..reference.records import Source
+from ..study.operation import Operation, level_on, operation
+from ..study.sizing import Met, by_length
+from ..study.spread import COVERAGE
+from ..units import FOOT, show, show_length
+from .figure import Figure
+from .investigation import Investigation
+from .memo import Block, Caution, Paragraph, Part
+from .spread_figures import level_figure
+from .tables import Column, Table
+from .words import listed, pair_words
+
+POINTS = 15  # lengths of the picture
+
+_CAUTION = (
+    "Thresholds are limits of standards for whole families, or the data sheet's own. A load that "
+    "is sure to be off by them can still be held by dirt, wear or residual magnetism.",
+    "A resistor across a load is hot while the circuit is on, a capacitor keeps a charge after it "
+    "is off. Choose parts rated for lasting use across the supply, and fit them where local codes "
+    "allow.",
+    "Where a load that stays on can hurt somebody, a cure by impedance is not enough: use a "
+    "circuit that fails to the off state, designed by somebody licensed for it.",
+)
+
+
+@lru_cache(maxsize=8)
+def operations(investigation: Investigation) -> tuple[Operation, ...]:
+    """Every load that the case watches."""
+    return tuple(operation(investigation.uncertain, entry.watched())
+                 for entry in investigation.case.content.operation)
+
+
+def operation_finding(investigation: Investigation) -> list[Block]:
+    """What each load does, in a sentence."""
+    said = []
+    for found in operations(investigation):
+        w = found.watched
+        cure = next((c for c in found.cures if c.works and c.bleeder), None)
+        said.append(
+            f"With its contacts open, the {w.name} {found.state}: {show(found.level, w.unit)} is "
+            f"coupled into it ({show(found.low, w.unit)} to {show(found.high, w.unit)}), and it is "
+            f"sure to be off at {show(w.limits[0], w.unit)}.")
+        if found.margin < 0 and cure and cure.bleeder:
+            said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
+                        f"{show(cure.watts, 'W')} while on, would let go of it.")
+    return [Paragraph(" ".join(said))] if said else []
+
+
+def operation_part(investigation: Investigation) -> Part | None:
+    """Loads, cures and pictures; None where the case watches no load."""
+    found = operations(investigation)
+    if not found:
+        return None
+    blocks: list[Block] = [
+        Paragraph("With the contacts open, the run's capacitance still feeds the loads. Each is "
+                  "held against the voltage, or the lamp's current, at which it is sure to be off "
+                  f"and sure to be on; between them it may do either. {_notes(found)}"),
+        _states(found, investigation)]
+    for k, one in enumerate(found, 1):
+        blocks += [_figure(investigation, one), _cures(one, k)]
+    blocks.append(Caution("Before a cure is fitted", _CAUTION))
+    return Part("False operation", tuple(blocks))
+
+
+def operation_results(investigation: Investigation) -> list[Mapping[str, Any]] | None:
+    """The loads for results.json; None where the case watches none."""
+    return [
+        {"name": o.watched.name, "pair": [o.watched.pair.a, o.watched.pair.b],
+         f"level_{o.watched.unit}": o.level, f"range_{o.watched.unit}": [o.low, o.high],
+         "current_A": o.current, f"limits_{o.watched.unit}": o.watched.limits, "state": o.state,
+         "margin": o.margin, "chances_off_between_on": o.chances,
+         "longest_run_m": o.longest.stretches, "longest_run_covered_m": o.longest_covered.stretches,
+         "cures": [{"name": c.name, "level": c.level, "state": c.state, "works": c.works,
+                    "power_W": c.watts} for c in o.cures]}
+        for o in operations(investigation)
+    ] or None
+
+
+def operation_sources(investigation: Investigation) -> Iterator[tuple[str, Source]]:
+    """The sources of the thresholds used."""
+    for found in operations(investigation):
+        kind = found.watched.threshold
+        yield f"thresholds of the {kind.name}", kind.off_at.source
+        yield f"thresholds of the {kind.name}", kind.on_at.source
+
+
+def _notes(found: tuple[Operation, ...]) -> str:
+    notes = dict.fromkeys(f"{o.watched.threshold.name}: {o.watched.threshold.note}"
+                          for o in found if o.watched.threshold.note)
+    return f"{listed(list(notes))}." if notes else ""
+
+
+def _states(found: tuple[Operation, ...], investigation: Investigation) -> Table:
+    def length(met: Met) -> str:
+        return met.words(lambda x: show_length(x, customary=investigation.customary))
+
+    def row(o: Operation) -> tuple[str, ...]:
+        w = o.watched
+        off, on = w.limits
+        return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}",
+                f"{show(o.level, w.unit)}\n({show(o.low, w.unit)} … {show(o.high, w.unit)})",
+                show(off, w.unit), show(on, w.unit), o.state, f"{o.margin:.0%}".replace("-", "−"),
+                " / ".join(f"{c:.0%}" for c in o.chances),
+                f"{length(o.longest)}\n({length(o.longest_covered)})")
+    return Table(
+        "operation", "Loads with their contacts open.",
+        (Column("Load"), Column("Coupled in", "", "right"), Column("Sure off at", "", "right"),
+         Column("Sure on at", "", "right"), Column("State"), Column("Margin", "", "right"),
+         Column("Off / either / on", "", "right"), Column("Sure off for runs", "", "right")),
+        tuple(map(row, found)),
+        f"In brackets: what {COVERAGE:.0%} of the draws allow. Margin: how far under the voltage "
+        "that it is sure to be off at, as a share of it. Off / either / on: share of the draws.")
+
+
+def _cures(found: Operation, number: int) -> Table:
+    unit = found.watched.unit
+    return Table(
+        f"cures-{number}", f"Cures for the {found.watched.name}, those that work first, by the "
+        "watts they take while the circuit is on.",
+        (Column("Cure"), Column("Leaves", "", "right"), Column("Load then"),
+         Column("Takes", "", "right"), Column("Mind")),
+        tuple((c.name, show(c.level, unit), c.state, show(c.watts, "W"), c.note or "–")
+              for c in found.cures))
+
+
+def _figure(investigation: Investigation, found: Operation) -> Figure:
+    run, uncertain = investigation.run, investigation.uncertain
+    unit, size = ("ft", FOOT) if investigation.customary else ("m", 1.0)
+    lengths = np.linspace(run.length / 20, 2 * run.length, POINTS)
+    watched = found.watched
+
+    def quantity(coverage: float | None) -> np.ndarray:
+        return by_length(uncertain, lambda b: level_on(b, watched), coverage=coverage)(lengths)
+
+    tail = (1 - COVERAGE) / 2
+    return level_figure(
+        lengths / size, quantity(None), (quantity(tail), quantity(1 - tail)),
+        name=watched.name, unit=watched.unit, limits=watched.limits, length=run.length / size,
+        length_unit=unit, coverage=COVERAGE, states=watched.threshold.states)

@@ -1,0 +1,120 @@
+"""Pictures of how sure a result is, and of what decides it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from ..study.spread import Sensitivity
+from ..units import show
+from .figure import Axis, Band, Figure, Line, Reference, even_axis
+from .words import cut, listed
+
+BARS = 8
+CLASSES = 40  # of the curve of shares
+
+
+def sensitivity_figure(found: Sensitivity, what: str) -> Figure:
+    """A bar for each input: its share of the variance alone, and with what it does together."""
+    ranked = found.ranked()[:BARS]
+    names = [cut(name, 34) for name, _, _ in ranked]
+    alone, whole = (np.clip([r[k] for r in ranked], 0.0, 1.0) * 100 for k in (1, 2))
+    said = [f"{name} {total:.0f} %" for (name, _, _), total in zip(ranked, whole, strict=True)]
+    return Figure(
+        key="sensitivity", title=f"What decides {what}",
+        x=even_axis("Share of the variance", "%", 0.0, 100.0),
+        y=Axis("", "", -0.6, len(names) - 0.4, "even",
+               tuple((float(i), n) for i, n in enumerate(names)), turned=True),
+        caption=f"Share of the variance of {what} that vanishes when one input alone becomes "
+        "known (first order), and that stays when all others are known (total). The input at the "
+        "top is the one to pin down first.",
+        alternative=f"Bars of the total share of each input: {listed(said)}.",
+        numbers=tuple(said),
+        bands=tuple(_bar(size, (i - 0.34, i + 0.34), label if i == 0 else "", style)
+                    for style, label, sizes in ((0, "total", whole), (1, "first order", alone))
+                    for i, size in enumerate(sizes)),
+        lines=tuple(Line(_floats([size, size]), _floats([i - 0.34, i + 0.34]), "", 0)
+                    for i, size in enumerate(whole)),
+        aspect=min(1.0, 0.24 + 0.06 * len(names)),
+    )
+
+
+def distribution_figure(
+    sample: ArrayLike, ends: tuple[float, float], expected: float, *, what: str, unit: str,
+    coverage: float
+) -> Figure:
+    """How the draws of a result are distributed, with its coverage interval shaded."""
+    values = np.sort(np.asarray(sample, dtype=float))
+    x, height = _density(values)
+    inside = (x >= ends[0]) & (x <= ends[1])
+    words = f"{show(ends[0], unit)} to {show(ends[1], unit)}"
+    return Figure(
+        key="distribution", title=f"How sure: {what}",
+        x=even_axis(what[:1].upper() + what[1:], unit, float(x[0]), float(x[-1])),
+        y=Axis("Relative density", "", 0.0, 1.1, "even", tuple((v, f"{v:g}") for v in (0, 0.5, 1))),
+        caption=f"How often {what} came out at each value, over what is not known of the inputs. "
+        f"Shaded: {coverage:.0%} of the draws, {words}. Upright: with every input as it is most "
+        "likely.",
+        alternative=f"Curve with one hump over {show(x[0], unit)} to {show(x[-1], unit)}; "
+        f"{coverage:.0%} of the draws lie in {words}; expected {show(expected, unit)}.",
+        numbers=(f"expected {show(expected, unit)}", f"{coverage:.0%} of draws {words}"),
+        bands=(Band(x[inside], np.zeros(inside.sum()), height[inside],
+                    f"{coverage:.0%} of the draws", 0),),
+        references=(Reference(expected, "x", f"expected {show(expected, unit)}"),),
+        lines=(Line(x, height, "", 0),),
+        aspect=0.45,
+    )
+
+
+def level_figure(
+    lengths: ArrayLike, curve: ArrayLike, band: tuple[ArrayLike, ArrayLike], *,
+    name: str, unit: str, limits: tuple[float, float], length: float, length_unit: str,
+    coverage: float, states: Sequence[str]
+) -> Figure:
+    """The voltage on a load, or a lamp's current, against the length of the run."""
+    x, y = np.asarray(lengths, dtype=float), np.asarray(curve, dtype=float)
+    low, high = (np.asarray(edge, dtype=float) for edge in band)
+    factor, shown = (1e6, "µA") if unit == "A" else (1.0, unit)
+    top = max(float(high.max()), 1.15 * limits[0]) * factor
+    here = float(np.interp(length, x, y))
+    marks = [(limits[0], f"{states[0]} at or under {show(limits[0], unit)}"),
+             (limits[1], f"{states[2]} at or over {show(limits[1], unit)}")]
+    quantity = "Current through the lamp" if unit == "A" else "Voltage on the load, RMS"
+    key = "".join(c if c.isascii() and c.isalnum() else "-" for c in name.lower())
+    return Figure(
+        key=f"operation-{key}", title=f"{name}: with its contacts open, against run length",
+        x=even_axis("Run length", length_unit, 0.0, float(x[-1])),
+        y=even_axis(quantity, shown, 0.0, top),
+        caption=f"{quantity} of {name} against the length of the run. Shaded: {coverage:.0%} of "
+        "the draws. Across: what the load is sure to do.",
+        alternative=f"Curve rising with run length to {show(float(y[-1]), unit)}; at the run's "
+        f"own length {show(here, unit)}. {listed([words for _, words in marks])}.",
+        numbers=(f"{name}: {show(here, unit)}",),
+        bands=(Band(x, low * factor, high * factor, f"{coverage:.0%} of the draws", 0),),
+        references=(Reference(length, "x", f"this run, {length:.4g} {length_unit}"),
+                    *(Reference(v * factor, "y", words) for v, words in marks
+                      if v * factor <= top)),
+        lines=(Line(x, y * factor, "expected", 0),),
+    )
+
+
+def _density(values: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    """Shares of the draws in equal classes over their middle 99.8 %, their crest at 1."""
+    low, high = np.quantile(values, [0.001, 0.999])
+    if low == high:
+        low, high = low - abs(low) * 0.01 - 1e-12, high + abs(high) * 0.01 + 1e-12
+    count = min(CLASSES, max(8, round(2 * len(values) ** (1 / 3))))
+    found, edges = np.histogram(values, bins=count, range=(low, high))
+    middle = (edges[:-1] + edges[1:]) / 2
+    return (np.concatenate([[edges[0]], middle, [edges[-1]]]),
+            np.concatenate([[0.0], found / found.max(), [0.0]]))
+
+
+def _bar(size: float, y: tuple[float, float], label: str, style: int) -> Band:
+    return Band(_floats([0.0, size]), _floats([y[0]] * 2), _floats([y[1]] * 2), label, style)
+
+
+def _floats(values: ArrayLike) -> NDArray[np.float64]:
+    return np.asarray(values, dtype=float)
