@@ -9,7 +9,7 @@ from typing import Any
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.instruments import INSTRUMENTS
-from ..study.causes import Explanation, explain
+from ..study.causes import Explanation, Progress, explain, silent
 from ..study.observation import Observation, observe
 from ..study.readings import Pair
 from ..study.reduced import Reduced, free_conductors, may_be_suspect
@@ -52,14 +52,17 @@ def case_suspects(content: CaseFile, run: Run) -> tuple[str, ...]:
     return tuple(names) if read else free_conductors(run)
 
 
-def case_causes(case: Case, run: Run, low: Run, high: Run) -> Explanation | None:
+def case_causes(
+    case: Case, run: Run, low: Run, high: Run, *, progress: Progress = silent
+) -> Explanation | None:
     """What the case's readings mean; None where no conductor is without a feed."""
     content = case.content
     suspects = case_suspects(content, run)
     if not suspects:
         return None
     reduced = Reduced(run, low, high, suspects, content.causes.section == "as described")
-    return explain(reduced, case_observations(case), shares=dict(content.causes.shares.items()))
+    return explain(reduced, case_observations(case), shares=dict(content.causes.shares.items()),
+                   progress=progress)
 
 
 def with_readings(case: Case, path: Path) -> Case:

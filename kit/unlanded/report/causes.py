@@ -6,13 +6,14 @@ import textwrap
 from collections.abc import Iterator, Sequence
 from functools import lru_cache
 from typing import Any
+from weakref import WeakKeyDictionary
 
 from ..case.observed import case_causes
 from ..case.standing import case_margin
 from ..errors import Refused
 from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source
-from ..study.causes import Explanation
+from ..study.causes import Explanation, Progress, silent
 from ..study.coupling import GEOMETRY_SPREAD, UNDESCRIBED
 from ..study.finding import (
     ACCEPTED_INSULATION,
@@ -45,6 +46,7 @@ from .words import listed, pair_words, printable
 PICTURED = 2  # suspects with pictures of their own
 SUGGESTED = 5  # measurements in the table
 SAID = 3  # causes whose predictions are told
+NEGLIGIBLE = 1e-4  # share of a cause that is not listed
 WORTH = 0.02  # bit: a measurement that tells less is not suggested
 
 CAUTION = (
@@ -56,10 +58,20 @@ CAUTION = (
 )
 
 
-@lru_cache(maxsize=2)
-def explanation_of(investigation: Investigation) -> Explanation | None:
-    """What the case's readings mean; None where nothing could be meant by them."""
-    return case_causes(investigation.case, *investigation.runs)
+_EXPLAINED: WeakKeyDictionary[Investigation, Explanation | None] = WeakKeyDictionary()
+
+
+def explanation_of(
+    investigation: Investigation, *, progress: Progress = silent
+) -> Explanation | None:
+    """What the case's readings mean; None where nothing could be meant by them.
+
+    Worked out once; `progress` is told of it, and what it raises ends the work.
+    """
+    if investigation not in _EXPLAINED:
+        _EXPLAINED[investigation] = case_causes(investigation.case, *investigation.runs,
+                                                progress=progress)
+    return _EXPLAINED[investigation]
 
 
 @lru_cache(maxsize=2)
@@ -106,7 +118,7 @@ def causes_finding(investigation: Investigation) -> list[Block]:
     found = explanation_of(investigation)
     assert found is not None
     said = [headline(found, f) for f in findings(found)]
-    best = next(iter(_worth_taking(investigation)), None)
+    best = next(iter(worth_taking(investigation)), None)
     if best is not None:
         said.append(f"The next measurement that would tell most is {_next_words(best)}.")
     return [Paragraph(" ".join(said))]
@@ -134,13 +146,14 @@ def readings_table(found: Explanation) -> Table:
 def odds_table(found: Explanation, made: Sequence[Finding]) -> Table:
     """The share of every cause on every suspect, with what its size comes out at."""
     rows = tuple(
-        (f.suspect, cause, per_cent(max(share, 1e-9)), _size_words(found, f.suspect, cause))
-        for f in made for cause, share in _ranked(found, f.suspect))
+        (f.suspect, cause, per_cent(share), _size_words(found, f.suspect, cause))
+        for f in made for cause, share in _ranked(found, f.suspect) if share >= NEGLIGIBLE)
     return Table("odds", "Odds of the causes.", (
         Column("Conductor"), Column("Cause"), Column("Share", "", "right"),
         Column("Comes out at, 90 % range")), rows,
-        f"The quadrature's own error of the odds is {100 * found.error:.1f} % (one standard "
-        f"deviation, {found.points} points).")
+        f"Causes that are not listed have under {per_cent(NEGLIGIBLE)}. The quadrature's own error "
+        f"of the odds is {100 * found.error:.1f} % (one standard deviation, {found.points} "
+        "points).")
 
 
 def _ranked(found: Explanation, suspect: str) -> list[tuple[Cause, float]]:
@@ -149,7 +162,7 @@ def _ranked(found: Explanation, suspect: str) -> list[tuple[Cause, float]]:
 
 def _size_words(found: Explanation, suspect: str, cause: Cause) -> str:
     """The size of a cause, or the coupling under it."""
-    if found.odds(suspect)[cause] < 1e-4 or cause in ("none of these", "solid connection"):
+    if cause in ("none of these", "solid connection"):
         return "–"
     if cause == "capacitive coupling":
         live, _, weights = found.capacitances(suspect, cause)
@@ -170,7 +183,7 @@ def next_blocks(investigation: Investigation) -> Iterator[Block]:
     found = explanation_of(investigation)
     assert found is not None
     prospects = prospects_of(investigation)
-    worth = _worth_taking(investigation)
+    worth = worth_taking(investigation)
     if not worth:
         yield Paragraph("No measurement with these instruments would tell the remaining causes "
                         "apart. An insulation test with direct voltage, with the run isolated, "
@@ -186,15 +199,16 @@ def next_blocks(investigation: Investigation) -> Iterator[Block]:
                         f"{f' and {len(barred) - 6} more' if len(barred) > 6 else ''}.")
 
 
-def _worth_taking(investigation: Investigation) -> list[Prospect]:
+def worth_taking(investigation: Investigation) -> list[Prospect]:
+    """The next measurements that would tell something, the best first."""
     return [p for p in simplest(prospects_of(investigation)) if p.bits >= WORTH][:SUGGESTED]
 
 
 def next_table(found: Explanation, prospects: Sequence[Prospect]) -> Table:
     """The best measurements, and what the likeliest causes predict of each."""
     odds = [found.odds(s) for s in found.reduced.suspects]
-    causes = sorted((c for c in CAUSES if c != "none of these"),
-                    key=lambda c: -sum(o[c] for o in odds))[:SAID]
+    told = {c for p in prospects for c in p.predicted}
+    causes = sorted(told, key=lambda c: -sum(o[c] for o in odds))[:SAID]
     rows = tuple(
         (p.candidate.instrument.name,
          f"{pair_words(p.candidate.pair.a, p.candidate.pair.b)}"

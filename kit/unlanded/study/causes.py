@@ -8,9 +8,10 @@ of causes that the readings so far make very unlikely are dropped.
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, partial
+from typing import TypeAlias
 
 import numpy as np
 
@@ -22,6 +23,9 @@ from .likelihood import Likelihood, likelihood
 from .observation import Observation
 from .reduced import Reduced
 from .scene import MANY, Group, Scene, groups, suspects_in
+
+Progress: TypeAlias = Callable[[float], None]
+"""Told what share of a long work is done [1]; what it raises ends the work."""
 
 STABLE = 0.01  # error of the odds that is aimed at
 _DROPPED = 1e-4  # of the likeliest, below which a combination is not taken further
@@ -163,12 +167,21 @@ class Explanation:
         return likelihood(self.readings, top=self.reduced.top)
 
 
+def silent(_: float) -> None:
+    """No progress is told."""
+
+
+def _part_of(progress: Progress, done: int, parts: int, share: float) -> None:
+    progress((done + share) / parts)
+
+
 def explain(
     reduced: Reduced,
     readings: Sequence[Observation],
     *,
     shares: Mapping[str, float] | None = None,
     stable: float = STABLE,
+    progress: Progress = silent,
 ) -> Explanation:
     """The odds of the causes on every suspect.
 
@@ -178,6 +191,7 @@ def explain(
     readings : at most 40; those on no suspect tell of the supply
     shares : of the causes before any reading, where they differ from `hypotheses.SHARES`
     stable : error of the odds to aim at, relative
+    progress : told now and then what share of the work is done; what it raises ends the work
 
     Raises `Refused`. No odds prove a conductor dead.
     """
@@ -191,7 +205,8 @@ def explain(
     for count in range(1, len(reduced.suspects) + 1):
         last = count == len(reduced.suspects)
         beam = [search.grown(b, g) for b in beam for g in search.groups if prior[g.cause] > 0]
-        search.settle(beam, stable, None if last else _EARLY)
+        part = partial(_part_of, progress, count - 1, len(reduced.suspects))
+        search.settle(beam, stable, None if last else _EARLY, part)
         beam = _likely(beam) if not last else beam
     found = tuple(search.finished(b) for b in beam)
     return Explanation(reduced, tuple(readings), prior, found,
@@ -237,10 +252,12 @@ class _Search:
         made.integral = Integral(self._problem(both))
         return made
 
-    def settle(self, beam: Sequence[_Candidate], stable: float, doublings: int | None) -> None:
+    def settle(self, beam: Sequence[_Candidate], stable: float, doublings: int | None,
+               progress: Progress) -> None:
         """Double the points of what the error of the odds comes from, until they are stable."""
         done = 0
         while doublings is None or done < doublings:
+            progress(1 - 0.75**done)  # how many doublings there will be is not known
             done += 1
             parts = _error_parts(beam)
             if math.hypot(*parts) <= stable:
@@ -251,6 +268,7 @@ class _Search:
                 return
             for integral in loose:
                 integral.double()
+                progress(1 - 0.75**done)
 
     def finished(self, candidate: _Candidate) -> Hypothesis:
         """The combination as it is reported."""
