@@ -38,7 +38,7 @@ def floating_screen(matrix: Real, *, to_earth: float) -> Real:
 
 
 def own_screens(matrix: Real, screened: Sequence[int]) -> Real:
-    """The matrix with the cores numbered `screened` each in an earthed screen of its own.
+    """The matrix (..., n, n) with the cores `screened` each in an earthed screen of its own.
 
     Their capacitance to all others becomes one to earth, of the size it had.
 
@@ -47,7 +47,8 @@ def own_screens(matrix: Real, screened: Sequence[int]) -> Real:
     """
     out = np.array(matrix, dtype=float)
     for k in screened:
-        diagonal = out[k, k]
-        out[k, :] = out[:, k] = 0.0
-        out[k, k] = diagonal
+        diagonal = out[..., k, k].copy()
+        out[..., k, :] = 0.0
+        out[..., :, k] = 0.0
+        out[..., k, k] = diagonal
     return out

@@ -1,4 +1,4 @@
-"""False operation as the memo tells it: what each load does, how far it is from it, what cures it."""
+"""False operation as the memo tells it: what each load does, by what margin, what cures it."""
 
 from __future__ import annotations
 
@@ -127,10 +127,11 @@ def _cures(found: Operation, number: int) -> Table:
     return Table(
         f"cures-{number}", f"Cures for the {found.watched.name}, those that work first, by the "
         "watts they take while the circuit is on.",
-        (Column("Cure"), Column("Leaves", "", "right"), Column("Load then"),
+        (Column("Cure"), Column("Leaves less than", "", "right"), Column("Load then"),
          Column("Takes", "", "right"), Column("Mind")),
         tuple((c.name, show(c.level, unit), c.state, show(c.watts, "W"), c.note or "–")
-              for c in found.cures))
+              for c in found.cures),
+        f"Leaves less than: in {COVERAGE:.0%} of the draws.")
 
 
 def _figure(investigation: Investigation, found: Operation) -> Figure:

@@ -114,9 +114,13 @@ def _rows(investigation: Investigation) -> Iterator[tuple[str, str, str]]:
         if i.name == "how the singles lie":
             yield i.name, "at random", ""
         elif unit == "%":
-            yield i.name, *(f"{100 * (x - 1):+.3g} %".replace("-", "−") for x in (low, high))
+            yield i.name, _percent(low), _percent(high)
         else:
             yield i.name, show(low * size, unit), show(high * size, unit)
+
+
+def _percent(share: float) -> str:
+    return f"{100 * (share - 1):+.3g} %".replace("-", "−")
 
 
 def _unit(name: str, volts: float) -> tuple[str, float]:

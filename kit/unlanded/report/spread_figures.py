@@ -9,7 +9,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from ..study.spread import Sensitivity
 from ..units import show
-from .figure import Axis, Band, Figure, Line, Reference, even_axis
+from .figure import Axis, Band, Figure, Line, Points, Reference, even_axis
 from .words import cut, listed
 
 BARS = 8
@@ -32,11 +32,11 @@ def sensitivity_figure(found: Sensitivity, what: str) -> Figure:
         "top is the one to pin down first.",
         alternative=f"Bars of the total share of each input: {listed(said)}.",
         numbers=tuple(said),
-        bands=tuple(_bar(size, (i - 0.34, i + 0.34), label if i == 0 else "", style)
-                    for style, label, sizes in ((0, "total", whole), (1, "first order", alone))
-                    for i, size in enumerate(sizes)),
+        bands=tuple(_bar(size, (i - 0.34, i + 0.34), "" if i else "total", 0)
+                    for i, size in enumerate(whole)),
         lines=tuple(Line(_floats([size, size]), _floats([i - 0.34, i + 0.34]), "", 0)
                     for i, size in enumerate(whole)),
+        points=(Points(alone, np.arange(float(len(alone))), "first order", 1),),
         aspect=min(1.0, 0.24 + 0.06 * len(names)),
     )
 

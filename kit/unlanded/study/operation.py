@@ -7,8 +7,9 @@ held against what the load is sure to be off at. Cures are the same run changed.
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -18,17 +19,18 @@ from ..physics.burden import Burden
 from ..physics.lamp import rectified_current
 from ..physics.screen import own_screens
 from ..reference.loads import Threshold
+from ..reference.preferred import preferred
 from ..units import show
 from .batch import Ports, RunBatch
-from .ends import Bonded, Driven, Open, Termination, Through
+from .ends import Bonded, Driven, Ends, Open, Through
 from .readings import Pair
 from .run import Run
-from .sizing import Bleeder, Met, bleeder, by_length, solve_for
+from .sizing import Bleeder, Met, Result, bleeder, by_length, solve_for
 from .spread import COVERAGE, coverage_interval
 from .uncertain import UncertainRun
 
 Real = NDArray[np.float64]
-DRAWS = 1024
+DRAWS, CURED = 1024, 128  # for the state, and for each cure
 LOW_VOLTAGE = 24.0  # of a control circuit, RMS [V]
 SHORTEST, LONGEST = 5.0, 3e3  # metres that the longest run is looked for in
 
@@ -86,7 +88,7 @@ class Cure:
     Parameters
     ----------
     name : what is done
-    level : voltage [V] or lamp current [A] that is left
+    level : voltage [V] or lamp current [A] that 95 % of the draws then stay under
     state : of the load then, in words
     works : whether the load is then sure to be off
     watts : that the cure takes while the circuit is on
@@ -148,7 +150,7 @@ def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Op
     return Operation(
         watched, level, float(low[0]), float(high[0]), level * _admittance(run, watched),
         watched.state(level), (off - level) / off, chances, longest, covered,
-        tuple(_ranked(_cures(run, watched))))
+        tuple(_ranked(_cures(uncertain.draws(CURED, seed=seed), watched))))
 
 
 def level_on(batch: RunBatch, watched: Watched, admittance: ArrayLike = 0.0) -> Real:
@@ -207,29 +209,38 @@ def _ranked(cures: Iterator[Cure]) -> list[Cure]:
     return sorted(cures, key=lambda c: (not c.works, c.watts, c.level))
 
 
-def _cures(run: Run, watched: Watched) -> Iterator[Cure]:
-    port = RunBatch.of(run).port(watched.pair.a, watched.pair.b)
-    yield from _resistor(run, watched, port)
-    yield from _capacitor(run, watched, port)
-    yield from _spares(run, watched)
-    yield from _own_cable(run, watched)
-    if watched.threshold.measure == "voltage" and run.supply.voltage > LOW_VOLTAGE:
-        yield from _low_voltage(run, watched)
-    yield from _at_supply(run, watched)
+def _cures(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    yield from _resistor(drawn, watched)
+    yield from _capacitor(drawn, watched)
+    yield from _spares(drawn, watched)
+    yield from _own_cable(drawn, watched)
+    yield from _low_voltage(drawn, watched)
+    yield from _at_supply(drawn, watched)
 
 
-def _cure(name: str, level: float, watched: Watched, **more: object) -> Cure:
-    return Cure(name, level, watched.state(level), level <= watched.limits[0],
-                **more)  # type: ignore[arg-type]
+def _cure(
+    name: str, level: float, watched: Watched, *, watts: float = 0.0, note: str = "",
+    found: Bleeder | None = None
+) -> Cure:
+    return Cure(name, level, watched.state(level), level <= watched.limits[0], watts, note, found)
 
 
-def _resistor(run: Run, watched: Watched, port: Ports) -> Iterator[Cure]:
-    found = bleeder(
-        lambda r: port_level(port, watched, run.frequency, 1 / r), watched.limits[0],
-        live_voltage=run.supply.voltage)
+def _beside(drawn: RunBatch, watched: Watched, admittance: Callable[[Real], Any]) -> Result:
+    """What most of the draws stay under, against the value of something beside the load."""
+    port = drawn.port(watched.pair.a, watched.pair.b)
+
+    def result(values: Real) -> Real:
+        levels = port_level(port, watched, drawn.run.frequency, admittance(values)[:, None])
+        return np.asarray(np.quantile(levels, COVERAGE, axis=1))
+    return result
+
+
+def _resistor(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    result = _beside(drawn, watched, lambda r: 1 / r)
+    found = bleeder(result, watched.limits[0], live_voltage=drawn.run.supply.voltage)
     if found is not None:
-        text = f"resistor across the load, {show(found.value, 'Ω')}"
-        yield _cure(text, found.result, watched, watts=found.power, bleeder=found,
+        yield _cure(f"resistor across the load, {show(found.value, 'Ω')}", found.result, watched,
+                    watts=found.power, found=found,
                     note=f"{_sold(found.power_rating, 'W')}, {_sold(found.voltage_rating, 'V')}; "
                          "hot while the circuit is on")
 
@@ -238,72 +249,79 @@ def _sold(rating: float, unit: str) -> str:
     return f"rated {show(rating, unit)}" if math.isfinite(rating) else "beyond the ratings sold"
 
 
-def _capacitor(run: Run, watched: Watched, port: Ports) -> Iterator[Cure]:
-    def left(farads: Real) -> Real:
-        return port_level(port, watched, run.frequency, 2j * np.pi * run.frequency * farads)
-
-    met = solve_for(left, watched.limits[0], low=1e-9, high=10e-6)
+def _capacitor(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    omega = 2 * math.pi * drawn.run.frequency
+    result = _beside(drawn, watched, lambda c: 1j * omega * c)
+    met = solve_for(result, watched.limits[0], low=1e-9, high=10e-6, scan=65)
     if met.nowhere:
         return
-    farads = met.stretches[-1][0]
-    amperes = 2 * math.pi * run.frequency * farads * run.supply.voltage
-    yield _cure(f"capacitor across the load, at least {show(farads, 'F')}",
-                float(left(np.array([farads]))[0]), watched,
-                note=f"draws {show(amperes, 'A')} without heat; rated for across-the-line use, "
-                     "with a resistor in series against inrush, and checked against resonance")
+    farads = preferred(met.stretches[-1][0], "E6", down=False)
+    yield _cure(f"capacitor across the load, {show(farads, 'F')}",
+                float(result(np.array([farads]))[0]), watched,
+                note=f"draws {show(omega * farads * drawn.run.supply.voltage, 'A')} without heat; "
+                     "rated for across-the-line use, with a resistor in series against inrush, and "
+                     "checked against resonance")
 
 
-def _spares(run: Run, watched: Watched) -> Iterator[Cure]:
+def _spares(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    run = drawn.run
     spares = [n for n in run.section.names
               if isinstance(run.near[n], Open) and isinstance(run.far[n], Open)
-              and f"{n}@near" not in (watched.pair.a, watched.pair.b)
-              and f"{n}@far" not in (watched.pair.a, watched.pair.b)]
+              and not {f"{n}@near", f"{n}@far"} & {watched.pair.a, watched.pair.b}]
     if spares:
-        bonded = replace(run, near={**run.near, **dict.fromkeys(spares, Bonded("earth"))},
-                         capacitance=run.matrix)
+        bonded = replace(run, near={**run.near, **dict.fromkeys(spares, Bonded("earth"))})
         yield _cure(f"spare cores ({', '.join(spares)}) bonded to earth at the near end",
-                    _level(bonded, watched), watched)
+                    _covered(replace(drawn, run=bonded), watched), watched)
 
 
-def _own_cable(run: Run, watched: Watched) -> Iterator[Cure]:
-    live = [n for n in run.section.names
-            if isinstance(run.near[n], Driven) or isinstance(run.far[n], Driven)]
-    if live:
-        apart = replace(run, capacitance=own_screens(
-            run.matrix, [run.section.index(n) for n in live]))
+def _own_cable(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    if live := _live(drawn.run, ("near", "far")):
+        apart = own_screens(drawn.capacitance, [drawn.run.section.index(n) for n in live])
         yield _cure(f"the live core ({', '.join(live)}) in an earthed screen or a cable of its own",
-                    _level(apart, watched), watched, note="a screen earthed at one end or at both")
+                    _covered(replace(drawn, capacitance=apart), watched), watched,
+                    note="a screen earthed at one end or at both")
 
 
-def _low_voltage(run: Run, watched: Watched) -> Iterator[Cure]:
-    if watched.rated is None:
+def _low_voltage(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    run = drawn.run
+    if watched.rated is None or run.supply.voltage <= LOW_VOLTAGE:
         return
     share = LOW_VOLTAGE / run.supply.voltage
-    changed = replace(run, supply=replace(run.supply, voltage=LOW_VOLTAGE), capacitance=run.matrix,
-                      near=_scaled(run, "near", share**2), far=_scaled(run, "far", share**2))
-    low = replace(watched, rated=watched.rated * share,
-                  off_at=watched.limits[0] * share, on_at=watched.limits[1] * share)
+    changed = replace(run, supply=replace(run.supply, voltage=LOW_VOLTAGE),
+                      near=_scaled(run.near, share**2), far=_scaled(run.far, share**2))
+    off, on = watched.limits
+    low = replace(watched, off_at=off * share, on_at=on * share)
     yield _cure(f"control circuit at {show(LOW_VOLTAGE, 'V')} AC, coil of the same power",
-                _level(changed, low), low, note="check the voltage drop when the coil picks up")
+                _covered(replace(drawn, run=changed), low), low,
+                note="check the voltage drop when the coil picks up")
 
 
-def _scaled(run: Run, end: str, share: float) -> Mapping[str, Termination]:
-    return {n: replace(t, burden=Burden(t.burden.resistance * share, t.burden.inductance * share,
-                                        t.burden.capacitance / share,
-                                        t.burden.front_resistance * share))
-            if isinstance(t, Through) else t for n, t in getattr(run, end).items()}
+def _scaled(ends: Ends, share: float) -> Ends:
+    """Every load with `share` of its impedance."""
+    def scaled(b: Burden) -> Burden:
+        return Burden(b.resistance * share, b.inductance * share, b.capacitance / share,
+                      b.front_resistance * share)
+    return {n: replace(t, burden=scaled(t.burden)) if isinstance(t, Through) else t
+            for n, t in ends.items()}
 
 
-def _at_supply(run: Run, watched: Watched) -> Iterator[Cure]:
-    live = [n for n in run.section.names if isinstance(run.near[n], Driven)]
-    if not live or watched.pair.a in {f"{n}@{end}" for n in live for end in ("near", "far")}:
+def _at_supply(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    run = drawn.run
+    live = _live(run, ("near",))
+    if not live or {run.node(f"{n}@near") for n in live} & {
+            run.node(watched.pair.a), run.node(watched.pair.b)}:
         return
-    dead_end = replace(run, near={**run.near, **dict.fromkeys(live, Open())},
-                       capacitance=run.matrix)
+    off = replace(run, near={**run.near, **dict.fromkeys(live, Open())})
     yield _cure(f"the contact at the supply's end of the live core ({', '.join(live)}), by an "
-                "interposing relay or a direct-current circuit", _level(dead_end, watched), watched,
+                "interposing relay or a direct-current circuit",
+                _covered(replace(drawn, run=off), watched), watched,
                 note="nothing alternating goes out while it is open")
 
 
-def _level(run: Run, watched: Watched) -> float:
-    return float(level_on(RunBatch.of(run), watched)[0])
+def _live(run: Run, ends: tuple[str, ...]) -> list[str]:
+    return [n for n in run.section.names
+            if any(isinstance(getattr(run, end)[n], Driven) for end in ends)]
+
+
+def _covered(drawn: RunBatch, watched: Watched) -> float:
+    return float(np.quantile(level_on(drawn, watched), COVERAGE))

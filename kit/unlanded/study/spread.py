@@ -26,6 +26,7 @@ Interval = Literal["symmetric", "shortest"]
 COVERAGE = 0.95
 STABLE = 0.05  # of an interval's width
 LEAST_BATCHES = 4
+KEPT = 1024
 _EDGE = 1e-6  # of each tail: no draws beyond, for a distribution without limits has none
 
 
@@ -107,7 +108,7 @@ class Spread:
     coverage : share of the draws that the interval holds [1]
     draws : how many were made
     stable : whether `error` is within the fraction asked for, in every result
-    sample : results of the first batch (M, k), for a picture
+    sample : results of the first draws (M, k), at most 1024 or one batch, for a picture
     """
 
     mean: Real
@@ -158,11 +159,12 @@ def propagate(
     """
     _refuse(inputs, coverage, stable, batch)
     tally: list[tuple[Real, ...]] = []
-    first = None
+    kept: list[Real] = []
     settled = False
     for values in _batches(inputs, batch, correlation, seed):
         results = np.asarray(model(values), dtype=float)
-        first = results if first is None else first
+        if not kept or (len(kept) + 1) * batch <= KEPT:
+            kept.append(results)
         tally.append((results.mean(axis=0), (results**2).mean(axis=0),
                       *coverage_interval(results, coverage, interval)))
         if len(tally) >= LEAST_BATCHES:
@@ -175,8 +177,8 @@ def propagate(
     # A batch's own variance, and that of the batches' means.
     square = np.mean([t[1] for t in tally], axis=0)
     deviation = np.sqrt(np.maximum(square - mean**2, 0.0))
-    assert first is not None
-    return Spread(mean, deviation, low, high, error, coverage, len(tally) * batch, settled, first)
+    return Spread(mean, deviation, low, high, error, coverage, len(tally) * batch, settled,
+                  np.concatenate(kept))
 
 
 def coverage_interval(

@@ -96,16 +96,13 @@ class Touch:
 
 
 def touch_sheet(run: Run) -> tuple[Touch, ...]:
-    """Every end that is not bonded to earth, those that drive most current first."""
-    ends = (f"{name}@{end}" for end in ("near", "far") for name in run.section.names)
-    seen: set[str] = set()
-    rows = []
-    for point in ends:
-        node = run.node(point)
-        if node != EARTH and node not in seen:
-            seen.add(node)
-            rows.append(_touch(run, point))
-    return tuple(sorted(rows, key=lambda r: -r.current))
+    """Every conductor that no end bonds to earth, at the end that drives more; most first."""
+    worst = {}
+    for name in run.section.names:
+        points = [f"{name}@{end}" for end in ("near", "far")]
+        if EARTH not in map(run.node, points):
+            worst[name] = max((_touch(run, p) for p in points), key=lambda t: t.current)
+    return tuple(sorted(worst.values(), key=lambda t: -t.current))
 
 
 def _touch(run: Run, point: str) -> Touch:
@@ -135,10 +132,10 @@ def _finding(fed: bool, current: float, charge: float) -> str:
         return "fed: a real source, as dangerous as the supply"
     steps = ((FIBRILLATION_CURRENT, "may stop a heart that it passes for a second or more"),
              (LET_GO_CURRENT, "above what all people can let go of"),
-             (PERCEPTION_CURRENT, "can be felt: a start may make somebody fall"))
+             (PERCEPTION_CURRENT, "can be felt: who starts may fall"))
     said = next((f"{words} ({show(limit.likely, 'A')})" for limit, words in steps
                  if current >= limit.likely),
-                f"under {show(PERCEPTION_CURRENT.likely, 'A')}, from which people feel it")
+                f"below what people feel ({show(PERCEPTION_CURRENT.likely, 'A')})")
     sparks = ((CHARGE_PAIN, "its charge hurts"), (CHARGE_PERCEPTION, "its charge can be felt"))
     spark = next((words for limit, words in sparks if charge >= limit.likely), "")
     return f"{said}; {spark}" if spark else said
