@@ -193,7 +193,7 @@ def _width() -> int:
 @refusing
 def workbook(folder: Path, no_open: bool) -> None:
     """Copy the notebooks and demo sites to a folder, and open JupyterLab there."""
-    from .panels.notebooks import copy_workbook, lab_command
+    from .panels.notebooks import copy_workbook, lab_command, lab_environment
 
     made, kept = copy_workbook(folder)
     click.echo(f"Copied {len(made)} files to {folder.absolute()}"
@@ -203,7 +203,8 @@ def workbook(folder: Path, no_open: bool) -> None:
         import subprocess
 
         click.echo("JupyterLab opens in the browser; stop it here with Ctrl-C twice.")
-        sys.exit(subprocess.run(lab_command(folder), check=False).returncode)
+        done = subprocess.run(lab_command(folder), env=lab_environment(), check=False)
+        sys.exit(done.returncode)
 
 
 @main.command()
@@ -218,7 +219,8 @@ def rerun(folder: Path, refresh: bool) -> None:
 
     do = notebooks.refresh if refresh else notebooks.compare
     found = notebooks.notebooks_in(folder)
-    moved = [m for path in tqdm(found, unit=" notebooks", disable=None) for m in do(path)]
+    each = tqdm(notebooks.each(do, found), total=len(found), unit=" notebooks", disable=None)
+    moved = [m for made in each for m in made]
     for line in moved:
         click.echo(str(line))
     click.echo(f"{len(found)} notebooks run, {len(moved)} lines moved.")
@@ -255,11 +257,20 @@ def write_field_sheet(case: Path) -> None:
     investigation = investigate(load_case(case))
     made = field_memo(investigation, date=datetime.date.today())
     paper = "us-letter" if investigation.customary else "a4"
-    for path, data in ((Path(f"{case.stem}-field.pdf"), pdf_bytes(made, {}, paper=paper)),
-                       (Path(f"{case.stem}-field.csv"),
-                        csv_text(field_csv(investigation)).encode("utf-8-sig"))):
+    files = {Path(f"{case.stem}-field.pdf"): pdf_bytes(made, {}, paper=paper),
+             Path(f"{case.stem}-field.csv"):
+             csv_text(field_csv(investigation)).encode("utf-8-sig")}
+    if taken := [path for path in files if path.exists()]:
+        raise there_already(taken[0])
+    for path, data in files.items():
         write_new(path, data)
         click.echo(f"Wrote {path}")
+
+
+def there_already(path: Path) -> Refused:
+    """The refusal of a file that would be written over."""
+    return Refused(str(path), "is there already, and nothing is written over",
+                   hint="choose another name")
 
 
 def write_new(path: Path, data: bytes) -> None:
@@ -267,8 +278,7 @@ def write_new(path: Path, data: bytes) -> None:
     try:
         file = path.open("xb")
     except FileExistsError:
-        raise Refused(str(path), "is there already, and nothing is written over",
-                      hint="choose another name") from None
+        raise there_already(path) from None
     try:
         with file:
             file.write(data)

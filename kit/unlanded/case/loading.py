@@ -249,9 +249,13 @@ def _ends(content: CaseFile) -> list[Found]:
         mistakes = refusal.mistakes
     if mistakes:
         return [(_end_place(m), m) for m in mistakes]
-    return [(("readings", count, "to"), Mistake("", "is the same point as from, as the ends are "
-             "described: there is nothing to read between them", reading.b))
-            for count, reading in enumerate(content.readings) if run.same(reading.a, reading.b)]
+    named: list[tuple[Place, Any]] = [
+        (("readings", count, "to"), r) for count, r in enumerate(content.readings)]
+    named += [(("memo", "added", count, "to"), added) for count, added in
+              enumerate(content.memo.added) if added.b is not None]
+    return [(place, Mistake("", "is the same point as from, as the ends are described: there is "
+                            "nothing to read between them", entry.b))
+            for place, entry in named if run.same(entry.a, entry.b)]
 
 
 def _end_place(mistake: Mistake) -> Place:

@@ -7,17 +7,18 @@ panel can hold nothing that the file could not. No widget is imported here.
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
 import traitlets
 
-from ..case.loading import Case, load_case, read_case
+from ..case.loading import Case, load_case, parse, read_case
 from ..case.saving import changed_text, save_case
-from ..errors import Refused
-from ..units import FOOT, show
+from ..errors import Mistake, Refused
 
 FOLDER = "sites"
+MEMO = "memo.added"
 
 
 class Desk(traitlets.HasTraits):
@@ -48,14 +49,21 @@ class Desk(traitlets.HasTraits):
         """Whether lengths are shown in feet."""
         return self.case.content.units == "US customary"
 
+    @property
+    def plain(self) -> dict[str, Any]:
+        """The values of the case as they are written: text with units, lists and tables."""
+        return parse(self.case.text, self.case.name)
+
     def change(self, changes: Mapping[str, Any]) -> None:
-        """Make changes, by path as messages spell it: {"run.length": "50 m"}.
+        """Make changes, by path as messages spell it: {"run.length": "50 m"}; None takes one out.
 
         Refused as the file would be, and the case stays as it is.
         """
-        wanted = {**self._changes, **changes}
+        kept = {path: value for path, value in self._changes.items() if path not in changes}
+        wanted = {**kept, **changes}
         try:
-            case = read_case(changed_text(self._read, wanted), self.path.name)
+            text = self._retyped(changes) or changed_text(self._read, wanted)
+            case = replace(read_case(text, self.path.name), path=self.path)
         except Refused as refusal:
             # Line numbers of a text that nobody sees would mislead.
             raise Refused.all_of(_without_line(m) for m in refusal.mistakes) from None
@@ -63,15 +71,51 @@ class Desk(traitlets.HasTraits):
         self.unsaved = case.text != self._read.text
         self.case = case
 
-    def save(self) -> None:
-        """Write the changes to the file; refused when it has changed since it was read."""
-        self._read = save_case(self._read, self._changes, overwrite=True)
-        self._changes, self.unsaved = {}, False
-        self.case = self._read
+    def _retyped(self, changes: Mapping[str, Any]) -> str:
+        """The text with one value typed over the one that a change put there; "" if it is not so.
+
+        Setting a value so that remarks stay takes longer than all the rest that a slider's step
+        asks for. Where the old value stands in the text only once, its place is known.
+        """
+        ((path, new),) = changes.items() if len(changes) == 1 else (("", None),)
+        old = self._changes.get(path)
+        if not (isinstance(old, str) and isinstance(new, str) and _plain(old) and _plain(new)):
+            return ""
+        text = self.case.text
+        return text.replace(f'"{old}"', f'"{new}"') if text.count(f'"{old}"') == 1 else ""
+
+    def add_to_memo(self, entry: Mapping[str, Any]) -> bool:
+        """Put a figure or table into the case's memo; False where it is in there already."""
+        added = self.added
+        if dict(entry) in added:
+            return False
+        self.change({MEMO: [*added, dict(entry)]})
+        return True
+
+    def take_from_memo(self, number: int) -> None:
+        """Take the entry of that number, from 0, out of the case's memo again."""
+        left = [entry for k, entry in enumerate(self.added) if k != number]
+        self.change({MEMO: left or None})
+
+    @property
+    def added(self) -> list[dict[str, Any]]:
+        """What the case adds to its memo, as it is written."""
+        return list(self.plain.get("memo", {}).get("added", []))
+
+    def save(self, path: str | Path | None = None) -> None:
+        """Write the changes to the file, or to another that is not there yet.
+
+        Refused when the file has changed since it was read.
+        """
+        self._read = save_case(self._read, self._changes, path, overwrite=path is None)
+        self._take_over()
 
     def open(self, path: str | Path | None = None) -> None:
         """Read another case, or this one again; changes that were not saved are dropped."""
         self._read = load_case(path or self.path)
+        self._take_over()
+
+    def _take_over(self) -> None:
         self._changes, self.unsaved = {}, False
         self.case = self._read
 
@@ -82,20 +126,10 @@ def cases_beside(folder: Path | None = None) -> tuple[Path, ...]:
     return tuple(sorted([*here.glob("*.toml"), *(here / FOLDER).glob("*.toml")]))
 
 
-def written(value: float, unit: str, *, customary: bool = False) -> str:
-    """A quantity as a case file and an entry box take it.
-
-    >>> written(45.72, "m"), written(45.72, "m", customary=True), written(3.3e6, "ohm")
-    ('45.72 m', '150 ft', '3.3 Mohm')
-    """
-    if unit == "m" and customary:
-        return f"{value / FOOT:.6g} ft"
-    if unit == "m":
-        return f"{value:.6g} m" if value >= 0.1 else f"{value * 1e3:.6g} mm"
-    return show(value, unit, 6)
+def _plain(text: str) -> bool:
+    """Whether a text stands between quotation marks as it is."""
+    return text.isprintable() and not set(text) & {'"', "\\"}
 
 
-def _without_line(mistake: Any) -> Any:
-    from dataclasses import replace
-
+def _without_line(mistake: Mistake) -> Mistake:
     return replace(mistake, place=mistake.place.rpartition(", ")[2])

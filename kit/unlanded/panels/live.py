@@ -10,6 +10,7 @@ from collections.abc import Callable
 from typing import Any
 
 import bqplot as bq
+import ipywidgets as w
 import numpy as np
 
 from ..report.figure import (
@@ -29,28 +30,31 @@ from ..report.figure import (
     shape,
 )
 from ..units import show
+from .look import caption_html
 
 _FILL = {"metal": "#c98a5a", "earthed metal": "#d9d9d9", "cover": "none", "space": "#ffffff",
          "shade": "#eeeeee", "ink": "#222222"}
 _EDGE = {"metal": "#5a3517", "cover": "#444444"}
-_SHAPE = {"star": "arrow"}  # bqplot has no star
+_SHAPE = {"star": "crosshair"}  # bqplot has no star
 _GRID = "#e2e2e2"
-_MARGIN = {"top": 40, "bottom": 52, "left": 68, "right": 20}
+_MARGIN = {"top": 56, "bottom": 52, "left": 62, "right": 14}
 _NARROW = {"top": 40, "bottom": 8, "left": 8, "right": 8}
 HOVERED = 60  # points of a curve whose numbers show under the pointer
 PAPER = "unlanded-paper"
+WIDEST, LOWEST = 640, 260  # pixels
+LETTER = 6.4  # pixels, mean width of one in the words beside an axis
 
 
 class LiveFigure:
-    """A figure on the screen; `widget` is what a view shows.
+    """A figure on the screen with its caption; `view` is both, `widget` the picture alone.
 
     Parameters
     ----------
     figure : the description to begin with
-    height : of the picture on the screen [px]
+    height : of the picture on the screen [px]; as the figure's own shape has it when 0
     """
 
-    def __init__(self, figure: Figure, *, height: int = 380) -> None:
+    def __init__(self, figure: Figure, *, height: int = 0) -> None:
         self.figure, self._height = figure, height
         self._x, self._y = _scale(figure.x), _scale(figure.y)
         self._axes = (_axis(figure.x, self._x, "bottom"), _axis(figure.y, self._y, "left"))
@@ -60,29 +64,52 @@ class LiveFigure:
             axes=[] if bare else list(self._axes), animation_duration=0, padding_x=0.0,
             padding_y=0.0, legend_location=_corner(figure), display_toolbar=False,
             background_style={"fill": "white"},
-            legend_style={"fill": "white", "stroke": "#999999"}, fig_margin=dict(_MARGIN),
-            layout={"width": "100%", "min_width": "420px", "height": f"{height}px"},
+            legend_style={"fill": "white", "stroke": "#999999"},
+            legend_text={"font-size": "11px"},
+            layout={"width": "100%", "min_width": "480px"},
         )
-        if figure.to_scale:
-            self.widget.fig_margin = dict(_NARROW)
         self.widget.add_class(PAPER)
+        self.caption = w.HTML()
+        self.view = w.VBox([self.widget, self.caption], layout={
+            "width": "100%", "max_width": f"{WIDEST}px"})
         self.update(figure)
 
     def update(self, figure: Figure) -> None:
         """Show another description of the same question."""
         before = dict(_elements(self.figure)) if self._marks else {}
+        was = self.figure
+        moved = (was.x, was.y, _labelled(was) > 1) != (figure.x, figure.y, _labelled(figure) > 1)
         self.figure = figure
         _set_axis(self._axes[0], self._x, figure.x)
         _set_axis(self._axes[1], self._y, figure.y)
         self.widget.title = figure.title
-        if figure.to_scale:
-            self.widget.layout.width = f"{_width_to_scale(figure, self._height)}px"
+        caption = caption_html(figure)
+        if self.caption.value != caption:
+            self.caption.value = caption
+        self._shape(figure)
         wanted = dict(_elements(figure))
-        marks = {key: self._marks[key] if _equal(element, before.get(key))
-                 else self._mark(key, element) for key, element in wanted.items()}
+        kept = {key for key, element in wanted.items() if _equal(element, before.get(key))
+                and not (moved and key[0] in _ON_AXES)}
+        marks = {key: self._marks[key] if key in kept else self._mark(key, element)
+                 for key, element in wanted.items()}
         if marks.keys() != self._marks.keys() or not self.widget.marks:
             self._marks = marks
             self.widget.marks = list(marks.values())
+
+    def _shape(self, figure: Figure) -> None:
+        """Size and margins: words beside an axis need room, and a section keeps its proportions."""
+        height = self._height or max(LOWEST, round(WIDEST * min(figure.aspect, 0.8)))
+        layout, margin = self.widget.layout, dict(_MARGIN)
+        if figure.to_scale:
+            margin = dict(_NARROW)
+            self.view.layout.width = "auto"
+            layout.width = f"{_width_to_scale(figure, height)}px"
+        elif not figure.y.label:
+            margin["left"] = 20 + round(LETTER * max(len(text) for _, text in figure.y.ticks))
+        if layout.height != f"{height}px":
+            layout.height = f"{height}px"
+        if self.widget.fig_margin != margin:
+            self.widget.fig_margin = margin
 
     def mark(self, kind: str, number: int = 0) -> Any:
         """The bqplot mark that shows an element, such as ("points", 0), for dragging it."""
@@ -90,6 +117,8 @@ class LiveFigure:
 
     def _mark(self, key: tuple[str, int], element: Any) -> Any:
         traits = _TRAITS[key[0]](element, self.figure)
+        if "display_legend" in traits:
+            traits["display_legend"] &= _labelled(self.figure) > 1
         mark = self._marks.get(key)
         if mark is None:
             scales = {"x": self._x, "y": self._y}
@@ -113,13 +142,23 @@ def _width_to_scale(figure: Figure, height: int) -> int:
 
 
 def _corner(figure: Figure) -> str:
-    """The corner of the picture that the fewest points of its curves lie in."""
+    """The corner of the picture that the fewest points lie in."""
     crowd = dict.fromkeys(("bottom-right", "top-left", "top-right", "bottom-left"), 0)
-    for line in figure.lines:
-        for x, y in zip(line.x, line.y, strict=True):
+    spots = [(x.x, x.y) for x in figure.lines] + [(x.x, x.y) for x in figure.points]
+    for across, along in spots:
+        for x, y in zip(across, along, strict=True):
             up, right = figure.y.fraction(float(y)) > 0.5, figure.x.fraction(float(x)) > 0.5
+            up ^= figure.y.turned
             crowd[f"{'top' if up else 'bottom'}-{'right' if right else 'left'}"] += 1
-    return min(crowd, key=crowd.__getitem__)
+    # bqplot puts a legend at the left over the words that stand beside the axis there.
+    free = [c for c in crowd if figure.y.label or c.endswith("right")]
+    return min(free, key=crowd.__getitem__)
+
+
+def _labelled(figure: Figure) -> int:
+    """How many curves and kinds of marks have a name; one alone is told by the caption."""
+    named = [x.label for x in figure.lines] + [x.label for x in figure.points]
+    return sum(map(bool, named))
 
 
 def _equal(element: Any, other: Any) -> bool:
@@ -139,6 +178,11 @@ def _elements(figure: Figure) -> Any:
     for kind in ("areas", "bands", "references", "lines"):
         for number, element in enumerate(getattr(figure, kind)):
             yield (kind, number), element
+    for number, mark in enumerate(figure.references):
+        yield ("mark labels", number), mark
+    for number, band in enumerate(figure.bands):
+        if band.label and len(band.x) == 2:
+            yield ("band labels", number), band
     for number, line in enumerate(figure.lines):
         if line.style is not None:
             yield ("hover", number), line
@@ -168,8 +212,7 @@ def _band(band: Band, _: Figure) -> dict[str, Any]:
     paint = colour(band.style)
     return {"x": np.array([band.x, band.x]), "y": np.array([band.low, band.high]),
             "fill": "between", "fill_colors": [paint], "fill_opacities": [0.18, 0.18],
-            "colors": [paint], "opacities": [0.0, 0.0], "labels": [band.label],
-            "display_legend": False}
+            "colors": [paint], "opacities": [0.0, 0.0], "display_legend": False}
 
 
 def _reference(mark: Reference, figure: Figure) -> dict[str, Any]:
@@ -177,7 +220,33 @@ def _reference(mark: Reference, figure: Figure) -> dict[str, Any]:
     ends, level = np.array([across.low, across.high]), np.full(2, mark.value)
     x, y = (level, ends) if mark.axis == "x" else (ends, level)
     return {"x": x, "y": y, "colors": ["#444444"], "stroke_width": 1.0,
-            "line_style": "dash_dotted", "labels": [mark.label], "display_legend": True}
+            "line_style": "dash_dotted", "display_legend": False}
+
+
+def _mark_label(mark: Reference, figure: Figure) -> dict[str, Any]:
+    """Above the picture for an upright line; on the line, at its end, for one across."""
+    upright = mark.axis == "x"
+    x, y = (mark.value, _top(figure.y)) if upright else (figure.x.high, mark.value)
+    share = figure.x.fraction(mark.value)
+    beside = "start" if share < 0.15 else "end" if share > 0.85 else "middle"
+    return {**_words(x, y, mark.label, "#222222"), "align": beside if upright else "end",
+            "x_offset": 0 if upright else -4, "y_offset": -8 if upright else -7}
+
+
+def _band_label(band: Band, figure: Figure) -> dict[str, Any]:
+    """Just within the upper edge of a block."""
+    edge = float(np.min(band.low) if figure.y.turned else np.max(band.high))
+    return {**_words(float(np.mean(band.x)), edge, band.label, colour(band.style)),
+            "align": "middle", "y_offset": 11}
+
+
+def _words(x: float, y: float, text: str, ink: str) -> dict[str, Any]:
+    return {"x": np.array([x]), "y": np.array([y]), "text": np.array([text]), "colors": [ink],
+            "default_size": 11, "font_weight": "normal", "apply_clip": False}
+
+
+def _top(axis: Axis) -> float:
+    return axis.low if axis.turned else axis.high
 
 
 def _line(line: Line, _: Figure) -> dict[str, Any]:
@@ -206,7 +275,7 @@ def _points(points: Points, _: Figure) -> dict[str, Any]:
     paint, kind = colour(points.style), shape(points.style)
     named = {"names": np.array(points.texts)} if points.texts else {}
     return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind), "default_size": 70,
-            "colors": ["white" if points.hollow else paint], "stroke": paint,
+            "colors": [paint], "stroke": paint, "fill": not points.hollow,
             "display_names": False, "labels": [points.label],
             "display_legend": bool(points.label), **named}
 
@@ -238,18 +307,21 @@ def _strokes(ends: Floats) -> dict[str, Any]:
 def _note(note: Note, _: Figure) -> dict[str, Any]:
     align = {"left": "start", "middle": "middle", "right": "end"}[note.align]
     ink = "#222222" if note.style is None else colour(note.style)
-    return {"x": np.array([note.x]), "y": np.array([note.y]), "text": np.array([note.text]),
-            "align": align, "colors": [ink], "default_size": 12, "font_weight": "normal"}
+    return {**_words(note.x, note.y, note.text, ink), "align": align}
 
 
 _TRAITS: dict[str, Callable[[Any, Figure], dict[str, Any]]] = {
     "field": _field, "areas": _area, "bands": _band, "references": _reference, "lines": _line,
-    "hover": _hover, "points": _points, "bars": _bars, "leaders": _leaders, "notes": _note,
+    "mark labels": _mark_label, "band labels": _band_label, "hover": _hover, "points": _points,
+    "bars": _bars, "leaders": _leaders, "notes": _note,
 }
+_ON_AXES = ("references", "mark labels", "band labels", "lines", "points", "hover")
+"""What depends on the axes or the legend of its figure, besides on itself."""
+
 _MARKS: dict[str, Any] = {
     "field": bq.HeatMap, "areas": bq.Lines, "bands": bq.Lines, "references": bq.Lines,
     "lines": bq.Lines, "hover": bq.Scatter, "points": bq.Scatter, "bars": bq.Lines,
-    "leaders": bq.Lines, "notes": bq.Label,
+    "leaders": bq.Lines, "notes": bq.Label, "mark labels": bq.Label, "band labels": bq.Label,
 }
 
 
@@ -270,7 +342,12 @@ def _ticks(axis: Axis) -> dict[str, Any]:
     prefixed = axis.scale == "log" and any(" " in text for _, text in axis.ticks)
     return {"label": axis.title, "tick_values": values,
             "tick_format": "~s" if prefixed else "~g",
-            "tick_labels": {float(v): text for v, text in axis.ticks}}
+            "tick_labels": {_as_key(v): text for v, text in axis.ticks}}
+
+
+def _as_key(value: float) -> str:
+    """A number as the browser spells it when it looks for the words of a tick."""
+    return repr(float(value)).removesuffix(".0")
 
 
 def _set_axis(drawn: Any, scale: Any, axis: Axis) -> None:

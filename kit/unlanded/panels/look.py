@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 import html
-from collections.abc import Sequence
+from collections.abc import Iterable
+
+from ..report.figure import Figure
+from ..report.tables import Table
 
 # Figures are white paper in either theme; the rest takes the theme's own colours.
 STYLE = """<style>
@@ -19,7 +22,13 @@ table.unlanded-table caption { text-align: left; font-weight: 600; padding: 4px 
 table.unlanded-table th, table.unlanded-table td { padding: 2px 12px 2px 0; text-align: right;
   border-bottom: 1px solid var(--jp-border-color2, #ccc); white-space: nowrap; }
 table.unlanded-table th:first-child, table.unlanded-table td:first-child,
-table.unlanded-table td.words { text-align: left; }
+table.unlanded-table .words { text-align: left; }
+table.unlanded-table .words { white-space: pre-line; }
+.unlanded-note { color: var(--jp-content-font-color2, #555); font-size: 90%; margin: 4px 0 0;
+  max-width: 46em; line-height: 1.35; }
+.unlanded-unseen { position: absolute; width: 1px; height: 1px; overflow: hidden;
+  clip-path: inset(50%); white-space: nowrap; }
+p.unlanded-said { margin: 4px 0; max-width: 75em; }
 .unlanded-paper.bqplot.figure { background: #fff; --bq-axis-tick-text-fill: #333;
   --bq-axislabel-fill: #111; --bq-mainheading-fill: #111; --bq-axis-path-stroke: #555;
   --bq-axis-tick-stroke: #e2e2e2; --bq-plotarea-background-fill: #fff;
@@ -35,20 +44,47 @@ CAUTION = (
 )
 
 
+def alert(text: str) -> str:
+    """A sentence that a screen reader speaks at once, as HTML."""
+    return f'<span role="alert" class="unlanded-alert">{html.escape(text)}</span>'
+
+
 def said(text: str) -> str:
     """A plain sentence as HTML."""
     return f'<span class="unlanded-said" role="status">{html.escape(text)}</span>'
 
 
-def table_html(caption: str, titles: Sequence[str], rows: Sequence[Sequence[str]]) -> str:
-    """A table with a caption and headed columns, every cell escaped.
+def table_html(table: Table) -> str:
+    """A table with its caption, headed columns and note, every cell escaped.
 
-    >>> table_html("C", ["a"], [["<b>"]]).count("&lt;b&gt;")
+    >>> from unlanded.report.tables import Column
+    >>> table_html(Table("t", "C.", (Column("a", "V"),), (("<b>",),))).count("&lt;b&gt;")
     1
     """
-    head = "".join(f'<th scope="col">{html.escape(t)}</th>' for t in titles)
-    body = "".join(
-        "<tr>" + "".join(f"<td>{html.escape(cell)}</td>" for cell in row) + "</tr>" for row in rows
-    )
-    return (f'<table class="unlanded-table"><caption>{html.escape(caption)}</caption>'
-            f"<thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>")
+    left = [c.align == "left" for c in table.columns]
+    head = "".join(f'<th scope="col" class="{_side(k)}">{html.escape(c.title)}</th>'
+                   for c, k in zip(table.columns, left, strict=True))
+    body = "".join("<tr>" + "".join(_cell(text, k) for text, k in zip(row, left, strict=True))
+                   + "</tr>" for row in table.rows)
+    note = f'<p class="unlanded-note">{html.escape(table.note)}</p>' if table.note else ""
+    return (f'<table class="unlanded-table"><caption>{html.escape(table.caption)}</caption>'
+            f"<thead><tr>{head}</tr></thead><tbody>{body}</tbody></table>{note}")
+
+
+def caption_html(figure: Figure) -> str:
+    """What stands under a picture; what it shows is said to a reader who cannot see it."""
+    return (f'<p class="unlanded-note">{html.escape(figure.caption)}'
+            f'<span class="unlanded-unseen"> {html.escape(figure.alternative)}</span></p>')
+
+
+def sentences_html(sentences: Iterable[str]) -> str:
+    """Each sentence as a paragraph."""
+    return "".join(f'<p class="unlanded-said">{html.escape(s)}</p>' for s in sentences)
+
+
+def _cell(text: str, left: bool) -> str:
+    return f'<td class="{_side(left)}">{html.escape(text)}</td>'
+
+
+def _side(left: bool) -> str:
+    return "words" if left else "number"

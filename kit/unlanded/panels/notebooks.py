@@ -5,10 +5,12 @@ nbformat and nbclient take more than a second to import, so they are imported wh
 
 from __future__ import annotations
 
+import os
 import re
 import shutil
 import sys
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 from importlib import resources
 from itertools import zip_longest
@@ -80,10 +82,15 @@ def copy_workbook(target: Path) -> tuple[list[Path], list[Path]]:
 
 
 def lab_command(folder: Path) -> list[str]:
-    """The command that opens JupyterLab in a folder, without its news and update calls."""
-    return [sys.executable, "-m", "jupyterlab", f"--ServerApp.root_dir={folder.absolute()}",
-            "--LabApp.news_url=None",
-            "--LabApp.check_for_updates_class=jupyterlab.NeverCheckForUpdate"]
+    """The command that opens JupyterLab in a folder, in the environment of `lab_environment`."""
+    return [sys.executable, "-m", "jupyterlab", f"--ServerApp.root_dir={folder.absolute()}"]
+
+
+def lab_environment() -> dict[str, str]:
+    """The environment for it: the user's own, and our setting that asks and fetches no news."""
+    ours = str(Path(__file__).resolve().parent / "jupyter")
+    known = os.environ.get("JUPYTER_CONFIG_PATH", "")
+    return {**os.environ, "JUPYTER_CONFIG_PATH": os.pathsep.join([ours, known]) if known else ours}
 
 
 def notebooks_in(folder: Path) -> tuple[Path, ...]:
@@ -116,8 +123,7 @@ def run_notebook(path: Path) -> Any:
     try:
         client.execute()
     except CellExecutionError as error:
-        last = str(error).strip().splitlines()[-1]
-        raise Refused(path.name, "a cell fails", given=last) from None
+        raise Refused(path.name, "a cell fails", given=f"{error.ename}: {error.evalue}") from None
     except (CellTimeoutError, DeadKernelError) as error:
         raise Refused(path.name, "a cell does not finish", given=type(error).__name__) from None
     return notebook
@@ -125,21 +131,15 @@ def run_notebook(path: Path) -> Any:
 
 def compare(path: Path) -> tuple[Moved, ...]:
     """Run a notebook and say which lines of its output are not those it holds."""
-    import nbformat
-
-    fresh = run_notebook(path)
-    stored = nbformat.read(path, 4)
-    cells = zip(stored.cells, fresh.cells, strict=True)
-    return tuple(m for n, (old, new) in enumerate(cells, 1) if old.cell_type == "code"
-                 for m in _compared(path.name, n, old, new))
+    return _moved(path, run_notebook(path))
 
 
 def refresh(path: Path) -> tuple[Moved, ...]:
     """Run a notebook and store its output, the same bytes for the same output; what moved."""
     import nbformat
 
-    moved = compare(path)
     fresh = run_notebook(path)
+    moved = _moved(path, fresh)
     fresh.metadata = {"kernelspec": {"display_name": "Python 3", "language": "python",
                                      "name": "python3"}, "language_info": {"name": "python"}}
     for number, cell in enumerate(fresh.cells):
@@ -151,11 +151,28 @@ def refresh(path: Path) -> tuple[Moved, ...]:
     return moved
 
 
+def each(
+    do: Callable[[Path], tuple[Moved, ...]], found: Sequence[Path]
+) -> Iterator[tuple[Moved, ...]]:
+    """`compare` or `refresh` of each notebook, as many at once as there are cores."""
+    with ThreadPoolExecutor(os.cpu_count() or 1) as pool:
+        yield from pool.map(do, found)
+
+
 def lines_of(cell: Any) -> list[str]:
     """What a cell printed and showed as text, line by line."""
     texts = [o.text if o.output_type == "stream" else o.get("data", {}).get("text/plain", "")
              for o in cell.outputs]
     return [line.rstrip() for text in texts for line in text.splitlines()]
+
+
+def _moved(path: Path, fresh: Any) -> tuple[Moved, ...]:
+    import nbformat
+
+    stored = nbformat.read(path, 4)
+    cells = zip(stored.cells, fresh.cells, strict=True)
+    return tuple(m for n, (old, new) in enumerate(cells, 1) if old.cell_type == "code"
+                 for m in _compared(path.name, n, old, new))
 
 
 def _compared(name: str, number: int, old: Any, new: Any) -> Iterator[Moved]:

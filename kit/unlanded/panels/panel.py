@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import base64
 import tempfile
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -12,11 +12,11 @@ import ipywidgets as w
 
 from ..errors import Refused
 from ..report.figure import Figure
-from .desk import Desk, cases_beside
-from .look import CAUTION, STYLE, said, table_html
-from .quantity import alert
-
-__all__ = ["Panel", "said", "table_html"]
+from .case_bar import CaseBar
+from .desk import Desk
+from .live import LiveFigure
+from .look import CAUTION, STYLE, alert, said
+from .pages import Pages
 
 
 class Panel(w.VBox):  # type: ignore[misc]
@@ -26,15 +26,24 @@ class Panel(w.VBox):  # type: ignore[misc]
     and the key numbers as text, which is what a rerun compares and a screen reader reads.
     """
 
+    pages: Pages | None = None
+
     def __init__(self, case: str | Path | Desk) -> None:
         self.desk = case if isinstance(case, Desk) else Desk(case)
-        self._bar = CaseBar(self.desk)
         self.message = w.HTML()
         self.body = w.VBox(self.build())
         self.body.add_class("unlanded-body")
-        super().__init__([w.HTML(STYLE), self._bar, self.message, self.body, w.HTML(CAUTION)])
+        self.take_away = TakeAway(self)
+        if self.pages is not None:
+            self.pages.observe(lambda _: self.take_away.renew(), "selected_index")
+        super().__init__([w.HTML(STYLE), CaseBar(self.desk), self.message, self.body,
+                          self.take_away, w.HTML(CAUTION)])
         self.add_class("unlanded-panel")
-        self.desk.observe(lambda _: self.guarded(self.renew), "case")
+        self.desk.observe(lambda _: self._renew(), "case")
+
+    def _renew(self) -> None:
+        self.guarded(self.renew)
+        self.take_away.renew()
 
     def build(self) -> Sequence[w.Widget]:
         """The widgets of the panel, top to bottom, showing the case as it is."""
@@ -46,6 +55,14 @@ class Panel(w.VBox):  # type: ignore[misc]
 
     def figures(self) -> tuple[Figure, ...]:
         """The figures as they stand; the first one is the picture of the bundle."""
+        return tuple(live.figure for live in self.live().values())
+
+    def live(self) -> Mapping[str, LiveFigure]:
+        """The figures on the screen, by what a choice of them calls each."""
+        return {}
+
+    def offers(self) -> Sequence[tuple[str, dict[str, Any]]]:
+        """What can be put into the memo now: in words, and as the case file has it."""
         return ()
 
     def text(self) -> str:
@@ -72,37 +89,56 @@ class Panel(w.VBox):  # type: ignore[misc]
         return bundle
 
 
-class CaseBar(w.HBox):  # type: ignore[misc]
-    """Which case is on the desk, and the buttons that read and save it."""
+class TakeAway(w.HBox):  # type: ignore[misc]
+    """Buttons that put a figure or table into the case's memo, and save pictures."""
 
-    def __init__(self, desk: Desk) -> None:
-        self.desk = desk
-        here = desk.path
-        cases = list(dict.fromkeys([*(p.resolve() for p in cases_beside()), here.resolve()]))
-        self.pick = w.Dropdown(description="Case", options=[(p.name, p) for p in sorted(cases)],
-                               value=here.resolve(), style={"description_width": "3em"})
-        self.save = w.Button(description="Save case", icon="save",
-                             tooltip="Write the changes to the case file; its remarks are kept")
-        self.again = w.Button(description="Read again", icon="refresh",
-                              tooltip="Read the file again and drop what was not saved")
+    def __init__(self, panel: Panel) -> None:
+        self._panel = panel
+        narrow = {"description_width": "5em"}
+        self.offer = w.Dropdown(description="Of these", style=narrow, layout={"width": "20em"})
+        self.put = w.Button(description="Into the memo", icon="plus",
+                            tooltip="Add it to the memo of this case; save the case to keep it")
+        self.picture = w.Dropdown(description="Picture", style=narrow, layout={"width": "20em"})
+        self.png = w.Button(description="Save PNG", icon="download", layout={"width": "8em"},
+                            tooltip="Save the picture as it is on the screen, as PNG")
+        self.svg = w.Button(description="Save SVG", icon="download", layout={"width": "8em"},
+                            tooltip="Save the picture as it is on the screen, as SVG")
         self.state = w.HTML()
-        super().__init__([self.pick, self.save, self.again, self.state])
-        self.add_class("unlanded-bar")
-        self.pick.observe(lambda change: self._do(lambda: desk.open(change["new"])), "value")
-        self.save.on_click(lambda _: self._do(desk.save, "Saved."))
-        self.again.on_click(lambda _: self._do(desk.open))
-        desk.observe(lambda _: self._tell(), "unsaved")
+        self.put.on_click(lambda _: self._put())
+        self.png.on_click(lambda _: self._chosen().widget.save_png(f"{self._key()}.png", scale=2))
+        self.svg.on_click(lambda _: self._chosen().widget.save_svg(f"{self._key()}.svg"))
+        super().__init__(layout={"flex_flow": "wrap"})
+        self.add_class("unlanded-take-away")
+        self.renew()
 
-    def _do(self, action: Callable[[], None], done: str = "") -> None:
+    def renew(self) -> None:
+        """Offer what the panel has now."""
+        offers, live = [words for words, _ in self._panel.offers()], list(self._panel.live())
+        for choice, options in ((self.offer, offers), (self.picture, live)):
+            if list(choice.options) != options:
+                choice.options, choice.index = options, 0 if options else None
+        if self._panel.pages is not None and self._panel.pages.front in live:
+            self.picture.value = self._panel.pages.front
+        shown = [self.offer, self.put] if offers else []
+        shown += [self.picture, self.png, self.svg] if live else []
+        self.children = (*shown, self.state)
+
+    def _put(self) -> None:
+        entry = dict(self._panel.offers())[self.offer.value]
         try:
-            action()
+            new = self._panel.desk.add_to_memo(entry)
         except Refused as refusal:
             self.state.value = alert(str(refusal))
             return
-        self._tell(done)
+        count = len(self._panel.desk.added)
+        self.state.value = said(f"Added to the memo, as no. {count}. Save the case to keep it."
+                                if new else "It is in the memo already.")
 
-    def _tell(self, done: str = "") -> None:
-        self.state.value = said("Not saved yet." if self.desk.unsaved else done)
+    def _chosen(self) -> LiveFigure:
+        return self._panel.live()[self.picture.value]
+
+    def _key(self) -> str:
+        return self._chosen().figure.key
 
 
 def picture(figure: Figure) -> bytes:

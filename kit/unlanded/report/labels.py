@@ -10,6 +10,7 @@ from itertools import product
 LETTER = 0.0100  # width of a letter, as a fraction of the x axis
 ROW = 0.066  # height of a row of words, as a fraction of the y axis
 GAP = 0.008
+SAME = 0.006  # poles nearer than this are drawn as one
 ROWS = 13
 
 
@@ -36,9 +37,12 @@ class Flag:
         """Whether words meet words, or a pole runs through words, either way."""
         a, b = self.box, other.box
         words = a[0] < b[1] + GAP and b[0] < a[1] + GAP and a[2] < b[3] and b[2] < a[3]
-        return words or self._spears(b) or other._spears(a)
+        return words or self._spears(other) or other._spears(self)
 
-    def _spears(self, box: tuple[float, float, float, float]) -> bool:
+    def _spears(self, other: Flag) -> bool:
+        box = other.box
+        if abs(self.x - other.x) < SAME:
+            return False  # one pole: where one runs, the other's words begin
         low, high = sorted((self.y, self.height))
         beside = box[0] - GAP < self.x < box[1] + GAP
         return beside and low < box[3] and box[2] < high

@@ -23,6 +23,21 @@ def pdf_bytes(memo: Memo, pictures: Mapping[str, Path], *, paper: str = "a4") ->
 
     `paper` is "a4" or "us-letter".
     """
+    pdf = _set(memo, pictures, paper, pdf_standards=["ua-1"])
+    assert isinstance(pdf, bytes)
+    return pdf
+
+
+def page_pictures(
+    memo: Memo, pictures: Mapping[str, Path], *, paper: str = "a4", dots: float = 80.0
+) -> tuple[bytes, ...]:
+    """Its pages as PNG, `dots` to the inch, to look at before it is written."""
+    pages = _set(memo, pictures, paper, format="png", ppi=dots)
+    return tuple(pages) if isinstance(pages, list) else (pages,)
+
+
+def _set(memo: Memo, pictures: Mapping[str, Path], paper: str, **form: Any) -> Any:
+    """The memo as typst sets it in a form."""
     import typst
     from matplotlib import get_data_path
 
@@ -33,17 +48,15 @@ def pdf_bytes(memo: Memo, pictures: Mapping[str, Path], *, paper: str = "a4") ->
         (room / "memo.typ").write_bytes(files(__package__).joinpath("memo.typ").read_bytes())
         (room / "data.json").write_text(_json(memo, paper), encoding="utf-8")
         try:
-            pdf = typst.compile(
+            return typst.compile(
                 room / "memo.typ",
                 root=room,
                 font_paths=[Path(get_data_path()) / "fonts" / "ttf"],
                 ignore_system_fonts=True,
-                pdf_standards=["ua-1"],
+                **form,
             )
         except typst.TypstError as problem:
             raise Refused("memo.pdf", "could not be set", given=problem.message) from None
-    assert isinstance(pdf, bytes)
-    return pdf
 
 
 def _json(memo: Memo, paper: str) -> str:

@@ -1,0 +1,143 @@
+"""What a cause of any size would read: each reading taken, against the size of the cause."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from ..errors import Refused
+from ..reference.records import Value
+from ..study.hypotheses import CAUSES, Cause, Variant, size_at, size_range, variants
+from ..study.observation import Observation
+from ..study.reduced import Reduced
+from ..study.scene import Scene
+from ..units import show
+from .causes_words import reading_words
+from .figure import Band, Figure, Line, Points, Reference, log_axis
+from .words import cut, listed
+
+Real = NDArray[np.float64]
+SIZED: tuple[Cause, ...] = tuple(
+    c for c in CAUSES if size_range(c, omega=1.0, length=1.0) is not None)
+_POINTS = 61
+_FLOOR = 0.01  # volts: less is drawn as this
+_DRAWN = 6  # readings on one picture
+
+
+@dataclass(frozen=True, eq=False)
+class Trial:
+    """A cause tried on one suspect, all unknowns as they are most likely.
+
+    Parameters
+    ----------
+    reduced : the run with its suspects
+    readings : that were taken
+    suspect : the conductor that the cause is tried on
+    cause : one that has a size; nothing but capacitive coupling is on the other suspects
+    """
+
+    reduced: Reduced
+    readings: tuple[Observation, ...]
+    suspect: str
+    cause: Cause
+
+    def __post_init__(self) -> None:
+        if self.cause not in SIZED:
+            raise Refused("cause", "has no size to try", given=self.cause,
+                          hint=f"known: {', '.join(SIZED)}")
+        if self.suspect not in self.reduced.suspects:
+            raise Refused("conductor", "is not one that a cause is looked for on",
+                          given=self.suspect, hint=f"known: {', '.join(self.reduced.suspects)}")
+
+    @property
+    def unit(self) -> str:
+        """Of the size: Ω, or V for magnetic pick-up."""
+        return self.sizes.unit
+
+    @cached_property
+    def sizes(self) -> Value:
+        """The range that the size is looked for in."""
+        found = size_range(self.cause, omega=float(self.reduced.omega[0]),
+                           length=self.reduced.run.length)
+        assert found is not None
+        return found
+
+    def volts(self, shares: Real) -> Real:
+        """Voltage of each reading (K, Q) [V] at shares (Q,) of the range of sizes, 0 to 1."""
+        scores = np.zeros((len(shares), len(self._scene.coordinates)))
+        return self._scene.volts(self.readings, np.asarray(shares, dtype=float), scores)
+
+    def volts_at(self, size: float) -> Real:
+        """Voltage of each reading (K,) [V] with the cause at a size within its range."""
+        low, high = self.sizes.low, self.sizes.high
+        if not low <= size <= high * (1 + 1e-12):
+            raise Refused("size", f"must be {show(low, self.unit)} to {show(high, self.unit)}",
+                          given=show(size, self.unit, 6))
+        share = math.log(size / low) / math.log(high / low)
+        return np.asarray(self.volts(np.array([share]))[:, 0])
+
+    @cached_property
+    def curves(self) -> tuple[Real, Real]:
+        """Sizes (Q,) and the voltages of each reading there (K, Q) [V]."""
+        shares = np.linspace(0.0, 1.0, _POINTS)
+        return size_at(shares, self.sizes), self.volts(shares)
+
+    @cached_property
+    def _scene(self) -> Scene:
+        run, reduced = self.reduced.run, self.reduced
+        ways = variants(run.supply.lines, reduced.cable_lines())
+        plain = next(v for v in ways if v.cause == "capacitive coupling")
+        tried = next(v for v in ways if v.cause == self.cause)
+        chosen: tuple[Variant, ...] = tuple(
+            tried if n == self.suspect else plain for n in reduced.suspects)
+        return Scene(reduced, chosen, tuple(dict.fromkeys(r.instrument for r in self.readings)))
+
+
+def tried_figure(trial: Trial, size: float) -> Figure:
+    """Voltage of each reading against the size of the cause; marked at `size`."""
+    sizes, volts = trial.curves
+    here = trial.volts_at(size)
+    kept = range(min(_DRAWN, len(trial.readings)))
+    names = [cut(reading_words(trial.readings[k]), 60) for k in kept]
+    said = [f"{name}: would be {show(float(here[k]), 'V')}" for k, name in enumerate(names)]
+    low, high = trial.sizes.low, trial.sizes.high
+    top = max([1.0, *(float(volts[k].max()) for k in kept)])
+    bands = tuple(_read(trial.readings[k], sizes, k) for k in kept)
+    return Figure(
+        key="tried", title=f"{trial.cause[:1].upper()}{trial.cause[1:]} on {trial.suspect}: "
+        "what it would read",
+        x=log_axis("Size of the cause", trial.unit, low, high),
+        y=log_axis("Voltage, RMS", "V", _FLOOR, 2 * top),
+        caption=f"The voltage that each reading would have with {trial.cause} of that size on "
+        f"“{trial.suspect}”, everything else as it is most likely. Shaded across: what was read, "
+        "with the instrument's accuracy. A cause fits where every curve is in its own shade.",
+        alternative=f"At {show(size, trial.unit)}: {listed(said)}.",
+        numbers=tuple(said),
+        bands=tuple(b for b in bands if b is not None),
+        lines=tuple(Line(sizes, np.maximum(volts[k], _FLOOR),
+                         f"reading {k + 1}, {trial.readings[k].text}", k) for k in kept),
+        references=(Reference(size, "x", f"tried, {show(size, trial.unit)}"),),
+        points=tuple(Points(np.array([size]), np.array([max(float(here[k]), _FLOOR)]), "", k,
+                            (said[k],)) for k in kept),
+    )
+
+
+def fits(trial: Trial, size: float) -> tuple[bool, ...]:
+    """Whether each reading is what the cause of that size would show, within the accuracy."""
+    return tuple(bool(r.low - r.half_width <= v <= r.high + r.half_width)
+                 for r, v in zip(trial.readings, trial.volts_at(size), strict=True))
+
+
+def _read(reading: Observation, sizes: Real, style: int) -> Band | None:
+    """What was read as a band across the picture; None for a lamp."""
+    if reading.instrument.threshold is not None or not math.isfinite(reading.high):
+        return None
+    low = max(reading.low - reading.half_width, _FLOOR)
+    high = max(reading.high + reading.half_width, 1.2 * _FLOOR)
+    ends = np.array([sizes[0], sizes[-1]])
+    return Band(ends, np.full(2, low), np.full(2, high), "", style)
+
