@@ -1,0 +1,94 @@
+"""Switching arrangements against capacitor networks worked by hand."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+import pytest
+
+from unlanded.physics.burden import Burden
+from unlanded.physics.screen import floating_screen, own_screens
+from unlanded.physics.section import Conductor, Plane, Section
+from unlanded.study.arrangements import (
+    Arrangement,
+    contact_at_supply,
+    remote_contact,
+    spares_earthed,
+    spares_joined,
+    switched_in_line,
+    switched_in_neutral,
+    two_way,
+)
+from unlanded.study.run import Run
+from unlanded.study.supply import Supply
+
+NAMES = "abc"
+SECTION = Section(tuple(Conductor(n, 0.004 * k, 0.01, 7e-4) for k, n in enumerate(NAMES)), Plane(0))
+C_AB, C_AC, C_BC, C_G = 20e-12, 8e-12, 30e-12, 40e-12
+MATRIX = np.array([[C_AB + C_AC + C_G, -C_AB, -C_AC], [-C_AB, C_AB + C_BC + C_G, -C_BC],
+                   [-C_AC, -C_BC, C_AC + C_BC + C_G]])
+LENGTH, OMEGA, LOAD = 200.0, 2 * math.pi * 50, 50e3
+
+
+def level(arrangement: Arrangement, matrix: np.ndarray = MATRIX) -> float:
+    run = Run(SECTION, LENGTH, Supply(230.0, 50.0), arrangement.near, arrangement.far, (7e-3,) * 3,
+              capacitance=matrix)
+    return abs(run.voltage(arrangement.load.a, arrangement.load.b))
+
+
+def divided(coupling: float, rest: float, to_load: float = LOAD) -> float:
+    """230 V through `coupling` onto `rest` beside the load, over the whole length."""
+    return 230 * OMEGA * LENGTH * coupling / abs(OMEGA * LENGTH * (coupling + rest) - 1j / to_load)
+
+
+def test_remote_contact() -> None:
+    # Core c floats too: it lies in series between a and b, and from b to earth.
+    found = level(remote_contact("a", "b", load=Burden(LOAD)))
+    star = C_AC + C_BC + C_G
+    coupling = C_AB + C_AC * C_BC / star
+    rest = C_G + C_BC * C_G / star
+    assert found == pytest.approx(divided(coupling, rest), rel=1e-4, abs=0)
+
+
+def test_switch_drop_with_a_neutral() -> None:
+    found = level(switched_in_line("a", "b", "c", load=Burden(LOAD)))
+    assert found == pytest.approx(divided(C_AB, C_G + C_BC), rel=1e-3, abs=0)
+
+
+def test_travellers_couple_as_a_switch_drop_does() -> None:
+    both = [level(two_way(("a", "b"), "c", load=Burden(LOAD))),
+            level(switched_in_line("a", "b", "c", load=Burden(LOAD)))]
+    assert both[0] == pytest.approx(both[1], rel=1e-9, abs=0)
+
+
+def test_switched_in_the_neutral_the_load_stays_on_the_line() -> None:
+    # The floating core is pulled toward earth by its own capacitance; the load carries the rest.
+    found = level(switched_in_neutral("a", "b", load=Burden(LOAD)))
+    star = C_AC + C_BC + C_G
+    beside = C_AB + C_AC * C_BC / star
+    to_earth = C_G + C_BC * C_G / star
+    by_hand = 230 * OMEGA * LENGTH * to_earth / abs(
+        OMEGA * LENGTH * (beside + to_earth) - 1j / LOAD)
+    assert found == pytest.approx(by_hand, rel=1e-4, abs=0)
+
+
+def test_contact_at_the_supply_leaves_nothing() -> None:
+    assert level(contact_at_supply("a", "b", load=Burden(LOAD))) == 0.0
+
+
+def test_earthing_the_spare_takes_its_part_away() -> None:
+    plain = remote_contact("a", "b", load=Burden(LOAD))
+    bonded = Arrangement(spares_earthed(plain.near, ("c",)), plain.far, plain.load)
+    assert level(bonded) == pytest.approx(divided(C_AB, C_G + C_BC), rel=1e-3, abs=0)
+    assert level(bonded) < level(plain)
+    joined = Arrangement(spares_joined(plain.near, ("c",), "b"), plain.far, plain.load)
+    assert level(joined) == pytest.approx(divided(C_AB + C_AC, 2 * C_G), rel=1e-3, abs=0)
+
+
+def test_screens_earthed_and_not() -> None:
+    plain = remote_contact("a", "b", load=Burden(LOAD))
+    floating = level(plain, floating_screen(MATRIX, to_earth=10e-12))
+    earthed = level(plain)
+    alone = level(plain, own_screens(MATRIX, [0]))
+    assert floating > earthed > 100 * alone
