@@ -56,7 +56,7 @@ def test_loading_figure_says_its_ends_and_marks() -> None:
     note, = figure.notes
     assert note.text == "meter: 50.0 V"
     assert note.target == pytest.approx((1e6, 50), rel=1e-9, abs=0)
-    assert "range of permittivity" in figure.caption
+    assert "not known of the inputs" in figure.caption
     assert "Shaded" not in loading_figure(PAIR, OHMS, volts, []).caption
 
 

@@ -23,6 +23,7 @@ _KEYS: dict[str, tuple[frozenset[str], frozenset[str]]] = {
     "readings": (frozenset({"from", "to", "meter"}), frozenset()),
     "tried cause": (frozenset({"conductor", "cause"}), frozenset({"size"})),
     "added load": (frozenset({"leak"}), frozenset()),
+    "resistor beside": (frozenset({"load", "resistor"}), frozenset()),
 }
 
 
@@ -31,10 +32,12 @@ class Added(Table):
 
     kind : "formulas", nearest to the section; of a pair (`from`, `to`) and a `meter`
     of some resistance: "loading", "length" (figures) or "readings" (a table); "tried cause", what
-    a `cause` of some `size` on a `conductor` would read; "added load", more pieces of a `leak`.
+    a `cause` of some `size` on a `conductor` would read; "added load", more pieces of a `leak`;
+    "resistor beside", what a `resistor` leaves on a `load` of `[[operation]]`.
     """
 
-    kind: Literal["formulas", "loading", "length", "readings", "tried cause", "added load"]
+    kind: Literal["formulas", "loading", "length", "readings", "tried cause", "added load",
+                  "resistor beside"]
     a: Point | None = Field(None, alias="from", examples=["black@far"])
     b: Point | None = Field(None, alias="to", examples=["earth"])
     meter: Resistance | None = Field(None, examples=["10 Mohm"])
@@ -42,6 +45,8 @@ class Added(Table):
     cause: CauseWord | None = Field(None, examples=["leakage to earth"])
     size: Line = Field("", examples=["200 kohm"])
     leak: Title | None = Field(None, examples=["desk computers"])
+    load: Title | None = Field(None, examples=["interlock relay"])
+    resistor: Resistance | None = Field(None, examples=["22 kohm"], gt=0)
 
     @model_validator(mode="after")
     def _keys_of_its_kind(self) -> Self:

@@ -206,12 +206,13 @@ class CaseFile(Table):
         return self
 
     @model_validator(mode="after")
-    def _adds_known_leaks(self) -> Self:
-        names = [entry.name for entry in self.standing]
-        found = [Mistake(f"memo.added[{count + 1}].leak", "stands behind no device here", leak,
-                         nearest(leak, names) if names else "")
-                 for count, entry in enumerate(self.memo.added)
-                 if (leak := entry.leak) is not None and leak not in names]
+    def _adds_what_there_is(self) -> Self:
+        known = {"leak": [entry.name for entry in self.standing],
+                 "load": [entry.name for entry in self.operation]}
+        found = [Mistake(f"memo.added[{count + 1}].{key}", "is not in this case", name,
+                         nearest(name, names) if names else "")
+                 for count, entry in enumerate(self.memo.added) for key, names in known.items()
+                 if (name := getattr(entry, key)) is not None and name not in names]
         if found:
             raise Refused.all_of(found)
         return self

@@ -26,17 +26,20 @@ from .sections import section_of
 Group = tuple[Distribution, tuple[str, ...]]
 
 
-def uncertain_run(case: Case, run: Run | None = None) -> UncertainRun:
+def uncertain_run(
+    case: Case, run: Run | None = None, like: UncertainRun | None = None
+) -> UncertainRun:
     """The run of the case with its spread: `[spread]`, and the ranges of the materials.
 
-    `run` is that of the case, where it is there already.
+    `run` is that of the case, where it is there already; `like` has the same section, and the
+    same is not known of it.
     """
     content = case.content
     run = run_of(content) if run is None else run
     table = content.spread
     return UncertainRun(
         run,
-        _section(content, run.section),
+        like.section if like else _section(content, run.section),
         None if table.length is None else table.length.over(run.length),
         _share(table, run.supply.voltage),
         {label: within(1.0, tolerance) for label, tolerance in table.loads.items()},

@@ -25,13 +25,13 @@ from .desk import Desk
 PAPERS = {"as the units": None, "A4": "a4", "US Letter": "us-letter"}
 WORDS = {
     "expected": "Expected readings", "causes": "What the readings mean",
-    "margin": "Residual-current margin", "operation": "What it may hold in",
+    "margin": "Residual-current margin", "operation": "False operation",
     "annex": "Annex: readings on the other pairs",
 }
 _KINDS = {
     "formulas": "Formulas near to the section", "loading": "Reading against impedance",
     "length": "Reading against run length", "readings": "Table of readings",
-    "tried cause": "Cause tried", "added load": "Added load",
+    "tried cause": "Cause tried", "added load": "Added load", "resistor beside": "Resistor beside",
 }
 
 
@@ -112,6 +112,7 @@ def added_words(entry: Added) -> str:
         "pair": pair_words(entry.a, entry.b) if entry.a and entry.b else "",
         "meter": f"meter {show(entry.meter, 'Ω')}" if entry.meter is not None else "",
         "cause": f"{entry.cause} on {entry.conductor}" if entry.cause else "",
-        "size": entry.size, "leak": entry.leak or "",
+        "size": entry.size, "leak": entry.leak or "", "load": entry.load or "",
+        "resistor": show(entry.resistor, "Ω") if entry.resistor else "",
     }
     return ", ".join([_KINDS[entry.kind], *(str(v) for v in about.values() if v)])

@@ -12,12 +12,13 @@ from ..report.pair import YOURS
 from ..report.words import pair_words
 from ..study.readings import Pair
 from .live import LiveFigure
-from .look import said, table_html
+from .look import alert, said, table_html
 from .panel import Panel
 from .quantity import written
 from .quantity_box import QuantityBox
-from .readings_model import METER, ReadingModel
+from .readings_model import METER, Bands, ReadingModel
 from .run_model import LENGTH
+from .work import SETTLED, Work
 
 
 class ReadingPanel(Panel):
@@ -34,8 +35,10 @@ class ReadingPanel(Panel):
         self.impedance = QuantityBox(METER, model.resistance, model.set_resistance)
         self.answer, self.table = w.HTML(), w.HTML()
         self.loading, self.length = LiveFigure(model.loading()), LiveFigure(model.length())
+        self.work = Work(lambda _: None)
         self.pair.observe(self._picked, "value")
         model.observe(lambda _: self.guarded(self._draw), "sheet")
+        model.bands()
         self._draw()
         figures = w.HBox([self.loading.view, self.length.view])
         return [self.pair, w.HBox([self.run_length, self.impedance], layout={"flex_flow": "wrap"}),
@@ -71,12 +74,21 @@ class ReadingPanel(Panel):
             self.model.pair = change["new"]
 
     def _draw(self) -> None:
-        self.loading.update(self.model.loading())
         self.length.update(self.model.length())
         self.answer.value = said(self.model.answer())
-        self.table.value = table_html(self.model.table())
         self.impedance.show(self.model.resistance)
+        self._draw_banded(None)
+        self.work.start(lambda _: self.model.bands(), self._draw_banded, self._refused,
+                        after=SETTLED)
+
+    def _draw_banded(self, _: Bands | None) -> None:
+        """What has a band over all that is not known, which follows a little later."""
+        self.loading.update(self.model.loading())
+        self.table.value = table_html(self.model.table())
         self._let_drag()
+
+    def _refused(self, sentence: str) -> None:
+        self.message.value = alert(sentence)
 
     def _let_drag(self) -> None:
         """Let the mark of your meter be dragged along the curve."""

@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import Any
 
 import traitlets
 
 from ..case.build import build_run, case_instruments
+from ..case.uncertainty import uncertain_run
 from ..reference.instruments import Instrument
 from ..report.figure import Figure
 from ..report.pair import (
     IMPEDANCES,
+    Real,
     lengths_for,
     pair_length,
     pair_loading,
@@ -20,8 +23,10 @@ from ..report.pair import (
 )
 from ..report.tables import Table
 from ..report.words import pair_words
+from ..study.banded import loading_band, spread_sheet
 from ..study.readings import Pair, ReadingSheet, ports_along, reading_sheet, usual_pairs
 from ..study.run import Port, Run
+from ..study.uncertain import UncertainRun
 from ..units import show, si
 from .desk import Desk
 from .quantity import Quantity, written
@@ -31,8 +36,20 @@ METER = Quantity("Meter impedance", "ohm", float(IMPEDANCES[0]), float(IMPEDANCE
 LENGTHS = 33  # points of a live curve
 
 
+@dataclass(frozen=True, eq=False)
+class Bands:
+    """What is lowest and highest: of a sheet's readings, and of the voltage at `IMPEDANCES` [V]."""
+
+    of: ReadingSheet
+    sheet: ReadingSheet
+    loading: tuple[Real, Real]
+
+
 class ReadingModel(traitlets.HasTraits):
     """The readings on one pair of one case, with a meter of any resistance beside the case's own.
+
+    What is shown is worked out at once; the bands over all that is not known take longer, and are
+    worked out when they are asked for (`bands`).
 
     Traits
     ------
@@ -47,22 +64,32 @@ class ReadingModel(traitlets.HasTraits):
 
     def __init__(self, desk: Desk) -> None:
         self.desk = desk
-        self._runs: tuple[Run, ...] = ()
+        self._uncertain: UncertainRun | None = None
+        self._about: object = None
         self._along: tuple[object, tuple[Port, ...]] = (None, ())
+        self._bands: Bands | None = None
         super().__init__()
         self.read_case()
 
     @property
     def run(self) -> Run:
         """The run of the case as it is now."""
-        return self._runs[0]
+        return self.uncertain.run
+
+    @property
+    def uncertain(self) -> UncertainRun:
+        """The same, with what is not known of it."""
+        assert self._uncertain is not None
+        return self._uncertain
 
     def read_case(self) -> None:
         """Take over the case that is on the desk; the pair stays where the case still has it."""
-        old = self._runs
-        fresh = (build_run(self.desk.case, limit) for limit in ("likely", "low", "high"))
-        self._runs = tuple(keeping(run, old[k] if old else None) for k, run in enumerate(fresh))
-        self.pairs = tuple(usual_pairs(self.run))
+        content, old = self.desk.case.content, self._uncertain
+        about = (content.run.cable, content.run.surround, content.spread)
+        same = old if about == self._about else None
+        run = keeping(build_run(self.desk.case), old.run if old else None)
+        self._uncertain, self._about = uncertain_run(self.desk.case, run, same), about
+        self.pairs = tuple(usual_pairs(run))
         if self.pair not in self.pairs:
             self.pair = self._first_pair()
         self.renew()
@@ -70,10 +97,23 @@ class ReadingModel(traitlets.HasTraits):
     @traitlets.observe("pair", "resistance")
     def renew(self, _: object = None) -> None:
         """Work out the sheet of the pair again."""
-        if not self._runs or self.pair not in self.pairs:
-            return
-        _, low, high = self._runs
-        self.sheet = reading_sheet(self.run, self._tools, [self.pair], low=low, high=high)
+        if self._uncertain is not None and self.pair in self.pairs:
+            self.sheet = reading_sheet(self.run, self._tools, [self.pair])
+
+    def bands(self) -> Bands:
+        """Lowest and highest over all that is not known, of each reading and of the curve."""
+        sheet, coverage = self.sheet, self.desk.case.content.spread.coverage
+        if self._bands is None or self._bands.of is not sheet:
+            pair, uncertain = self.pair, self.uncertain
+            self._bands = Bands(
+                sheet, spread_sheet(sheet, uncertain, coverage=coverage).sheet,
+                loading_band(uncertain, pair, IMPEDANCES, coverage=coverage))
+        return self._bands
+
+    @property
+    def known_bands(self) -> Bands | None:
+        """The bands, where they have been worked out for the sheet as it is."""
+        return self._bands if self._bands and self._bands.of is self.sheet else None
 
     @property
     def _tools(self) -> tuple[Instrument, ...]:
@@ -89,7 +129,8 @@ class ReadingModel(traitlets.HasTraits):
 
     def loading(self) -> Figure:
         """Reading against the impedance of the meter, with every instrument marked."""
-        return pair_loading(self._runs, self.sheet, self.pair)
+        known = self.known_bands
+        return pair_loading(self.sheet, self.pair, known.loading if known else None)
 
     def length(self) -> Figure:
         """Reading against the length of the run, on your meter and some of the case's."""
@@ -99,7 +140,8 @@ class ReadingModel(traitlets.HasTraits):
 
     def table(self) -> Table:
         """The sheet of the pair, as the table under the figures shows it."""
-        return pair_table(self.sheet, self.pair)
+        known = self.known_bands
+        return pair_table(known.sheet if known else self.sheet, self.pair, banded=bool(known))
 
     def answer(self) -> str:
         """The pair in one sentence."""
@@ -108,7 +150,8 @@ class ReadingModel(traitlets.HasTraits):
                 f"behind {show(abs(row.source_impedance), 'Ω')}; {row.remark}.")
 
     def text(self) -> str:
-        """The same as lines of text."""
+        """The same as lines of text, with the bands."""
+        self.bands()
         return "\n".join([self.answer(), *(
             f"{name}: reads {reads} ({low} to {high}), loads it by {by}, adds {adds}"
             for name, reads, low, high, by, adds in self.table().rows)])

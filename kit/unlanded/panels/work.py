@@ -9,6 +9,7 @@ from typing import Any, TypeVar
 from ..errors import Refused
 from ..study.causes import Progress
 
+SETTLED = 0.25  # seconds after a step from which a handle counts as at rest
 LOOK = 0.1  # seconds between two looks at how far it is
 Made = TypeVar("Made")
 
@@ -31,11 +32,12 @@ class Work:
 
     def start(
         self, job: Callable[[Progress], Made], then: Callable[[Made], None],
-        otherwise: Callable[[str], None],
+        otherwise: Callable[[str], None], *, after: float = 0.0,
     ) -> None:
         """Do `job` in a thread, and `then` with its result in the loop; at once where none runs.
 
-        `otherwise` is called with a sentence where it is refused or stopped.
+        `otherwise` is called with a sentence where it is refused or stopped. It begins `after` so
+        many seconds, unless another has been asked for by then.
         """
         self._number += 1
         try:
@@ -43,15 +45,18 @@ class Work:
         except RuntimeError:
             self._finish(lambda: job(lambda _: None), then, otherwise)
             return
-        self._task = loop.create_task(self._beside(job, then, otherwise, self._number))
+        self._task = loop.create_task(self._beside(job, then, otherwise, after))
 
     def stop(self) -> None:
         """Stop what is being done at its next report."""
         self._number += 1
 
     async def _beside(self, job: Callable[[Progress], Any], then: Callable[[Any], None],
-                      otherwise: Callable[[str], None], number: int) -> None:
-        done = [0.0]
+                      otherwise: Callable[[str], None], after: float) -> None:
+        done, number = [0.0], self._number
+        await asyncio.sleep(after)
+        if number != self._number:
+            return
 
         def progress(share: float) -> None:
             if number != self._number:

@@ -6,18 +6,21 @@ from dataclasses import replace
 
 from ..case.memo import Added, size_unit
 from ..case.observed import case_observations, case_suspects
+from ..study.banded import loading_band, spread_sheet
 from ..study.hypotheses import Cause
+from ..study.operation import by_current
 from ..study.readings import Pair, reading_sheet
 from ..study.reduced import Reduced
 from ..study.residual import Margin, added_pieces
 from ..units import si
+from .beside import band_beside, beside_figure
 from .figure import Figure
 from .formulas import formula_table
 from .investigation import Investigation
 from .margin import margin_of
 from .margin_figures import added_figure
 from .memo import Block, Part
-from .pair import lengths_for, pair_length, pair_loading, pair_table, your_meter
+from .pair import IMPEDANCES, lengths_for, pair_length, pair_loading, pair_table, your_meter
 from .tables import Table
 from .tried import Trial, tried_figure
 
@@ -46,6 +49,8 @@ def added_block(investigation: Investigation, entry: Added) -> Figure | Table:
             assert margin is not None
             assert entry.leak is not None
             return load_figure(margin, entry.leak)
+        case "resistor beside":
+            return _beside(investigation, entry)
     return _of_pair(investigation, entry)
 
 
@@ -54,15 +59,16 @@ def _of_pair(investigation: Investigation, entry: Added) -> Figure | Table:
     assert entry.b is not None
     assert entry.meter is not None
     pair = Pair(entry.a, entry.b)
-    run, low, high = investigation.runs
-    tools = (*investigation.instruments, your_meter(entry.meter))
+    run, tools = investigation.run, (*investigation.instruments, your_meter(entry.meter))
     if entry.kind == "length":
         lengths = lengths_for(run, LENGTHS, customary=investigation.customary)
         return pair_length(run, pair, tools, lengths, customary=investigation.customary)
-    sheet = reading_sheet(run, tools, [pair], low=low, high=high)
+    sheet = reading_sheet(run, tools, [pair])
+    coverage = investigation.case.content.spread.coverage
     if entry.kind == "loading":
-        return pair_loading(investigation.runs, sheet, pair)
-    return pair_table(sheet, pair)
+        band = loading_band(investigation.uncertain, pair, IMPEDANCES, coverage=coverage)
+        return pair_loading(sheet, pair, band)
+    return pair_table(spread_sheet(sheet, investigation.uncertain, coverage=coverage).sheet, pair)
 
 
 def _tried(investigation: Investigation, entry: Added) -> Figure:
@@ -74,6 +80,15 @@ def _tried(investigation: Investigation, entry: Added) -> Figure:
     trial = Trial(reduced, case_observations(case), entry.conductor, cause)
     size = si(entry.size, size_unit(cause)) if entry.size else trial.sizes.likely
     return tried_figure(trial, size)
+
+
+def _beside(investigation: Investigation, entry: Added) -> Figure:
+    watched = next(o.watched() for o in investigation.case.content.operation
+                   if o.name == entry.load)
+    assert entry.resistor is not None
+    watched = by_current(investigation.run, watched)
+    return beside_figure(investigation.run, watched, entry.resistor,
+                         band=band_beside(investigation.uncertain, watched))
 
 
 def load_figure(margin: Margin, leak: str) -> Figure:

@@ -101,6 +101,7 @@ LEFT_OUT: Mapping[Chapter, Callable[[Investigation], Part | None]] = {
     "expected": expected_part,
     "causes": causes_part,
     "margin": margin_part,
+    "operation": operation_part,
     "annex": annex_part,
 }
 """The parts that a case may leave out. The summary still says what was found of each."""

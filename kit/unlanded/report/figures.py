@@ -35,7 +35,7 @@ __all__ = ["InstrumentMark", "length_figure", "loading_figure", "section_figure"
            "sheet_marks"]
 
 FLOOR = 0.01  # volts: the sheet's chart shows less than this as this
-RANGE = "over the covers' range of permittivity"
+RANGE = "over what is not known of the inputs"
 ROWS = 16  # pairs on one chart; more would not be read on one page
 
 

@@ -7,11 +7,14 @@ from functools import lru_cache
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ..reference.records import Source
-from ..study.operation import Operation, level_on, operation
+from ..study.operation import Operation, Watched, level_on, operation
+from ..study.run import Run
 from ..study.sizing import Met, by_length
 from ..study.spread import COVERAGE
+from ..study.uncertain import UncertainRun
 from ..units import FOOT, show, show_length
 from .figure import Figure
 from .investigation import Investigation
@@ -20,6 +23,7 @@ from .spread_figures import level_figure
 from .tables import Column, Table
 from .words import listed, pair_words
 
+Real = NDArray[np.float64]
 POINTS = 15  # lengths of the picture
 
 _CAUTION = (
@@ -65,9 +69,9 @@ def operation_part(investigation: Investigation) -> Part | None:
         Paragraph("With the contacts open, the run's capacitance still feeds the loads. Each is "
                   "held against the voltage, or the lamp's current, at which it is sure to be off "
                   f"and sure to be on; between them it may do either. {_notes(found)}"),
-        _states(found, investigation)]
+        states_table(found, customary=investigation.customary)]
     for k, one in enumerate(found, 1):
-        blocks += [_figure(investigation, one), _cures(one, k)]
+        blocks += [_figure(investigation, one), cures_table(one, k)]
     blocks.append(Caution("Before a cure is fitted", _CAUTION))
     return Part("False operation", tuple(blocks))
 
@@ -100,9 +104,10 @@ def _notes(found: tuple[Operation, ...]) -> str:
     return f"{listed(list(notes))}." if notes else ""
 
 
-def _states(found: tuple[Operation, ...], investigation: Investigation) -> Table:
+def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Table:
+    """What each load does, by what margin, and for how long a run it is sure to be off."""
     def length(met: Met) -> str:
-        return met.words(lambda x: show_length(x, customary=investigation.customary))
+        return met.words(lambda x: show_length(x, customary=customary))
 
     def row(o: Operation) -> tuple[str, ...]:
         w = o.watched
@@ -122,7 +127,8 @@ def _states(found: tuple[Operation, ...], investigation: Investigation) -> Table
         "that it is sure to be off at, as a share of it. Off / either / on: share of the draws.")
 
 
-def _cures(found: Operation, number: int) -> Table:
+def cures_table(found: Operation, number: int) -> Table:
+    """What would let go of the load."""
     unit = found.watched.unit
     return Table(
         f"cures-{number}", f"Cures for the {found.watched.name}, those that work first, by the "
@@ -135,16 +141,33 @@ def _cures(found: Operation, number: int) -> Table:
 
 
 def _figure(investigation: Investigation, found: Operation) -> Figure:
-    run, uncertain = investigation.run, investigation.uncertain
-    unit, size = ("ft", FOOT) if investigation.customary else ("m", 1.0)
-    lengths = np.linspace(run.length / 20, 2 * run.length, POINTS)
-    watched = found.watched
+    watched, uncertain = found.watched, investigation.uncertain
+    band = level_band(uncertain, watched)
+    return length_of_load(uncertain.run, watched, band, customary=investigation.customary)
 
-    def quantity(coverage: float | None) -> np.ndarray:
-        return by_length(uncertain, lambda b: level_on(b, watched), coverage=coverage)(lengths)
+
+def level_band(uncertain: UncertainRun, watched: Watched) -> tuple[Real, Real]:
+    """The ends of the level's interval along the lengths that `length_of_load` draws."""
+    def quantity(coverage: float) -> Real:
+        result = by_length(uncertain, lambda b: level_on(b, watched), coverage=coverage)
+        return result(_lengths(uncertain.run))
 
     tail = (1 - COVERAGE) / 2
+    return quantity(tail), quantity(1 - tail)
+
+
+def _lengths(run: Run) -> Real:
+    return np.linspace(run.length / 20, 2 * run.length, POINTS)
+
+
+def length_of_load(
+    run: Run, watched: Watched, band: tuple[Real, Real] | None = None, *, customary: bool = False
+) -> Figure:
+    """What is coupled into a load against the length of the run; `band` is `level_band`."""
+    unit, size = ("ft", FOOT) if customary else ("m", 1.0)
+    lengths = _lengths(run)
+    curve = by_length(run, lambda b: level_on(b, watched))(lengths)
     return level_figure(
-        lengths / size, quantity(None), (quantity(tail), quantity(1 - tail)),
+        lengths / size, curve, band or (curve, curve),
         name=watched.name, unit=watched.unit, limits=watched.limits, length=run.length / size,
         length_unit=unit, coverage=COVERAGE, states=watched.threshold.states)

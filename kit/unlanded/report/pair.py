@@ -36,16 +36,17 @@ def your_meter(resistance: float) -> Instrument:
                              resistance=resistance)
 
 
-def pair_loading(runs: Sequence[Run], sheet: ReadingSheet, pair: Pair) -> Figure:
+def pair_loading(
+    sheet: ReadingSheet, pair: Pair, band: tuple[Real, Real] | None = None
+) -> Figure:
     """Reading against the impedance of the meter, with every instrument of the sheet marked.
 
-    `runs` are the likely one and those at the ends of the inputs' ranges.
+    `band` has the ends of the voltage's interval at `IMPEDANCES` [V].
     """
-    curves = [loading_curve(run, pair, IMPEDANCES) for run in runs]
+    curve = loading_curve(sheet.run, pair, IMPEDANCES)
     # Your meter comes last, so that the others keep their colours wherever it is moved to.
     marks = sorted(sheet_marks(sheet, pair), key=lambda m: m.name.startswith(YOURS))
-    return loading_figure(pair, IMPEDANCES, curves[0], marks,
-                          (np.min(curves, axis=0), np.max(curves, axis=0)))
+    return loading_figure(pair, IMPEDANCES, curve, marks, band)
 
 
 def lengths_for(run: Run, count: int, *, customary: bool = False) -> Real:
@@ -70,17 +71,21 @@ def pair_length(
     return length_figure(pair, lengths, curves, length=run.length, customary=customary)
 
 
-def pair_table(sheet: ReadingSheet, pair: Pair) -> Table:
-    """What each instrument should show on the pair, and what it does there."""
+def pair_table(sheet: ReadingSheet, pair: Pair, *, banded: bool = True) -> Table:
+    """What each instrument should show on the pair, and what it does there.
+
+    Where the sheet is not `banded` yet, lowest and highest are left open.
+    """
     rows = [r for r in sheet.rows if r.pair == pair]
     return Table(
         "pair-readings", f"Expected readings on {pair_words(pair.a, pair.b)}, if all is well.",
         (Column("Instrument"), Column("Reads", "", "right"), Column("Lowest", "", "right"),
          Column("Highest", "", "right"), Column("Loads it by", "", "right"),
          Column("Adds to residual", "", "right")),
-        tuple(_cells(r) for r in rows))
+        tuple(_cells(r, banded) for r in rows))
 
 
-def _cells(r: SheetRow) -> tuple[str, ...]:
-    return (r.instrument.name, r.reading.text, r.low.text, r.high.text,
+def _cells(r: SheetRow, banded: bool) -> tuple[str, ...]:
+    ends = (r.low.text, r.high.text) if banded else ("…", "…")
+    return (r.instrument.name, r.reading.text, *ends,
             show(100 * r.loading_error, "%"), show(abs(r.residual_added), "A"))

@@ -139,7 +139,7 @@ class Operation:
 def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Operation:
     """The state of a load, its margin, the longest run, and the cures; raises `Refused`."""
     run = uncertain.run
-    watched = _by_current(run, watched)
+    watched = by_current(run, watched)
     off, on = watched.limits
     level = float(level_on(RunBatch.of(run), watched)[0])
     drawn = level_on(uncertain.draws(DRAWS, seed=seed), watched)
@@ -195,7 +195,7 @@ def _admittance(run: Run, watched: Watched) -> float:
     return abs(sum(complex(b.admittance(run.frequency)) for b in own)) if own else math.nan
 
 
-def _by_current(run: Run, watched: Watched) -> Watched:
+def by_current(run: Run, watched: Watched) -> Watched:
     """An input that is off at a current too: its limit in volts, through its own impedance."""
     leak = watched.threshold.off_current
     admittance = _admittance(run, watched)
