@@ -116,7 +116,7 @@ class Site:
 
     def reading(self, c: Candidate, *, spoilt: bool = False) -> Observation:
         """What one instrument shows."""
-        nothing = 0.30 if c.instrument.kind == "proximity" else 0.02
+        nothing = 0.30 if c.instrument.kind == "proximity" else 0.05
         about_it = any(name in (c.pair.a + c.pair.b) and v.cause == "none of these"
                        for name, v in self.variants.items())
         if spoilt or about_it or self._rng.random() < nothing:

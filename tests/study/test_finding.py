@@ -62,7 +62,8 @@ def test_causes_that_cannot_be_told_apart_are_both_named() -> None:
 
 
 def test_a_leak_is_named_with_its_size() -> None:
-    found, one = made(("digital-10M", "21.3 V"), ("low-impedance", "0.4 V"))
+    found, one = made(("digital-10M", "21.3 V"), ("low-impedance", "0.4 V"),
+                      ("digital-10M", "21.4 V"))
     assert re.search(r"point to leakage to earth of \d+ kΩ to \d+ kΩ", headline(found, one))
 
 

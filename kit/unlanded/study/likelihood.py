@@ -22,7 +22,7 @@ Real = NDArray[np.float64]
 _JUDGED = Source("how readings on site err", "judgement")
 WIDE_SHARE = Value(0.05, "", _JUDGED)  # readings whose error is that of a statement 4 times as wide
 WIDENING = Value(4.0, "", _JUDGED)
-MISREAD_SHARE = Value(0.02, "", _JUDGED)
+MISREAD_SHARE = Value(0.05, "", _JUDGED)
 FALSE_LIGHT_SHARE = Value(0.30, "", Source("non-contact detectors on neighbouring fields",
                                            "judgement"))
 LOWEST_VOLTAGE = 0.01  # volts, of the reference
