@@ -41,7 +41,8 @@ class SpreadSheet:
 
     Parameters
     ----------
-    sheet : with `low` and `high` of every row at the ends of its interval
+    sheet : with `low` and `high` of every row at the ends of its interval, widened to hold the
+        reading of the run as described, which a random arrangement may make an unusual one
     spread : of each row's shown value in volts (amperes for a body model), row by row, and last
         of the standing residual current [A]
     inputs : everything that was drawn
@@ -69,9 +70,8 @@ def spread_sheet(
     model = _Shows(uncertain, tools, sheet.rows)
     spread = propagate(model, inputs, coverage=coverage, stable=stable, batch=batch, most=most,
                        seed=seed)
-    rows = tuple(replace(row, low=_shown(row.instrument, low), high=_shown(row.instrument, high))
-                 for row, low, high in zip(sheet.rows, spread.low[:-1], spread.high[:-1],
-                                           strict=True))
+    rows = tuple(_banded(row, float(low), float(high)) for row, low, high in
+                 zip(sheet.rows, spread.low[:-1], spread.high[:-1], strict=True))
     return SpreadSheet(replace(sheet, rows=rows), spread, inputs)
 
 
@@ -157,12 +157,12 @@ def _reading(
 def _settled(
     tool: Instrument, port: Ports, batch: RunBatch, share: Real | float = 1.0
 ) -> tuple[Complex, Complex]:
-    """Voltage and admittance (B,) on the smallest range that holds its own loaded voltage."""
+    """Voltage and admittance (B,), ranges tried from the largest down as in the plain sheet."""
     voltage = admittance = np.zeros(0, dtype=complex)
     for scale in reversed(tool.ranges):
         own = complex(scale.burden.admittance(batch.run.frequency)) / share
         loaded = port.loaded(own)
-        holds = np.abs(loaded) <= scale.full_scale if len(voltage) else np.ones(loaded.shape, bool)
+        holds = np.abs(voltage) <= scale.full_scale if len(voltage) else np.ones(loaded.shape, bool)
         voltage = np.where(holds, loaded, voltage) if len(voltage) else loaded
         whole = np.broadcast_to(own, loaded.shape)
         admittance = np.where(holds, whole, admittance) if len(admittance) else whole
@@ -182,3 +182,9 @@ def _shown(tool: Instrument, value: float) -> Shown:
     if tool.kind == "body":
         return Shown(show(value, "A"), math.nan, math.nan)
     return tool.show(max(float(value), 0.0))
+
+
+def _banded(row: SheetRow, low: float, high: float) -> SheetRow:
+    here = abs(row.current if row.instrument.kind == "body" else row.voltage)
+    return replace(row, low=_shown(row.instrument, min(low, here)),
+                   high=_shown(row.instrument, max(high, here)))
