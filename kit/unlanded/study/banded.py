@@ -60,7 +60,7 @@ def spread_sheet(
     coverage: float = COVERAGE,
     stable: float = STABLE,
     batch: int = 128,
-    most: int = 2048,
+    most: int = 1024,
     seed: int = 1,
 ) -> SpreadSheet:
     """The sheet with each reading's coverage interval; arguments as for `propagate`."""

@@ -1,0 +1,98 @@
+"""From a case to what varies of its run."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from case_text import PAIR, SITES, changed
+from unlanded.case.build import build_run
+from unlanded.case.loading import load_case, read_case
+from unlanded.case.uncertainty import uncertain_run
+from unlanded.physics.capacitance import capacitance_matrix
+from unlanded.study.spread import limits, quasi_random
+
+CORD = """title = "cord"
+[supply]
+voltage = "230 V"
+frequency = "50 Hz"
+[run]
+length = "20 m"
+[run.cable]
+layout = "singles"
+cores = ["a", "b", "c"]
+stranding = "solid"
+conductor = "2.5 mm²"
+type = "H07V"
+spacing = "10 mm"
+[run.surround]
+kind = "plane"
+gap = "2 mm"
+[run.ends.near]
+a = "L"
+"""
+
+
+def names(text: str) -> list[str]:
+    return [i.name for i in uncertain_run(read_case(text)).inputs]
+
+
+def test_covers_have_the_range_of_their_material() -> None:
+    case = load_case(SITES / "tern-quay.toml")
+    found = uncertain_run(case)
+    assert names(case.text) == ["permittivity of the covers"]
+    np.testing.assert_allclose(limits(found.inputs[0].distribution), (3.5, 6.5), rtol=2e-3)
+    assert found.run.matrix == pytest.approx(build_run(case).matrix, rel=1e-12, abs=0)
+
+
+def test_what_has_no_range_does_not_vary() -> None:
+    assert names(PAIR) == []
+    ranged = changed(PAIR, ("permittivity = 3.0", "permittivity = {likely = 3.0, low = 2, high = 4}"))
+    assert names(ranged) == ["permittivity of the covers"]
+    two = changed(ranged, ("permittivity = 3.0", "permittivity = {likely = 5.0, low = 4, high = 6}"))
+    assert names(two) == ["permittivity of the covers of a", "permittivity of the covers of b"]
+    assert names(two + "[spread]\npermittivity = {low = 2.5, high = 3.5}\n") == [
+        "permittivity of the covers"]
+
+
+def test_the_same_insulation_is_the_same_in_every_draw() -> None:
+    found = uncertain_run(read_case(CORD))
+    assert found.section is not None
+    for row, matrix in zip(([3.6], [6.2]), found.section.matrices(np.array([[3.6], [6.2]])),
+                           strict=True):
+        section = found.run.section
+        made = type(section)(tuple(
+            type(c)(c.name, c.x, c.y, c.radius, c.outer, row[0]) for c in section.conductors),
+            section.surround)
+        assert np.all(np.abs(matrix / capacitance_matrix(made) - 1) < 4e-3)
+
+
+def test_dimensions_build_the_section_anew() -> None:
+    text = CORD + '[spread]\nspacing = {low = "8 mm", high = "14 mm"}\ngap = "50 %"\n'
+    found = uncertain_run(read_case(text))
+    assert [i.name for i in found.inputs] == [
+        "permittivity of the covers", "spacing", "gap to the earthed surround"]
+    assert found.section is not None
+    matrices = found.section.matrices(np.array([[4.8, 10e-3, 2e-3], [4.8, 12e-3, 2e-3]]))
+    assert np.all(np.abs(matrices[0] / found.run.matrix - 1) < 4e-3)
+    assert abs(matrices[1, 0, 1]) < abs(matrices[0, 0, 1])
+    thick = uncertain_run(read_case(CORD + '[spread]\nthickness = {low = "0.7 mm", high = "1 mm"}\n'))
+    assert [i.name for i in thick.inputs][1] == "thickness of the covers"
+
+
+def test_supply_length_and_loads() -> None:
+    text = changed(CORD, ('a = "L"', 'a = "L"\nb = {load = {name = "coil", resistance = "9 kohm"}, '
+                          'to = "N"}'))
+    text += ('[spread]\nlength = "5 %"\nvoltage = {low = "218 V", high = "242 V"}\n'
+             'loads = {"coil" = "20 %"}\n')
+    found = uncertain_run(read_case(text))
+    batch = found.at(quasi_random(found.inputs, 64))
+    assert 0.945 < batch.supply.min() < batch.supply.max() < 1.055
+    assert 19 < batch.length.min() < batch.length.max() < 21
+    assert 0.8 < batch.load["coil"].min() < 0.85 < 1.15 < batch.load["coil"].max() < 1.2
+
+
+def test_singles_in_a_conduit_lie_at_random() -> None:
+    text = load_case(SITES / "heron-house.toml").text
+    assert names(text) == ["permittivity of the covers", "how the singles lie"]
+    assert names(text + "\n[spread]\narrangement = false\n") == ["permittivity of the covers"]
