@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime
+import os
 import shutil
 import sys
 from collections.abc import Callable
@@ -19,6 +20,9 @@ CAUTION = (
     "A calculation never proves a conductor dead. Prove dead at the point of work with an "
     "instrument proved before and after; local codes and licensed practice govern."
 )
+# The systems here are small: threads within LAPACK would only wait for each other. It is read when
+# numpy is first imported, here and in the notebooks' own processes.
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 FILE = click.Path(path_type=Path)
 Command = TypeVar("Command", bound=Callable[..., None])
 

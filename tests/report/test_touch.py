@@ -1,0 +1,42 @@
+from __future__ import annotations
+
+from unlanded.report.investigation import Investigation
+from unlanded.report.memo import Caution, Paragraph
+from unlanded.report.tables import Table
+from unlanded.report.touch import touch_finding, touch_part, touch_results, touch_sources
+
+
+def test_every_unearthed_conductor_once_and_a_caution(moor: Investigation) -> None:
+    part = touch_part(moor)
+    assert part is not None
+    touch, induced = (b for b in part.blocks if isinstance(b, Table))
+    assert sorted(row[0].split(",")[0] for row in touch.rows) == ["1", "2", "3", "4", "5", "6"]
+    assert touch.rows[0][0].startswith("1,")
+    assert [row[0] for row in induced.rows] == ["2", "3", "4", "5", "6", "7"]
+    assert "6 A in 1 and back by earth" in induced.caption
+    assert isinstance(part.blocks[-1], Caution)
+
+
+def test_what_can_be_felt_is_in_the_summary(moor: Investigation, quay: Investigation) -> None:
+    (finding,) = touch_finding(moor)
+    assert isinstance(finding, Paragraph)
+    assert "can be felt" in finding.text
+    assert "must be bonded to earth" in finding.text
+    assert touch_finding(quay) == []  # 85 m drive less than half a milliampere
+
+
+def test_no_conductor_is_called_free_of_danger(sites: tuple[Investigation, ...]) -> None:
+    for site in sites:
+        part = touch_part(site)
+        assert part is not None
+        said = [row[-1] for b in part.blocks if isinstance(b, Table) for row in b.rows]
+        said += [b.text for b in part.blocks if isinstance(b, Paragraph)]
+        spoken = " ".join(said).lower().replace(".", " ").replace(",", " ").split()
+        assert not {"dead", "safe", "harmless"} & set(spoken)
+
+
+def test_results_and_sources(moor: Investigation) -> None:
+    rows = touch_results(moor)
+    assert [r["body_current_A"] for r in rows] == sorted(
+        (r["body_current_A"] for r in rows), reverse=True)
+    assert {"current that is felt", "extra-low voltage"} <= {w for w, _ in touch_sources(moor)}
