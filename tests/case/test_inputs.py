@@ -11,7 +11,8 @@ from case_text import PAIR, changed, refusals, site
 from unlanded.case.loading import read_case
 from unlanded.study.spread import limits
 
-LOAD = changed(PAIR, ('b = "open"', 'b = {load = {name = "coil", resistance = "40 kohm"}, to = "N"}'))
+LOAD = changed(PAIR, (
+    'b = "open"', 'b = {load = {name = "coil", resistance = "40 kohm"}, to = "N"}'))
 
 
 def spread_of(line: str):

@@ -47,9 +47,11 @@ def test_covers_have_the_range_of_their_material() -> None:
 
 def test_what_has_no_range_does_not_vary() -> None:
     assert names(PAIR) == []
-    ranged = changed(PAIR, ("permittivity = 3.0", "permittivity = {likely = 3.0, low = 2, high = 4}"))
+    ranged = changed(PAIR, (
+        "permittivity = 3.0", "permittivity = {likely = 3.0, low = 2, high = 4}"))
     assert names(ranged) == ["permittivity of the covers"]
-    two = changed(ranged, ("permittivity = 3.0", "permittivity = {likely = 5.0, low = 4, high = 6}"))
+    two = changed(ranged, (
+        "permittivity = 3.0", "permittivity = {likely = 5.0, low = 4, high = 6}"))
     assert names(two) == ["permittivity of the covers of a", "permittivity of the covers of b"]
     assert names(two + "[spread]\npermittivity = {low = 2.5, high = 3.5}\n") == [
         "permittivity of the covers"]
@@ -76,7 +78,8 @@ def test_dimensions_build_the_section_anew() -> None:
     matrices = found.section.matrices(np.array([[4.8, 10e-3, 2e-3], [4.8, 12e-3, 2e-3]]))
     assert np.all(np.abs(matrices[0] / found.run.matrix - 1) < 4e-3)
     assert abs(matrices[1, 0, 1]) < abs(matrices[0, 0, 1])
-    thick = uncertain_run(read_case(CORD + '[spread]\nthickness = {low = "0.7 mm", high = "1 mm"}\n'))
+    thick = uncertain_run(read_case(
+        CORD + '[spread]\nthickness = {low = "0.7 mm", high = "1 mm"}\n'))
     assert [i.name for i in thick.inputs][1] == "thickness of the covers"
 
 

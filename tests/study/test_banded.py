@@ -22,7 +22,8 @@ from unlanded.study.spread import uniform, within
 from unlanded.study.supply import Supply
 from unlanded.study.uncertain import UncertainRun
 
-SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)), Plane(0))
+SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)),
+                  Plane(0))
 CM, CG = 12.5e-12, 63.6e-12
 RUN = Run(SECTION, 50.0, Supply(230.0, 50.0), {"live": Driven("L")}, {}, (7e-3, 7e-3),
           capacitance=np.array([[CM + CG, -CM], [-CM, CM + CG]]))
@@ -70,7 +71,8 @@ def test_the_burdens_tolerance_reaches_the_reading() -> None:
 def test_indicator_body_and_residual() -> None:
     tools = [custom_instrument("i", "i", "indicator", resistance=1e9, threshold=37.0, percent=0.1),
              INSTRUMENTS["body"]]
-    found = spread_sheet(reading_sheet(RUN, tools, [FAR]), UncertainRun(RUN, length=within(50, 0.2)))
+    found = spread_sheet(reading_sheet(RUN, tools, [FAR]),
+                         UncertainRun(RUN, length=within(50, 0.2)))
     lamp, body = found.sheet.rows
     assert (lamp.low.text, lamp.high.text) == ("not lit", "lit")
     assert body.low.text < body.reading.text < body.high.text  # 36.6 µA … 53.4 µA

@@ -35,7 +35,7 @@ def varied() -> tuple[RunBatch, list[Run]]:
     single = [
         replace(RUN, length=float(length[k]), capacitance=matrix[k],
                 supply=replace(RUN.supply, voltage=230.0 * supply[k]),
-                near={**RUN.near, "c": Through(Burden(40e3 * load[k], 30.0 * load[k]), "N", "coil")})
+                near=RUN.near | {"c": Through(Burden(40e3 * load[k], 30.0 * load[k]), "N", "coil")})
         for k in range(count)]
     return batch, single
 

@@ -33,7 +33,8 @@ from unlanded.study.spread import within
 from unlanded.study.supply import Supply
 from unlanded.study.uncertain import UncertainRun
 
-SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)), Plane(0))
+SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)),
+                  Plane(0))
 CM, CG = 12.5e-12, 63.6e-12
 RUN = Run(SECTION, 50.0, Supply(230.0, 50.0), {"live": Driven("L")}, {}, (7e-3, 7e-3),
           capacitance=np.array([[CM + CG, -CM], [-CM, CM + CG]]))

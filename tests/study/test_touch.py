@@ -21,7 +21,8 @@ from unlanded.study.touch import (
     touch_sheet,
 )
 
-SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)), Plane(0))
+SECTION = Section((Conductor("live", 0, 0.02, 1e-3), Conductor("spare", 0.01, 0.02, 1e-3)),
+                  Plane(0))
 CM, CG = 12.5e-12, 63.6e-12
 
 

@@ -5,6 +5,8 @@ Its current behind a weak source is found in the time domain, so that lamp and s
 
 from __future__ import annotations
 
+from itertools import pairwise
+
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
@@ -53,7 +55,7 @@ def _clamped(v: Real, c: Real, g: Real, omega: float, level: float) -> Real:
     stores, leaks = c + g * step / 2, c - g * step / 2
     for _ in range(CYCLES):
         charge = np.zeros_like(v)
-        for before, after in zip(source[:-1], source[1:], strict=True):
+        for before, after in pairwise(source):
             free = (now * leaks + c * (after - before) + g * step * (after + before) / 2) / stores
             now = np.clip(free, -level, level)
             charge += np.abs(free - now) * stores

@@ -30,7 +30,8 @@ def floating_screen(matrix: Real, *, to_earth: float) -> Real:
     [[2.0, -2.0], [-2.0, 2.0]]
     """
     if not to_earth >= 0:
-        raise Refused("screen", "capacitance to earth must be at least 0 F/m", given=f"{to_earth:g}")
+        raise Refused("screen", "capacitance to earth must be at least 0 F/m",
+                      given=f"{to_earth:g}")
     own = matrix.sum(axis=1)
     if own.sum() + to_earth <= 0:
         raise Refused("screen", "has no capacitance to anything")

@@ -32,9 +32,9 @@ NEGLIGIBLE = 1e-6  # amperes: less is said to be less
 _HOW_TO_READ = (
     "Each reading is as the instrument would round it; in brackets the range it may lie in over "
     "what is not known of the inputs, the tolerance of the instrument's own impedance and its "
-    "accuracy, where the ends differ from it. Pairs that every instrument reads alike, to within 2 % or "
-    "its accuracy, share a line; those that an instrument pulls down come first. “OL” is over "
-    "range; “not lit” says only that the voltage is below the indicator's threshold."
+    "accuracy, where the ends differ from it. Pairs that every instrument reads alike, to within "
+    "2 % or its accuracy, share a line; those that an instrument pulls down come first. “OL” is "
+    "over range; “not lit” says only that the voltage is below the indicator's threshold."
 )
 
 
