@@ -198,18 +198,16 @@ def _by_variant(h: Hypothesis) -> Iterator[tuple[Scene, slice]]:
 def met(solved: Solved, c: Candidate) -> tuple[Real, Real]:
     """Voltage across an instrument, and current through it and the resistor beside it (Q,).
 
-    It settles on the smallest range that holds its own voltage.
+    Its ranges are tried from the largest down, as in the reading sheet.
     """
     v, z = solved.port(c.pair, c.actions)
-    volts = amperes = np.full(v.shape[1], np.nan)
-    for r in c.instrument.ranges:
+    volts, amperes = np.full(v.shape[1], -np.inf), np.zeros(v.shape[1])
+    for r in reversed(c.instrument.ranges):
         y = solved.admittance(r.burden, c.instrument) + 1 / c.resistor
         loaded = v / (1 + y * z)
-        open_still = np.isnan(volts)
-        volts = np.where(open_still, solved.felt(loaded, c.instrument), volts)
-        amperes = np.where(open_still, rms(loaded * y), amperes)
-        over = (volts > r.full_scale) & open_still & (r is not c.instrument.ranges[-1])
-        volts = np.where(over, np.nan, volts)
+        lower = volts <= r.full_scale
+        volts = np.where(lower, solved.felt(loaded, c.instrument), volts)
+        amperes = np.where(lower, rms(loaded * y), amperes)
     return volts, amperes
 
 
