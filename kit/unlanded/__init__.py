@@ -64,6 +64,18 @@ _CONTENTS = {
     "Reduced": "study.reduced",
     "explain": "study.causes",
     "next_readings": "study.next_reading",
+    # how sure, how long, how small
+    "Input": "study.spread",
+    "propagate": "study.spread",
+    "sensitivity": "study.spread",
+    "UncertainRun": "study.uncertain",
+    "spread_sheet": "study.banded",
+    "solve_for": "study.sizing",
+    "bleeder": "study.sizing",
+    "meter_window": "study.sizing",
+    "operation": "study.operation",
+    "touch_sheet": "study.touch",
+    "longest_control_cable": "reference.loads",
     # case files and memos
     "load_case": "case.loading",
     "build_run": "case.build",

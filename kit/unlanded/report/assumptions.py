@@ -10,6 +10,7 @@ from ..units import show
 from .cores import permittivity_words
 from .investigation import Investigation
 from .memo import Bullets, Paragraph, Part
+from .words import listed
 
 
 def assumptions_part(investigation: Investigation) -> Part:
@@ -24,9 +25,10 @@ def assumptions_part(investigation: Investigation) -> Part:
 
 def _supply(investigation: Investigation) -> Iterator[str]:
     supply = investigation.run.supply
+    stated = ("taken as stated: its own tolerance is not in the ranges"
+              if investigation.uncertain.supply is None else "with the limits given below")
     yield (f"The supply is a steady sine of {show(supply.voltage, 'V')} line to neutral at "
-           f"{show(supply.frequency, 'Hz')}, taken as stated: its own tolerance is not in the "
-           "ranges.")
+           f"{show(supply.frequency, 'Hz')}, {stated}.")
     yield ("The neutral is bonded to earth at the source, and nowhere else unless an end says so. "
            "Earth is one point, the grounding system, without impedance of its own at the ends.")
 
@@ -53,9 +55,9 @@ def _layout(cable: AnyCable) -> Iterator[str]:
             yield ("The dielectric of a common sheath is not modelled; it raises the capacitances "
                    "a little. The section is the same all along the cable.")
         case "in conduit":
-            yield (f"The conductors lie in the conduit at random; this is one arrangement of many, "
-                   f"seed {cable.seed}, the same all along the run. Another seed gives another "
-                   "arrangement and other readings.")
+            yield ("The conductors lie in the conduit at random; what is expected is for one "
+                   f"arrangement of many, seed {cable.seed}, the same all along the run. The ranges "
+                   "are over many arrangements, unless the case says otherwise.")
         case _:
             yield "The conductors keep their places all along the run."
 
@@ -70,9 +72,10 @@ def _run(investigation: Investigation) -> Iterator[str]:
 
 
 def _readings(investigation: Investigation) -> Iterator[str]:
-    yield ("Ranges run over the limits of the covers' permittivity together with the tolerance of "
-           "the instrument's own impedance and with its accuracy statement. They are limits, not "
-           "a confidence interval; length, geometry and voltage are taken as stated.")
+    unsure = [i.name for i in investigation.uncertain.inputs]
+    yield (f"A range holds {investigation.spread.spread.coverage:.0%} of the draws of what is not "
+           f"known: {listed([*unsure, 'the impedance and the accuracy of each instrument'])}. All "
+           "else is taken as stated.")
     if any(t.source.title.startswith("typical of the class") for t in investigation.instruments):
         yield ("Instruments are typical of their class. Where the one in hand differs, describe it "
                "in the case from its data sheet.")

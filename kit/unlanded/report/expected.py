@@ -9,9 +9,9 @@ from typing import Any
 import numpy as np
 
 from ..reference.instruments import Instrument
-from ..study.banded import length_band, loading_band
+from ..study.banded import length_band, loading_band, voltage_band
 from ..study.ends import Open, Through
-from ..study.readings import ReadingSheet, loading_curve, ports_along, voltages_across
+from ..study.readings import Pair, ReadingSheet, loading_curve, ports_along, voltages_across
 from ..units import FOOT, show
 from .figure import Figure, even_axis
 from .figures import length_figure, loading_figure, sheet_figure, sheet_marks
@@ -198,10 +198,10 @@ def _load_sentences(investigation: Investigation, end: str) -> list[str]:
                 and isinstance(run.far[name], idle)):
             continue
         to = f"{t.to}@{end}" if t.to in run.section.names else t.to
-        volts = [abs(r.voltage(f"{name}@{end}", to)) for r in investigation.runs]
+        low, high = voltage_band(investigation.uncertain, Pair(f"{name}@{end}", to))
         found.append(f"The {t.label}, from {name} to {point_words(t.to)}, has "
-                     f"{show(volts[0], 'V')} ({show(min(volts), 'V')} to {show(max(volts), 'V')}) "
-                     "across it, although nothing feeds it.")
+                     f"{show(abs(run.voltage(f'{name}@{end}', to)), 'V')} ({show(low, 'V')} to "
+                     f"{show(high, 'V')}) across it, although nothing feeds it.")
     return found
 
 

@@ -32,7 +32,7 @@ from .spread import (
 from .uncertain import UncertainRun
 
 Real = NDArray[np.float64]
-DRAWS = 256  # for each point of a curve's band
+DRAWS, STATED = 256, 1024  # for each point of a curve's band, and for a single voltage
 
 
 @dataclass(frozen=True, eq=False)
@@ -93,6 +93,15 @@ def loading_band(
     conductance = 1 / np.asarray(resistances, dtype=float)
     volts = np.abs(port.voltage[:, None] / (1 + conductance * port.impedance[:, None]))
     return coverage_interval(volts, coverage)
+
+
+def voltage_band(
+    uncertain: UncertainRun, pair: Pair, *, coverage: float = COVERAGE
+) -> tuple[float, float]:
+    """Ends RMS [V] of the interval of the unloaded voltage on a pair."""
+    drawn = uncertain.draws(STATED).voltage(pair.a, pair.b)
+    low, high = coverage_interval(np.abs(drawn)[:, None], coverage)
+    return float(low[0]), float(high[0])
 
 
 def length_band(
