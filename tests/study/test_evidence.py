@@ -62,7 +62,7 @@ def test_a_size_and_a_score_along_a_curved_ridge() -> None:
     y, s = 300.0, 3.0
     made = settled(Problem(lambda u, x: (10 ** (4 * u) * np.exp(0.3 * x[:, 0]))[None],
                            Normal(np.array([y]), s), 1, True))
-    u, x = np.linspace(0, 1, 8001)[:, None], np.linspace(-7, 7, 4001)
+    u, x = np.linspace(0, 1, 2001)[:, None], np.linspace(-7, 7, 1501)
     density = stats.norm.pdf(y, 10 ** (4 * u) * np.exp(0.3 * x), s) * stats.norm.pdf(x)
     want = np.trapezoid(np.trapezoid(density, x), u[:, 0])
     assert made.value == pytest.approx(want, rel=0.01, abs=0)
