@@ -23,7 +23,7 @@ def said(investigation: Investigation) -> str:
     "common sheath is not modelled",
     "at 20 °C",
     "100 Ω·m",
-    "A range holds 95% of the draws of what is not known: permittivity of the covers and",
+    "A range holds 95 % of the draws of what is not known: permittivity of the covers and",
     "the impedance and the accuracy of each instrument",
     "No earthed metal lies near the run",
     "typical of their class",

@@ -31,7 +31,7 @@ def test_part_has_states_cures_pictures_and_a_caution(moor: Investigation) -> No
     assert [row[0].split("\n")[0] for row in tables["operation"].rows] == ["interlock relay",
                                                                           "input card"]
     assert [b.key for b in part.blocks if isinstance(b, Figure)] == [
-        "operation-interlock-relay", "operation-input-card"]
+        "operation-1", "operation-2"]
     assert isinstance(part.blocks[-1], Caution)
     watts = [row[3] for row in tables["cures-1"].rows]
     assert watts[0] == "0 W"

@@ -10,7 +10,7 @@ from ..units import show
 from .cores import permittivity_words
 from .investigation import Investigation
 from .memo import Bullets, Paragraph, Part
-from .words import listed
+from .words import listed, percent
 
 
 def assumptions_part(investigation: Investigation) -> Part:
@@ -56,8 +56,8 @@ def _layout(cable: AnyCable) -> Iterator[str]:
                    "a little. The section is the same all along the cable.")
         case "in conduit":
             yield ("The conductors lie in the conduit at random; what is expected is for one "
-                   f"arrangement of many, seed {cable.seed}, the same all along the run. The ranges "
-                   "are over many arrangements, unless the case says otherwise.")
+                   f"arrangement of many, seed {cable.seed}, the same all along the run. The "
+                   "ranges are over many arrangements, unless the case says otherwise.")
         case _:
             yield "The conductors keep their places all along the run."
 
@@ -73,8 +73,9 @@ def _run(investigation: Investigation) -> Iterator[str]:
 
 def _readings(investigation: Investigation) -> Iterator[str]:
     unsure = [i.name for i in investigation.uncertain.inputs]
-    yield (f"A range holds {investigation.spread.spread.coverage:.0%} of the draws of what is not "
-           f"known: {listed([*unsure, 'the impedance and the accuracy of each instrument'])}. All "
+    held = percent(investigation.spread.spread.coverage)
+    yield (f"A range holds {held} of the draws of what is not known: "
+           f"{listed([*unsure, 'the impedance and the accuracy of each instrument'])}. All "
            "else is taken as stated.")
     if any(t.source.title.startswith("typical of the class") for t in investigation.instruments):
         yield ("Instruments are typical of their class. Where the one in hand differs, describe it "

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from dataclasses import replace
 from functools import lru_cache
 from typing import Any
 
@@ -21,7 +22,7 @@ from .investigation import Investigation
 from .memo import Block, Caution, Paragraph, Part
 from .spread_figures import level_figure
 from .tables import Column, Table
-from .words import listed, pair_words
+from .words import listed, pair_words, percent
 
 Real = NDArray[np.float64]
 POINTS = 15  # lengths of the picture
@@ -71,7 +72,7 @@ def operation_part(investigation: Investigation) -> Part | None:
                   f"and sure to be on; between them it may do either. {_notes(found)}"),
         states_table(found, customary=investigation.customary)]
     for k, one in enumerate(found, 1):
-        blocks += [_figure(investigation, one), cures_table(one, k)]
+        blocks += [replace(_figure(investigation, one), key=f"operation-{k}"), cures_table(one, k)]
     blocks.append(Caution("Before a cure is fitted", _CAUTION))
     return Part("False operation", tuple(blocks))
 
@@ -114,8 +115,8 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
         off, on = w.limits
         return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}",
                 f"{show(o.level, w.unit)}\n({show(o.low, w.unit)} … {show(o.high, w.unit)})",
-                show(off, w.unit), show(on, w.unit), o.state, f"{o.margin:.0%}".replace("-", "−"),
-                " / ".join(f"{c:.0%}" for c in o.chances),
+                show(off, w.unit), show(on, w.unit), o.state, percent(o.margin),
+                " / ".join(map(percent, o.chances)),
                 f"{length(o.longest)}\n({length(o.longest_covered)})")
     return Table(
         "operation", "Loads with their contacts open.",
@@ -123,8 +124,9 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
          Column("Sure on at", "", "right"), Column("State"), Column("Margin", "", "right"),
          Column("Off / either / on", "", "right"), Column("Sure off for runs", "", "right")),
         tuple(map(row, found)),
-        f"In brackets: what {COVERAGE:.0%} of the draws allow. Margin: how far under the voltage "
-        "that it is sure to be off at, as a share of it. Off / either / on: share of the draws.")
+        f"In brackets: what {percent(COVERAGE)} of the draws allow. Margin: how far under the "
+        "voltage at which it is sure to be off, as a share of it. Off / either / on: shares of "
+        "the draws.")
 
 
 def cures_table(found: Operation, number: int) -> Table:
@@ -137,7 +139,7 @@ def cures_table(found: Operation, number: int) -> Table:
          Column("Takes", "", "right"), Column("Mind")),
         tuple((c.name, show(c.level, unit), c.state, show(c.watts, "W"), c.note or "–")
               for c in found.cures),
-        f"Leaves less than: in {COVERAGE:.0%} of the draws.")
+        f"Leaves less than: in {percent(COVERAGE)} of the draws.")
 
 
 def _figure(investigation: Investigation, found: Operation) -> Figure:

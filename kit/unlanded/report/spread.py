@@ -16,7 +16,7 @@ from .investigation import Investigation
 from .memo import Block, Paragraph, Part
 from .spread_figures import distribution_figure, sensitivity_figure
 from .tables import Column, Table
-from .words import tool_words
+from .words import percent, tool_words
 
 WORTH_NAMING = 0.05  # share of the variance
 TOGETHER = 0.1  # difference of total and first order from which inputs act together
@@ -31,8 +31,9 @@ def spread_finding(investigation: Investigation) -> list[Block]:
     if not ranked or ranked[0][2] < WORTH_NAMING:
         return []
     name, _, total = ranked[0]
-    return [Paragraph(f"The input to pin down first is the {name}: {total:.0%} of the variance of "
-                      f"what the {tool_words(row.instrument.name)} shows comes from it.")]
+    return [Paragraph(f"The input to pin down first is the {name}: {percent(total)} of the "
+                      f"variance of what the {tool_words(row.instrument.name)} shows comes from "
+                      "it.")]
 
 
 def spread_part(investigation: Investigation) -> Part | None:
@@ -93,9 +94,10 @@ def _how(investigation: Investigation) -> str:
     return (f"What is not known exactly was drawn {spread.draws} times, together with each "
             "instrument's own impedance within its tolerance and its error within its accuracy, "
             "and the run solved for each draw. A range in this memo holds "
-            f"{spread.coverage:.0%} of the draws; its ends are known to {worst:.0%} of its width "
-            "or better. Covers of the same insulation have the same permittivity in every draw. "
-            f"The run's own residual current lies in {show(low, 'A')} to {show(high, 'A')}.")
+            f"{percent(spread.coverage)} of the draws; its ends are known to {percent(worst)} of "
+            "its width or better. Covers of the same insulation have the same permittivity in "
+            f"every draw. The run's own residual current lies in {show(low, 'A')} to "
+            f"{show(high, 'A')}.")
 
 
 def _inputs(investigation: Investigation) -> Table:
@@ -135,7 +137,7 @@ def _unit(name: str, volts: float) -> tuple[str, float]:
 def _advice(found: Sensitivity, what: str) -> str:
     first, *rest = (r for r in found.ranked() if r[2] >= WORTH_NAMING)
     words = [f"Pin down the {first[0]} first: known exactly, it would leave "
-             f"{math.sqrt(max(0.0, 1 - first[1])):.0%} of the standard deviation of {what}."]
+             f"{percent(math.sqrt(max(0.0, 1 - first[1])))} of the standard deviation of {what}."]
     if rest:
         words.append(f"Next comes the {rest[0][0]}.")
     if first[2] - first[1] > TOGETHER:

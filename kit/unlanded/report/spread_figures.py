@@ -10,10 +10,10 @@ from numpy.typing import ArrayLike, NDArray
 from ..study.spread import Sensitivity
 from ..units import show
 from .figure import Axis, Band, Figure, Line, Points, Reference, even_axis
-from .words import cut, listed
+from .words import cut, listed, percent
 
 BARS = 8
-CLASSES = 40  # of the curve of shares
+POINTS = 121  # of a curve
 
 
 def sensitivity_figure(found: Sensitivity, what: str) -> Figure:
@@ -45,9 +45,8 @@ def distribution_figure(
     sample: ArrayLike, ends: tuple[float, float], expected: float, *, what: str, unit: str,
     coverage: float
 ) -> Figure:
-    """How the draws of a result are distributed, with its coverage interval shaded."""
-    values = np.sort(np.asarray(sample, dtype=float))
-    x, height = _density(values)
+    """How the draws of a result, which must differ, are distributed, its interval shaded."""
+    x, height = _density(np.asarray(sample, dtype=float), ends)
     inside = (x >= ends[0]) & (x <= ends[1])
     words = f"{show(ends[0], unit)} to {show(ends[1], unit)}"
     return Figure(
@@ -55,13 +54,13 @@ def distribution_figure(
         x=even_axis(what[:1].upper() + what[1:], unit, float(x[0]), float(x[-1])),
         y=Axis("Relative density", "", 0.0, 1.1, "even", tuple((v, f"{v:g}") for v in (0, 0.5, 1))),
         caption=f"How often {what} came out at each value, over what is not known of the inputs. "
-        f"Shaded: {coverage:.0%} of the draws, {words}. Upright: with every input as it is most "
-        "likely.",
+        f"Shaded: {percent(coverage)} of the draws, {words}. Upright: with every input as it is "
+        "most likely.",
         alternative=f"Curve with one hump over {show(x[0], unit)} to {show(x[-1], unit)}; "
-        f"{coverage:.0%} of the draws lie in {words}; expected {show(expected, unit)}.",
-        numbers=(f"expected {show(expected, unit)}", f"{coverage:.0%} of draws {words}"),
+        f"{percent(coverage)} of the draws lie in {words}; expected {show(expected, unit)}.",
+        numbers=(f"expected {show(expected, unit)}", f"{percent(coverage)} of draws {words}"),
         bands=(Band(x[inside], np.zeros(inside.sum()), height[inside],
-                    f"{coverage:.0%} of the draws", 0),),
+                    f"{percent(coverage)} of the draws", 0),),
         references=(Reference(expected, "x", f"expected {show(expected, unit)}"),),
         lines=(Line(x, height, "", 0),),
         aspect=0.45,
@@ -82,17 +81,16 @@ def level_figure(
     marks = [(limits[0], f"{states[0]} at or under {show(limits[0], unit)}"),
              (limits[1], f"{states[2]} at or over {show(limits[1], unit)}")]
     quantity = "Current through the lamp" if unit == "A" else "Voltage on the load, RMS"
-    key = "".join(c if c.isascii() and c.isalnum() else "-" for c in name.lower())
     return Figure(
-        key=f"operation-{key}", title=f"{name}: with its contacts open, against run length",
+        key="operation", title=f"{name}: with its contacts open, against run length",
         x=even_axis("Run length", length_unit, 0.0, float(x[-1])),
         y=even_axis(quantity, shown, 0.0, top),
-        caption=f"{quantity} of {name} against the length of the run. Shaded: {coverage:.0%} of "
-        "the draws. Across: what the load is sure to do.",
+        caption=f"{quantity} of {name} against the length of the run. Shaded: {percent(coverage)} "
+        "of the draws. Across: what the load is sure to do.",
         alternative=f"Curve rising with run length to {show(float(y[-1]), unit)}; at the run's "
         f"own length {show(here, unit)}. {listed([words for _, words in marks])}.",
         numbers=(f"{name}: {show(here, unit)}",),
-        bands=(Band(x, low * factor, high * factor, f"{coverage:.0%} of the draws", 0),),
+        bands=(Band(x, low * factor, high * factor, f"{percent(coverage)} of the draws", 0),),
         references=(Reference(length, "x", f"this run, {length:.4g} {length_unit}"),
                     *(Reference(v * factor, "y", words) for v, words in marks
                       if v * factor <= top)),
@@ -100,16 +98,17 @@ def level_figure(
     )
 
 
-def _density(values: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
-    """Shares of the draws in equal classes over their middle 99.8 %, their crest at 1."""
-    low, high = np.quantile(values, [0.001, 0.999])
-    if low == high:
-        low, high = low - abs(low) * 0.01 - 1e-12, high + abs(high) * 0.01 + 1e-12
-    count = min(CLASSES, max(8, round(2 * len(values) ** (1 / 3))))
-    found, edges = np.histogram(values, bins=count, range=(low, high))
-    middle = (edges[:-1] + edges[1:]) / 2
-    return (np.concatenate([[edges[0]], middle, [edges[-1]]]),
-            np.concatenate([[0.0], found / found.max(), [0.0]]))
+def _density(
+    values: NDArray[np.float64], ends: tuple[float, float]
+) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    """A smoothed density (scipy's kernel estimate), its crest at 1, with the interval's ends."""
+    from scipy.stats import gaussian_kde
+
+    low, high = values.min(), values.max()
+    margin = 0.05 * (high - low)
+    x = np.unique([*np.linspace(low - margin, high + margin, POINTS), *ends])
+    height = gaussian_kde(values)(x)
+    return x, height / height.max()
 
 
 def _bar(size: float, y: tuple[float, float], label: str, style: int) -> Band:

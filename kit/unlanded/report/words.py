@@ -49,6 +49,15 @@ def listed(words: tuple[str, ...] | list[str], last: str = "and") -> str:
     return f"{', '.join(before)} {last} {end}" if before else end
 
 
+def percent(share: float) -> str:
+    """A share as a reader has it.
+
+    >>> percent(0.95), percent(-0.136)
+    ('95 %', '−14 %')
+    """
+    return f"{100 * share:.0f} %".replace("-", "−")
+
+
 def cut(text: str, length: int) -> str:
     """`text`, no longer than `length`; what is cut off is marked.
 
