@@ -19,6 +19,7 @@ from .causes import causes_finding, causes_part, causes_results
 from .circuit import capacitance_table, circuit_finding, circuit_part, run_results
 from .expected import annex_part, expected_finding, expected_part, sheet_results
 from .folder import Contents
+from .harmonics import harmonics_part, harmonics_results
 from .investigation import Investigation, investigate
 from .margin import margin_finding, margin_part, margin_results
 from .memo import Block, Caution, Memo, Paragraph, Part, Verbatim
@@ -87,6 +88,7 @@ PARTS: tuple[Callable[[Investigation], Part | None], ...] = (
     margin_part,
     operation_part,
     touch_part,
+    harmonics_part,
     sizing_part,
     spread_part,
     added_part,
@@ -114,6 +116,7 @@ RESULTS: Mapping[str, Callable[[Investigation], Any]] = {
     "margin": margin_results,
     "operation": operation_results,
     "touch": touch_results,
+    "harmonics": harmonics_results,
     "sizing": sizing_results,
     "spread": spread_results,
 }
