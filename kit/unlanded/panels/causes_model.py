@@ -171,8 +171,8 @@ class CausesModel(traitlets.HasTraits):
             return f"There is no reading yet that {here} could be held against."
         odd = [str(k) for k, fit in enumerate(fitting, 1) if not fit]
         if odd:
-            return f"With {here}, reading {', '.join(odd)} would be another than it was."
-        return f"With {here}, every reading is within its instrument's accuracy."
+            return f"With {here}, reading {', '.join(odd)} would hardly be what it was."
+        return f"With {here}, every reading could be what it was."
 
     def text(self) -> str:
         """The odds, the sentences and the next measurement as lines of text."""

@@ -95,7 +95,9 @@ class Desk(traitlets.HasTraits):
     def take_from_memo(self, number: int) -> None:
         """Take the entry of that number, from 0, out of the case's memo again."""
         left = [entry for k, entry in enumerate(self.added) if k != number]
-        self.change({MEMO: left or None})
+        rest = {key: value for key, value in self.plain["memo"].items() if key != "added"}
+        # A table that is only there by its entries goes with the last of them.
+        self.change({MEMO: left} if left else {"memo": rest or None})
 
     @property
     def added(self) -> list[dict[str, Any]]:

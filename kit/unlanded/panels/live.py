@@ -30,14 +30,15 @@ from ..report.figure import (
     shape,
 )
 from ..units import show
+from .legend import with_legend
 from .look import caption_html
 
 _FILL = {"metal": "#c98a5a", "earthed metal": "#d9d9d9", "cover": "none", "space": "#ffffff",
          "shade": "#eeeeee", "ink": "#222222"}
 _EDGE = {"metal": "#5a3517", "cover": "#444444"}
-_SHAPE = {"star": "crosshair"}  # bqplot has no star
+_SHAPE = {"star": "ellipse"}  # bqplot has no star
 _GRID = "#e2e2e2"
-_MARGIN = {"top": 56, "bottom": 52, "left": 62, "right": 14}
+_MARGIN = {"top": 56, "bottom": 52, "left": 66, "right": 14}
 _NARROW = {"top": 40, "bottom": 8, "left": 8, "right": 8}
 HOVERED = 60  # points of a curve whose numbers show under the pointer
 PAPER = "unlanded-paper"
@@ -60,12 +61,10 @@ class LiveFigure:
         self._axes = (_axis(figure.x, self._x, "bottom"), _axis(figure.y, self._y, "left"))
         bare = not (figure.x.ticks or figure.y.ticks)
         self._marks: dict[tuple[str, int], Any] = {}
+        self._drawn: dict[tuple[str, int], Any] = {}
         self.widget = bq.Figure(
             axes=[] if bare else list(self._axes), animation_duration=0, padding_x=0.0,
-            padding_y=0.0, legend_location=_corner(figure), display_toolbar=False,
-            background_style={"fill": "white"},
-            legend_style={"fill": "white", "stroke": "#999999"},
-            legend_text={"font-size": "11px"},
+            padding_y=0.0, display_toolbar=False, background_style={"fill": "white"},
             layout={"width": "100%", "min_width": "480px"},
         )
         self.widget.add_class(PAPER)
@@ -76,9 +75,7 @@ class LiveFigure:
 
     def update(self, figure: Figure) -> None:
         """Show another description of the same question."""
-        before = dict(_elements(self.figure)) if self._marks else {}
-        was = self.figure
-        moved = (was.x, was.y, _labelled(was) > 1) != (figure.x, figure.y, _labelled(figure) > 1)
+        moved = (self.figure.x, self.figure.y) != (figure.x, figure.y)
         self.figure = figure
         _set_axis(self._axes[0], self._x, figure.x)
         _set_axis(self._axes[1], self._y, figure.y)
@@ -87,11 +84,12 @@ class LiveFigure:
         if self.caption.value != caption:
             self.caption.value = caption
         self._shape(figure)
-        wanted = dict(_elements(figure))
-        kept = {key for key, element in wanted.items() if _equal(element, before.get(key))
+        wanted = dict(_elements(with_legend(figure)))
+        kept = {key for key, element in wanted.items() if _equal(element, self._drawn.get(key))
                 and not (moved and key[0] in _ON_AXES)}
         marks = {key: self._marks[key] if key in kept else self._mark(key, element)
                  for key, element in wanted.items()}
+        self._drawn = wanted
         if marks.keys() != self._marks.keys() or not self.widget.marks:
             self._marks = marks
             self.widget.marks = list(marks.values())
@@ -117,8 +115,6 @@ class LiveFigure:
 
     def _mark(self, key: tuple[str, int], element: Any) -> Any:
         traits = _TRAITS[key[0]](element, self.figure)
-        if "display_legend" in traits:
-            traits["display_legend"] &= _labelled(self.figure) > 1
         mark = self._marks.get(key)
         if mark is None:
             scales = {"x": self._x, "y": self._y}
@@ -139,26 +135,6 @@ def _width_to_scale(figure: Figure, height: int) -> int:
     across = (figure.x.high - figure.x.low) / (figure.y.high - figure.y.low)
     tall = height - _NARROW["top"] - _NARROW["bottom"]
     return round(tall * across) + _NARROW["left"] + _NARROW["right"]
-
-
-def _corner(figure: Figure) -> str:
-    """The corner of the picture that the fewest points lie in."""
-    crowd = dict.fromkeys(("bottom-right", "top-left", "top-right", "bottom-left"), 0)
-    spots = [(x.x, x.y) for x in figure.lines] + [(x.x, x.y) for x in figure.points]
-    for across, along in spots:
-        for x, y in zip(across, along, strict=True):
-            up, right = figure.y.fraction(float(y)) > 0.5, figure.x.fraction(float(x)) > 0.5
-            up ^= figure.y.turned
-            crowd[f"{'top' if up else 'bottom'}-{'right' if right else 'left'}"] += 1
-    # bqplot puts a legend at the left over the words that stand beside the axis there.
-    free = [c for c in crowd if figure.y.label or c.endswith("right")]
-    return min(free, key=crowd.__getitem__)
-
-
-def _labelled(figure: Figure) -> int:
-    """How many curves and kinds of marks have a name; one alone is told by the caption."""
-    named = [x.label for x in figure.lines] + [x.label for x in figure.points]
-    return sum(map(bool, named))
 
 
 def _equal(element: Any, other: Any) -> bool:
@@ -184,7 +160,7 @@ def _elements(figure: Figure) -> Any:
         if band.label and len(band.x) == 2:
             yield ("band labels", number), band
     for number, line in enumerate(figure.lines):
-        if line.style is not None:
+        if line.style is not None and len(line.x) > 2:
             yield ("hover", number), line
     for number, points in enumerate(figure.points):
         if points.x_low is not None:
@@ -212,7 +188,7 @@ def _band(band: Band, _: Figure) -> dict[str, Any]:
     paint = colour(band.style)
     return {"x": np.array([band.x, band.x]), "y": np.array([band.low, band.high]),
             "fill": "between", "fill_colors": [paint], "fill_opacities": [0.18, 0.18],
-            "colors": [paint], "opacities": [0.0, 0.0], "display_legend": False}
+            "colors": [paint], "opacities": [0.0, 0.0]}
 
 
 def _reference(mark: Reference, figure: Figure) -> dict[str, Any]:
@@ -220,7 +196,7 @@ def _reference(mark: Reference, figure: Figure) -> dict[str, Any]:
     ends, level = np.array([across.low, across.high]), np.full(2, mark.value)
     x, y = (level, ends) if mark.axis == "x" else (ends, level)
     return {"x": x, "y": y, "colors": ["#444444"], "stroke_width": 1.0,
-            "line_style": "dash_dotted", "display_legend": False}
+            "line_style": "dash_dotted"}
 
 
 def _mark_label(mark: Reference, figure: Figure) -> dict[str, Any]:
@@ -253,8 +229,7 @@ def _line(line: Line, _: Figure) -> dict[str, Any]:
     hairline = line.style is None
     return {"x": line.x, "y": line.y, "stroke_width": 0.6 if hairline else 2.0,
             "colors": ["#777777" if line.style is None else colour(line.style)],
-            "line_style": "solid" if line.style is None else dash(line.style),
-            "labels": [line.label], "display_legend": bool(line.label) and not hairline}
+            "line_style": "solid" if line.style is None else dash(line.style)}
 
 
 def _hover(line: Line, figure: Figure) -> dict[str, Any]:
@@ -274,10 +249,10 @@ def _said(value: float, axis: Axis) -> str:
 def _points(points: Points, _: Figure) -> dict[str, Any]:
     paint, kind = colour(points.style), shape(points.style)
     named = {"names": np.array(points.texts)} if points.texts else {}
-    return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind), "default_size": 70,
+    return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind),
+            "default_size": 110 if kind in _SHAPE else 70,
             "colors": [paint], "stroke": paint, "fill": not points.hollow,
-            "display_names": False, "labels": [points.label],
-            "display_legend": bool(points.label), **named}
+            "display_names": False,  **named}
 
 
 def _bars(points: Points, _: Figure) -> dict[str, Any]:
@@ -301,7 +276,7 @@ def _strokes(ends: Floats) -> dict[str, Any]:
     """
     gap = np.full(len(ends), np.nan)
     x, y = (np.column_stack([ends[:, i], ends[:, i + 2], gap]).ravel()[:-1] for i in (0, 1))
-    return {"x": x, "y": y, "display_legend": False}
+    return {"x": x, "y": y}
 
 
 def _note(note: Note, _: Figure) -> dict[str, Any]:
@@ -315,8 +290,8 @@ _TRAITS: dict[str, Callable[[Any, Figure], dict[str, Any]]] = {
     "mark labels": _mark_label, "band labels": _band_label, "hover": _hover, "points": _points,
     "bars": _bars, "leaders": _leaders, "notes": _note,
 }
-_ON_AXES = ("references", "mark labels", "band labels", "lines", "points", "hover")
-"""What depends on the axes or the legend of its figure, besides on itself."""
+_ON_AXES = ("references", "mark labels", "band labels", "hover")
+"""What depends on the axes of its figure, besides on itself."""
 
 _MARKS: dict[str, Any] = {
     "field": bq.HeatMap, "areas": bq.Lines, "bands": bq.Lines, "references": bq.Lines,
@@ -332,7 +307,7 @@ def _scale(axis: Axis) -> Any:
 
 def _axis(axis: Axis, scale: Any, side: str) -> Any:
     return bq.Axis(scale=scale, side=side, grid_color=_GRID, grid_lines="solid",
-                   label_offset="38px" if side == "bottom" else "52px",
+                   label_offset="38px" if side == "bottom" else "48px",
                    tick_style={"font-size": "12px"}, **_ticks(axis))
 
 

@@ -71,14 +71,13 @@ class Panel(w.VBox):  # type: ignore[misc]
 
     def guarded(self, action: Callable[[], None]) -> None:
         """Do it; a refusal is told, and the last good picture stays, marked as out of date."""
+        self.message.value = ""
+        self.body.remove_class("unlanded-stale")
         try:
             action()
         except Refused as refusal:
             self.message.value = alert(f"{refusal} The picture below is the last one that held.")
             self.body.add_class("unlanded-stale")
-            return
-        self.message.value = ""
-        self.body.remove_class("unlanded-stale")
 
     def _repr_mimebundle_(self, **kwargs: Any) -> dict[str, Any]:
         bundle = super()._repr_mimebundle_(**kwargs)
@@ -95,7 +94,7 @@ class TakeAway(w.HBox):  # type: ignore[misc]
     def __init__(self, panel: Panel) -> None:
         self._panel = panel
         narrow = {"description_width": "5em"}
-        self.offer = w.Dropdown(description="Of these", style=narrow, layout={"width": "20em"})
+        self.offer = w.Dropdown(description="Of these", style=narrow, layout={"width": "25em"})
         self.put = w.Button(description="Into the memo", icon="plus",
                             tooltip="Add it to the memo of this case; save the case to keep it")
         self.picture = w.Dropdown(description="Picture", style=narrow, layout={"width": "20em"})

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from pathlib import Path
 from typing import Any
 
 import traitlets
@@ -66,6 +67,7 @@ class ReadingModel(traitlets.HasTraits):
         self.desk = desk
         self._uncertain: UncertainRun | None = None
         self._about: object = None
+        self._path: Path | None = None
         self._along: tuple[object, tuple[Port, ...]] = (None, ())
         self._bands: Bands | None = None
         super().__init__()
@@ -83,15 +85,16 @@ class ReadingModel(traitlets.HasTraits):
         return self._uncertain
 
     def read_case(self) -> None:
-        """Take over the case that is on the desk; the pair stays where the case still has it."""
+        """Take over the case that is on the desk; the pair stays while that is the same file."""
         content, old = self.desk.case.content, self._uncertain
         about = (content.run.cable, content.run.surround, content.spread)
         same = old if about == self._about else None
         run = keeping(build_run(self.desk.case), old.run if old else None)
         self._uncertain, self._about = uncertain_run(self.desk.case, run, same), about
         self.pairs = tuple(usual_pairs(run))
-        if self.pair not in self.pairs:
+        if self.pair not in self.pairs or self.desk.path != self._path:
             self.pair = self._first_pair()
+        self._path = self.desk.path
         self.renew()
 
     @traitlets.observe("pair", "resistance")

@@ -26,11 +26,12 @@ SIZED: tuple[Cause, ...] = tuple(
 _POINTS = 61
 _FLOOR = 0.01  # volts: less is drawn as this
 _DRAWN = 6  # readings on one picture
+_DRAWS = 64  # of the unknowns, a power of 2
 
 
 @dataclass(frozen=True, eq=False)
 class Trial:
-    """A cause tried on one suspect, all unknowns as they are most likely.
+    """A cause tried on one suspect: what it reads with the unknowns as likely, and over them.
 
     Parameters
     ----------
@@ -73,18 +74,46 @@ class Trial:
 
     def volts_at(self, size: float) -> Real:
         """Voltage of each reading (K,) [V] with the cause at a size within its range."""
+        return np.asarray(self.volts(np.array([self._share(size)]))[:, 0])
+
+    def _share(self, size: float) -> float:
         low, high = self.sizes.low, self.sizes.high
         if not low <= size <= high * (1 + 1e-12):
             raise Refused("size", f"must be {show(low, self.unit)} to {show(high, self.unit)}",
                           given=show(size, self.unit, 6))
-        share = math.log(size / low) / math.log(high / low)
-        return np.asarray(self.volts(np.array([share]))[:, 0])
+        return math.log(size / low) / math.log(high / low)
+
+    def band_at(self, size: float) -> tuple[Real, Real]:
+        """What 5 % and 95 % of the draws of all unknowns give each reading (K,) [V] at a size."""
+        low, high = self._band(np.array([self._share(size)]))
+        return low[:, 0], high[:, 0]
 
     @cached_property
     def curves(self) -> tuple[Real, Real]:
-        """Sizes (Q,) and the voltages of each reading there (K, Q) [V]."""
+        """Sizes (Q,) and the voltages of each reading there (K, Q) [V], unknowns as likely."""
         shares = np.linspace(0.0, 1.0, _POINTS)
         return size_at(shares, self.sizes), self.volts(shares)
+
+    @cached_property
+    def bands(self) -> tuple[Real, Real]:
+        """`band_at` along the sizes of the curves, (K, Q) each [V]."""
+        return self._band(np.linspace(0.0, 1.0, _POINTS))
+
+    def _band(self, shares: Real) -> tuple[Real, Real]:
+        count = len(shares)
+        drawn = np.tile(self._draws, (count, 1))
+        volts = self._scene.volts(self.readings, np.repeat(shares, _DRAWS), drawn)
+        low, high = np.quantile(volts.reshape(-1, count, _DRAWS), (0.05, 0.95), axis=2)
+        return low, high
+
+    @cached_property
+    def _draws(self) -> Real:
+        """Normal scores of the unknowns (draws, d); the same each time."""
+        from scipy.special import ndtri
+        from scipy.stats import qmc
+
+        unknowns = len(self._scene.coordinates)
+        return np.asarray(ndtri(qmc.Sobol(unknowns, seed=1).random(_DRAWS)))
 
     @cached_property
     def _scene(self) -> Scene:
@@ -106,38 +135,31 @@ def tried_figure(trial: Trial, size: float) -> Figure:
     said = [f"{name}: would be {show(float(here[k]), 'V')}" for k, name in enumerate(names)]
     low, high = trial.sizes.low, trial.sizes.high
     top = max([1.0, *(float(volts[k].max()) for k in kept)])
-    bands = tuple(_read(trial.readings[k], sizes, k) for k in kept)
+    least, most = (np.maximum(edge, _FLOOR) for edge in trial.bands)
     return Figure(
         key="tried", title=f"{trial.cause[:1].upper()}{trial.cause[1:]} on {trial.suspect}: "
         "what it would read",
         x=log_axis("Size of the cause", trial.unit, low, high),
         y=log_axis("Voltage, RMS", "V", _FLOOR, 2 * top),
         caption=f"The voltage that each reading would have with {trial.cause} of that size on "
-        f"“{trial.suspect}”, everything else as it is most likely. Shaded across: what was read, "
-        "with the instrument's accuracy. A cause fits where every curve is in its own shade.",
+        f"“{trial.suspect}”: with everything else as it is most likely, and shaded, 90 % of what "
+        "is not known of it. Across: what was read. A cause fits where every reading crosses its "
+        "own shade.",
         alternative=f"At {show(size, trial.unit)}: {listed(said)}.",
         numbers=tuple(said),
-        bands=tuple(b for b in bands if b is not None),
+        bands=tuple(Band(sizes, least[k], most[k], "", k) for k in kept),
         lines=tuple(Line(sizes, np.maximum(volts[k], _FLOOR),
                          f"reading {k + 1}, {trial.readings[k].text}", k) for k in kept),
-        references=(Reference(size, "x", f"tried, {show(size, trial.unit)}"),),
+        references=(Reference(size, "x", f"tried, {show(size, trial.unit)}"),
+                    *(Reference(v, "y", f"reading {k + 1}, {trial.readings[k].text}")
+                      for k in kept if _FLOOR < (v := trial.readings[k].value) < 2 * top)),
         points=tuple(Points(np.array([size]), np.array([max(float(here[k]), _FLOOR)]), "", k,
                             (said[k],)) for k in kept),
     )
 
 
 def fits(trial: Trial, size: float) -> tuple[bool, ...]:
-    """Whether each reading is what the cause of that size would show, within the accuracy."""
-    return tuple(bool(r.low - r.half_width <= v <= r.high + r.half_width)
-                 for r, v in zip(trial.readings, trial.volts_at(size), strict=True))
-
-
-def _read(reading: Observation, sizes: Real, style: int) -> Band | None:
-    """What was read as a band across the picture; None for a lamp."""
-    if reading.instrument.threshold is not None or not math.isfinite(reading.high):
-        return None
-    low = max(reading.low - reading.half_width, _FLOOR)
-    high = max(reading.high + reading.half_width, 1.2 * _FLOOR)
-    ends = np.array([sizes[0], sizes[-1]])
-    return Band(ends, np.full(2, low), np.full(2, high), "", style)
-
+    """Whether each reading, within its accuracy, is among 90 % of what the cause would show."""
+    low, high = trial.band_at(size)
+    return tuple(bool(r.low - r.half_width <= most and least <= r.high + r.half_width)
+                 for r, least, most in zip(trial.readings, low, high, strict=True))

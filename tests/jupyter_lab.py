@@ -10,7 +10,6 @@ import time
 import urllib.request
 from contextlib import suppress
 from pathlib import Path
-from typing import Any
 
 from playwright.sync_api import Locator, Page, sync_playwright
 from playwright.sync_api import TimeoutError as PlaywrightTimeout
@@ -152,8 +151,8 @@ class Lab:
         return row.last.locator("[role=slider]")
 
     def button(self, name: str) -> Locator:
-        """The button of that name."""
-        return self.panel().get_by_role("button", name=name, exact=True)
+        """The button of that name, which begins with its icon."""
+        return self.panel().get_by_role("button", name=name)
 
     def close(self) -> None:
         """Close the browser."""
@@ -166,8 +165,3 @@ def _free_port() -> int:
         probe.bind(("127.0.0.1", 0))
         return int(probe.getsockname()[1])
 
-
-def saved(lab: Lab) -> Any:
-    """Save the notebook by the keyboard."""
-    lab.page.keyboard.press("Control+s")
-    lab.page.wait_for_timeout(1000)
