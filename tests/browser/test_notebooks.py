@@ -126,6 +126,7 @@ def test_bad_entry_shows_its_sentence_and_keeps_the_value(lab: Lab, folder: Path
 def test_mark_of_your_meter_is_dragged_along_the_curve(lab: Lab, folder: Path) -> None:
     opened(lab, READINGS)
     figure = lab.panel().locator(".bqplot.figure").first
+    figure.scroll_into_view_if_needed()
     mark = figure.locator(".dot.element").last
     grip = mark.bounding_box()
     assert grip is not None
@@ -230,7 +231,8 @@ def test_time_to_the_redrawn_curve_is_reported(
     for step in range(20):
         figure.evaluate("""figure => {
             const path = [...figure.querySelectorAll('path.line')].find(
-                p => getComputedStyle(p).strokeWidth === '2px');
+                p => getComputedStyle(p).strokeWidth === '2px'
+                    && getComputedStyle(p).opacity !== '0');
             window.redrawn = new Promise((done, fail) => {
                 setTimeout(() => fail(new Error('no curve was redrawn')), 10000);
                 document.addEventListener('keydown', () => { window.pressed = performance.now(); },

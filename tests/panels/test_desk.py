@@ -37,11 +37,25 @@ def test_retyped_text_is_what_saving_writes(desk: Desk) -> None:
     assert text.count("47.5 m") == 1
 
 
-def test_text_that_stands_twice_is_not_retyped_blindly(desk: Desk) -> None:
-    desk.change({"run.length": "40 m", "notes": "as long as 40 m"})
-    desk.change({"title": "40 m"})  # the same text, in quotes, in another place
-    desk.change({"run.length": "41 m"})
-    assert (desk.case.content.title, desk.case.content.run.length) == ("40 m", 41.0)
+def test_value_that_stands_twice_is_retyped_in_its_own_place(desk: Desk) -> None:
+    desk.change({"title": "40 m"})
+    for length in ("40 m", "41 m", "40 m", "42 m"):
+        desk.change({"run.length": length})
+        assert desk.case.content.title == "40 m"
+        assert desk.case.content.run.length == float(length.removesuffix(" m"))
+    desk.change({"title": "42 m"})
+    desk.change({"title": "43 m"})
+    assert (desk.case.content.title, desk.case.content.run.length) == ("43 m", 42.0)
+
+
+def test_whole_numbers_are_retyped_as_saving_writes_them(sites: Path) -> None:
+    desk = Desk(sites / "heron-house.toml")
+    for count in (7, 6, 60, 1, 12):
+        desk.change({"standing[1].count": count})
+        assert desk.case.content.standing[0].count == count
+    text = desk.case.text
+    desk.save()
+    assert desk.path.read_text(encoding="utf-8") == text
 
 
 def test_refused_change_leaves_the_case_and_names_no_line(desk: Desk) -> None:

@@ -73,10 +73,33 @@ def test_reference_follows_its_axis() -> None:
 
 def test_elements_that_come_and_go() -> None:
     live = LiveFigure(figure())
+    marks = list(live.widget.marks)
     live.update(replace(figure(), bands=(), points=()))
-    assert not any(key[0] in ("bands", "points") for key in live._marks)
+    assert not live.mark("bands").visible
+    assert not live.mark("points").visible
+    live.update(figure(2.0))
+    assert live.mark("bands").visible
+    assert_allclose(live.mark("points").y, [2.0], rtol=0)
+    assert list(live.widget.marks) == marks
+
+
+def test_marks_that_are_new_come_in_their_place() -> None:
+    live = LiveFigure(replace(figure(), bands=(), points=()))
     live.update(figure())
-    assert_allclose(live.mark("bands").x[0], figure().bands[0].x, rtol=0)
+    shown = list(live.widget.marks)
+    assert shown.index(live.mark("bands")) < shown.index(live.mark("lines", 0))
+    assert shown.index(live.mark("lines", 1)) < shown.index(live.mark("points"))
+    assert shown.index(live.mark("points")) < shown.index(live.mark("notes"))
+
+
+def test_mark_under_the_pointer_is_left_alone() -> None:
+    live = LiveFigure(figure())
+    live.held = ("points", 0)
+    live.update(figure(2.0))
+    assert_allclose(live.mark("points").y, [1.0], rtol=0)
+    live.held = None
+    live.update(figure(2.0))
+    assert_allclose(live.mark("points").y, [2.0], rtol=0)
 
 
 def test_log_axis_has_a_tick_at_each_decade_and_its_words() -> None:

@@ -7,7 +7,6 @@ import base64
 from pathlib import Path
 
 import ipywidgets as w
-import numpy as np
 import pytest
 
 from unlanded.case.loading import load_case
@@ -103,9 +102,15 @@ def test_dragged_mark_sets_the_meter(sites: Path) -> None:
     panel = ReadingPanel(sites / "tern-quay.toml")
     mark = panel.loading.mark("points", len(panel.loading.figure.points) - 1)
     assert (mark.enable_move, mark.restrict_x) == (True, True)
-    mark.x = np.array([412_345.0])
+    for x, event in ((700e3, "drag"), (412_345.0, "drag_end")):
+        mark._handle_custom_msgs(None, {"event": event, "point": {"x": x, "y": 1.0}, "index": 0})
+        if event == "drag":
+            assert panel.impedance.text.value == "700 kohm"
+            # Where the pointer has it is the browser's to say.
+            assert mark.x[0] == pytest.approx(10e6, rel=1e-9, abs=0)
     assert panel.impedance.text.value == "412 kohm"
     assert mark.x[0] == pytest.approx(412e3, rel=1e-9, abs=0)
+    panel.model.bands()
     assert panel.model.table().rows[-1][0] == "your meter, 412 kΩ"
 
 

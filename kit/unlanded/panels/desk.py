@@ -36,6 +36,7 @@ class Desk(traitlets.HasTraits):
     def __init__(self, path: str | Path) -> None:
         self._read = load_case(path)
         self._changes: dict[str, Any] = {}
+        self._around = ("", "", "")
         super().__init__(case=self._read)
 
     @property
@@ -57,7 +58,7 @@ class Desk(traitlets.HasTraits):
     def change(self, changes: Mapping[str, Any]) -> None:
         """Make changes, by path as messages spell it: {"run.length": "50 m"}; None takes one out.
 
-        Refused as the file would be, and the case stays as it is.
+        At least one. Refused as the file would be, and the case stays as it is.
         """
         kept = {path: value for path, value in self._changes.items() if path not in changes}
         wanted = {**kept, **changes}
@@ -67,22 +68,39 @@ class Desk(traitlets.HasTraits):
         except Refused as refusal:
             # Line numbers of a text that nobody sees would mislead.
             raise Refused.all_of(_without_line(m) for m in refusal.mistakes) from None
+        self._around = self._found_around(changes, case.text)
         self._changes = wanted
         self.unsaved = case.text != self._read.text
         self.case = case
 
     def _retyped(self, changes: Mapping[str, Any]) -> str:
-        """The text with one value typed over the one that a change put there; "" if it is not so.
+        """The text with the one value typed over that was changed last; "" if it is another.
 
         Setting a value so that remarks stay takes longer than all the rest that a slider's step
-        asks for. Where the old value stands in the text only once, its place is known.
+        asks for, so what stands around the value is kept from one step to the next.
         """
-        ((path, new),) = changes.items() if len(changes) == 1 else (("", None),)
-        old = self._changes.get(path)
-        if not (isinstance(old, str) and isinstance(new, str) and _plain(old) and _plain(new)):
+        (path, value), *more = changes.items()
+        if more or path != self._around[0] or not (literal := _literal(value)):
             return ""
-        text = self.case.text
-        return text.replace(f'"{old}"', f'"{new}"') if text.count(f'"{old}"') == 1 else ""
+        return literal.join(self._around[1:])
+
+    def _found_around(self, changes: Mapping[str, Any], text: str) -> tuple[str, str, str]:
+        """The path that was changed, and the texts before and after its value; "" if unknown.
+
+        They are known where the new text is the old one but for that value.
+        """
+        (path, value), *more = changes.items()
+        old, new = _literal(self._changes.get(path)), _literal(value)
+        if path == self._around[0] and new and not more:
+            return self._around
+        if not more and old and new:
+            at = text.find(new)
+            while at >= 0:
+                before, after = text[:at], text[at + len(new):]
+                if f"{before}{old}{after}" == self.case.text:
+                    return path, before, after
+                at = text.find(new, at + 1)
+        return "", "", ""
 
     def add_to_memo(self, entry: Mapping[str, Any]) -> bool:
         """Put a figure or table into the case's memo; False where it is in there already."""
@@ -118,7 +136,7 @@ class Desk(traitlets.HasTraits):
         self._take_over()
 
     def _take_over(self) -> None:
-        self._changes, self.unsaved = {}, False
+        self._changes, self._around, self.unsaved = {}, ("", "", ""), False
         self.case = self._read
 
 
@@ -128,9 +146,11 @@ def cases_beside(folder: Path | None = None) -> tuple[Path, ...]:
     return tuple(sorted([*here.glob("*.toml"), *(here / FOLDER).glob("*.toml")]))
 
 
-def _plain(text: str) -> bool:
-    """Whether a text stands between quotation marks as it is."""
-    return text.isprintable() and not set(text) & {'"', "\\"}
+def _literal(value: Any) -> str:
+    """A text or a whole number as the file has it; "" for another, or a text that needs escapes."""
+    if isinstance(value, str) and value.isprintable() and not set(value) & {'"', "\\"}:
+        return f'"{value}"'
+    return str(value) if isinstance(value, int) and not isinstance(value, bool) else ""
 
 
 def _without_line(mistake: Mistake) -> Mistake:

@@ -53,6 +53,8 @@ class LiveFigure:
     ----------
     figure : the description to begin with
     height : of the picture on the screen [px]; as the figure's own shape has it when 0
+
+    `held` is an element that is being dragged, and is not updated meanwhile.
     """
 
     def __init__(self, figure: Figure, *, height: int = 0) -> None:
@@ -62,6 +64,7 @@ class LiveFigure:
         bare = not (figure.x.ticks or figure.y.ticks)
         self._marks: dict[tuple[str, int], Any] = {}
         self._drawn: dict[tuple[str, int], Any] = {}
+        self.held: tuple[str, int] | None = None
         self.widget = bq.Figure(
             axes=[] if bare else list(self._axes), animation_duration=0, padding_x=0.0,
             padding_y=0.0, display_toolbar=False, background_style={"fill": "white"},
@@ -85,14 +88,20 @@ class LiveFigure:
             self.caption.value = caption
         self._shape(figure)
         wanted = dict(_elements(with_legend(figure)))
-        kept = {key for key, element in wanted.items() if _equal(element, self._drawn.get(key))
-                and not (moved and key[0] in _ON_AXES)}
-        marks = {key: self._marks[key] if key in kept else self._mark(key, element)
-                 for key, element in wanted.items()}
+        if self.held in wanted and self.held in self._drawn:
+            wanted[self.held] = self._drawn[self.held]  # under the pointer: not to be moved
+        for key, element in wanted.items():
+            alike = _equal(element, self._drawn.get(key))
+            if not alike or (moved and key[0] in _ON_AXES):
+                self._mark(key, element)
+        for key, mark in self._marks.items():
+            # One that is taken out and put back is drawn anew, and drops out of the pointer's hand.
+            if mark.visible != (key in wanted):
+                mark.visible = key in wanted
         self._drawn = wanted
-        if marks.keys() != self._marks.keys() or not self.widget.marks:
-            self._marks = marks
-            self.widget.marks = list(marks.values())
+        if len(self.widget.marks) < len(self._marks):
+            in_order = sorted(self._marks, key=lambda key: (_ORDER.index(key[0]), key[1]))
+            self.widget.marks = [self._marks[key] for key in in_order]
 
     def _shape(self, figure: Figure) -> None:
         """Size and margins: words beside an axis need room, and a section keeps its proportions."""
@@ -113,7 +122,8 @@ class LiveFigure:
         """The bqplot mark that shows an element, such as ("points", 0), for dragging it."""
         return self._marks[kind, number]
 
-    def _mark(self, key: tuple[str, int], element: Any) -> Any:
+    def _mark(self, key: tuple[str, int], element: Any) -> None:
+        """Put the numbers of an element into its mark, which is made where there is none yet."""
         traits = _TRAITS[key[0]](element, self.figure)
         mark = self._marks.get(key)
         if mark is None:
@@ -123,11 +133,11 @@ class LiveFigure:
                 scales["color"] = bq.ColorScale(colors=list(SHADES), min=low, max=high)
             if "names" in traits:
                 traits["tooltip"] = bq.Tooltip(fields=["name"], show_labels=False)
-            return _MARKS[key[0]](scales=scales, **traits)
+            self._marks[key] = _MARKS[key[0]](scales=scales, **traits)
+            return
         with mark.hold_sync():
             for name, value in traits.items():
                 setattr(mark, name, value)
-        return mark
 
 
 def _width_to_scale(figure: Figure, height: int) -> int:
@@ -162,12 +172,13 @@ def _elements(figure: Figure) -> Any:
     for number, line in enumerate(figure.lines):
         if line.style is not None and len(line.x) > 2:
             yield ("hover", number), line
+    # Under the marks, or it would take the pointer from one that can be dragged.
+    if pointing := tuple(n for n in figure.notes if n.target is not None):
+        yield ("leaders", 0), pointing
     for number, points in enumerate(figure.points):
         if points.x_low is not None:
             yield ("bars", number), points
         yield ("points", number), points
-    if pointing := tuple(n for n in figure.notes if n.target is not None):
-        yield ("leaders", 0), pointing
     for number, note in enumerate(figure.notes):
         yield ("notes", number), note
 
@@ -290,6 +301,10 @@ _TRAITS: dict[str, Callable[[Any, Figure], dict[str, Any]]] = {
     "mark labels": _mark_label, "band labels": _band_label, "hover": _hover, "points": _points,
     "bars": _bars, "leaders": _leaders, "notes": _note,
 }
+_ORDER = ("field", "areas", "bands", "references", "lines", "mark labels", "band labels", "hover",
+          "leaders", "bars", "points", "notes")
+"""From the lowest to the uppermost."""
+
 _ON_AXES = ("references", "mark labels", "band labels", "hover")
 """What depends on the axes of its figure, besides on itself."""
 

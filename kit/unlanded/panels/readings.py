@@ -14,7 +14,6 @@ from ..study.readings import Pair
 from .live import LiveFigure
 from .look import alert, said, table_html
 from .panel import Panel
-from .quantity import written
 from .quantity_box import QuantityBox
 from .readings_model import METER, Bands, ReadingModel
 from .run_model import LENGTH
@@ -95,11 +94,14 @@ class ReadingPanel(Panel):
         shown = self.loading.figure.points
         mine = [k for k, p in enumerate(shown) if p.texts and p.texts[0].startswith(YOURS)]
         if mine and not (mark := self.loading.mark("points", mine[0])).enable_move:
-            mark.enable_move = mark.restrict_x = mark.update_on_move = True
-            mark.observe(self._dragged, "x")
+            mark.enable_move = mark.restrict_x = True
+            mark.drag_size = 1.5
+            mark.on_drag(lambda _, event: self._dragged(event, ("points", mine[0])))
+            mark.on_drag_end(lambda _, event: self._dragged(event, None))
 
-    def _dragged(self, change: dict[str, Any]) -> None:
-        ohms = float(np.clip(change["new"][0], METER.low, METER.high))
-        if abs(ohms / self.model.resistance - 1) > 1e-6:
-            # Three digits, as the box's own handle has them.
-            self.model.set_resistance(written(float(f"{ohms:.3g}"), "ohm"))
+    def _dragged(self, event: dict[str, Any], held: tuple[str, int] | None) -> None:
+        """Follow the pointer; the mark under it is left alone until it is let go."""
+        self.loading.held = held
+        ohms = float(np.clip(event["point"]["x"], METER.low, METER.high))
+        self.model.resistance = float(f"{ohms:.3g}")  # as many digits as the box's handle has
+        self._draw_banded(None)

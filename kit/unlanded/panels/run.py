@@ -11,6 +11,7 @@ from ..report.figure import Figure
 from .live import LiveFigure
 from .look import said, table_html
 from .panel import Panel
+from .quantity import Quantity
 from .quantity_box import QuantityBox
 from .run_model import LENGTH, NOTHING, PIPE, SCREEN, SURFACE, RunModel, Spacing
 
@@ -28,7 +29,7 @@ class RunPanel(Panel):
                                    options=[NOTHING, SURFACE, PIPE, SCREEN],
                                    style={"description_width": "10.5em"},
                                    layout={"width": "35.4em"})
-        self.spacing = QuantityBox(LENGTH, model.run.length, model.set_spacing,
+        self.spacing = QuantityBox(Quantity("Spacing", "m", 1e-3, 1.0), 0.01, model.set_spacing,
                                    customary=customary)
         self._fit()
         self.answer, self.matrix, self.near = w.HTML(), w.HTML(), w.HTML()
