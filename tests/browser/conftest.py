@@ -11,6 +11,7 @@ from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
+
 from jupyter_lab import Lab, Server
 
 WORKBOOK = Path(__file__).resolve().parents[2] / "workbook"

@@ -9,8 +9,8 @@ from pathlib import Path
 
 import nbformat
 import pytest
-from jupyter_lab import Lab
 
+from jupyter_lab import Lab
 from unlanded.case.loading import load_case
 from unlanded.panels.desk import Desk
 from unlanded.panels.notebooks import lines_of, run_notebook

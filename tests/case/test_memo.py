@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import pytest
-from case_text import refusals, site
 
+from case_text import refusals, site
 from unlanded.case.loading import read_case
 
 GOOD = """

@@ -1,4 +1,4 @@
-"""The case on the desk: changes through the file's own checks, saving, and two desks on one file."""
+"""The case on the desk: changes through the file's own checks, saving, two desks on one file."""
 
 from __future__ import annotations
 
@@ -118,12 +118,14 @@ def test_memo_refuses_what_the_case_does_not_have(desk: Desk) -> None:
     assert desk.added == []
 
 
-def test_cases_beside(sites: Path) -> None:
+@pytest.mark.usefixtures("sites")
+def test_cases_beside() -> None:
     assert [p.name for p in cases_beside()] == [
         "alder-mill.toml", "heron-house.toml", "larkmoor.toml", "tern-quay.toml"]
 
 
-def test_every_site_survives_a_change_and_a_save(sites: Path) -> None:
+@pytest.mark.usefixtures("sites")
+def test_every_site_survives_a_change_and_a_save() -> None:
     for path in cases_beside():
         desk = Desk(path)
         before = path.read_text(encoding="utf-8")

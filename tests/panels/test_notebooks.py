@@ -1,4 +1,4 @@
-"""The notebooks as files: stored outputs, copies, reruns, and a change of 1 % that turns them red."""
+"""The notebooks as files: stored outputs, copies, reruns; a change of 1 % turns them red."""
 
 from __future__ import annotations
 

@@ -6,9 +6,9 @@ import datetime
 
 import numpy as np
 import pytest
-from case_text import site
 from numpy.testing import assert_allclose
 
+from case_text import site
 from unlanded.case.loading import read_case
 from unlanded.physics.burden import Burden
 from unlanded.report.added import added_part

@@ -6,9 +6,9 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from case_text import site
 from numpy.testing import assert_allclose
 
+from case_text import site
 from unlanded.case.loading import read_case
 from unlanded.case.observed import case_observations, case_suspects
 from unlanded.errors import Refused

@@ -33,6 +33,7 @@ class CaseBar(w.VBox):  # type: ignore[misc]
                    layout={"flex_flow": "wrap"}),
             w.HBox([self.title, self.state], layout={"flex_flow": "wrap"})])
         self.add_class("unlanded-bar")
+        self.state.add_class("unlanded-state")
         self._list()
         self.pick.observe(self._picked, "value")
         self.save.on_click(lambda _: self._do(desk.save, "Saved."))

@@ -42,7 +42,7 @@ _MARGIN = {"top": 56, "bottom": 52, "left": 66, "right": 14}
 _NARROW = {"top": 40, "bottom": 8, "left": 8, "right": 8}
 HOVERED = 60  # points of a curve whose numbers show under the pointer
 PAPER = "unlanded-paper"
-WIDEST, LOWEST = 640, 260  # pixels
+WIDEST, NARROWEST, LOWEST = 640, 440, 260  # pixels
 LETTER = 6.4  # pixels, mean width of one in the words beside an axis
 
 
@@ -68,7 +68,7 @@ class LiveFigure:
         self.widget = bq.Figure(
             axes=[] if bare else list(self._axes), animation_duration=0, padding_x=0.0,
             padding_y=0.0, display_toolbar=False, background_style={"fill": "white"},
-            layout={"width": "100%", "min_width": "480px"},
+            layout={"width": "100%", "min_width": f"{NARROWEST}px"},
         )
         self.widget.add_class(PAPER)
         self.caption = w.HTML()
@@ -138,6 +138,13 @@ class LiveFigure:
         with mark.hold_sync():
             for name, value in traits.items():
                 setattr(mark, name, value)
+
+
+def side_by_side(*figures: LiveFigure) -> w.HBox:
+    """The figures in a row, or one under the other where the page is too narrow for that."""
+    for figure in figures:
+        figure.view.layout.flex = f"1 1 {NARROWEST}px"
+    return w.HBox([figure.view for figure in figures], layout={"flex_flow": "wrap"})
 
 
 def _width_to_scale(figure: Figure, height: int) -> int:
@@ -261,7 +268,7 @@ def _points(points: Points, _: Figure) -> dict[str, Any]:
     paint, kind = colour(points.style), shape(points.style)
     named = {"names": np.array(points.texts)} if points.texts else {}
     return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind),
-            "default_size": 110 if kind in _SHAPE else 70,
+            "default_size": 80 if kind in _SHAPE else 70,
             "colors": [paint], "stroke": paint, "fill": not points.hollow,
             "display_names": False,  **named}
 

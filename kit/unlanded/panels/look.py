@@ -16,6 +16,7 @@ STYLE = """<style>
 .unlanded-said, .unlanded-caution, .unlanded-answer { color: var(--jp-content-font-color1);
   line-height: 1.45; }
 .unlanded-caution { border-left: 4px solid #b26a00; padding: 2px 10px; margin: 6px 0; }
+.unlanded-state { margin-left: 2em; }
 .unlanded-answer { font-size: 105%; padding: 2px 0; }
 table.unlanded-table { border-collapse: collapse; color: var(--jp-content-font-color1); }
 table.unlanded-table caption { text-align: left; font-weight: 600; padding: 4px 0; }

@@ -7,7 +7,7 @@ from typing import Any
 
 import ipywidgets as w
 
-from .live import LiveFigure
+from .live import LiveFigure, side_by_side
 from .look import alert, said, table_html
 from .operation_model import RESISTOR, Judged, OperationModel
 from .panel import Panel
@@ -39,7 +39,7 @@ class OperationPanel(Panel):
         model.observe(lambda _: self.guarded(self._draw_beside), "resistor")
         self._draw_judged(None)
         return [self.load, w.HBox([self.run_length, self.resistor], layout={"flex_flow": "wrap"}),
-                self.answer, w.HBox([self.along.view, self.beside.view]), self.states, self.cures]
+                self.answer, side_by_side(self.along, self.beside), self.states, self.cures]
 
     def renew(self) -> None:
         """Show the case as it is now."""

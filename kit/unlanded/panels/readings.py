@@ -11,7 +11,7 @@ import numpy as np
 from ..report.pair import YOURS
 from ..report.words import pair_words
 from ..study.readings import Pair
-from .live import LiveFigure
+from .live import LiveFigure, side_by_side
 from .look import alert, said, table_html
 from .panel import Panel
 from .quantity_box import QuantityBox
@@ -39,7 +39,7 @@ class ReadingPanel(Panel):
         model.observe(lambda _: self.guarded(self._draw), "sheet")
         model.bands()
         self._draw()
-        figures = w.HBox([self.loading.view, self.length.view])
+        figures = side_by_side(self.loading, self.length)
         return [self.pair, w.HBox([self.run_length, self.impedance], layout={"flex_flow": "wrap"}),
                 self.answer, figures, self.table]
 
