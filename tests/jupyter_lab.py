@@ -10,6 +10,7 @@ import time
 import urllib.request
 from contextlib import suppress
 from pathlib import Path
+from typing import Any
 
 from playwright.sync_api import Locator, Page, sync_playwright
 from playwright.sync_api import TimeoutError as PlaywrightTimeout
@@ -33,6 +34,7 @@ class Server:
     """
 
     def __init__(self, root: Path, room: Path, *, dark: bool = False) -> None:
+        self.root = root
         self.token = secrets.token_hex(8)
         self.url = f"http://127.0.0.1:{_free_port()}"
         for name in FOLDERS:
@@ -81,6 +83,21 @@ class Lab:
         self.page.on("console", lambda m: self.messages.append((m.type, m.text)))
         self.page.on("pageerror", lambda e: self.messages.append(("pageerror", str(e))))
 
+    def begin(self, folder: str) -> None:
+        """Forget what the console said; notebooks are those of a folder of the server from here."""
+        self._folder = folder
+        self.messages.clear()
+
+    def stop_kernels(self) -> None:
+        """Stop every kernel of the server."""
+        for kernel in self._ask("kernels"):
+            self.page.request.delete(
+                f"{self.server.url}/api/kernels/{kernel['id']}?token={self.server.token}")
+
+    def _ask(self, what: str) -> Any:
+        return self.page.request.get(
+            f"{self.server.url}/api/{what}?token={self.server.token}").json()
+
     @property
     def errors(self) -> list[str]:
         """What the console called an error."""
@@ -88,8 +105,8 @@ class Lab:
 
     def open(self, notebook: str) -> None:
         """Open a notebook of the server's folder, with a kernel that is ready."""
-        self.notebook = notebook
-        self.page.goto(f"{self.server.url}/lab/tree/{notebook}?token={self.server.token}&reset")
+        self.notebook = f"{self._folder}/{notebook}"
+        self.page.goto(f"{self.server.url}/lab/tree/{self.notebook}?token={self.server.token}&reset")
         self.page.locator(".jp-NotebookPanel .jp-Notebook").first.wait_for(timeout=90_000)
         self.wait()
 
@@ -97,9 +114,7 @@ class Lab:
         """Until the notebook's kernel is idle: the page says so before the kernel listens."""
         end = time.monotonic() + longest
         while time.monotonic() < end:
-            answer = self.page.request.get(
-                f"{self.server.url}/api/sessions?token={self.server.token}").json()
-            for session in answer:
+            for session in self._ask("sessions"):
                 kernel = session["kernel"]
                 if session["path"] == self.notebook and kernel["execution_state"] == "idle" \
                         and kernel["connections"] > 0:

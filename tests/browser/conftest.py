@@ -6,6 +6,7 @@ Where there is no browser they are skipped; with UNLANDED_BROWSER=required that 
 from __future__ import annotations
 
 import os
+import re
 import shutil
 from collections.abc import Callable, Iterator
 from pathlib import Path
@@ -30,26 +31,35 @@ def chromium() -> str:
     return found
 
 
+@pytest.fixture(scope="session")
+def server(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Server]:
+    """JupyterLab on a folder that each test puts its own copy of the workbook into."""
+    made = Server(tmp_path_factory.mktemp("lab"), tmp_path_factory.mktemp("room"))
+    yield made
+    made.stop()
+
+
+@pytest.fixture(scope="session")
+def browser(server: Server, chromium: str) -> Iterator[Lab]:
+    """Its page, as wide and high as a small laptop's."""
+    made = Lab(server, chromium)
+    yield made
+    made.close()
+
+
 @pytest.fixture
-def folder(tmp_path: Path) -> Path:
+def folder(server: Server, request: pytest.FixtureRequest) -> Path:
     """A fresh copy of the workbook."""
-    return Path(shutil.copytree(WORKBOOK, tmp_path / "workbook"))
+    name = re.sub(r"[^a-z0-9]+", "-", request.node.name.lower())
+    return Path(shutil.copytree(WORKBOOK, server.root / name))
 
 
 @pytest.fixture
-def lab(folder: Path, chromium: str, tmp_path: Path) -> Iterator[Lab]:
-    """JupyterLab on that copy, in the browser."""
-    room = tmp_path / "room"
-    room.mkdir()
-    server = Server(folder, room)
-    try:
-        page = Lab(server, chromium)
-        try:
-            yield page
-        finally:
-            page.close()
-    finally:
-        server.stop()
+def lab(browser: Lab, folder: Path) -> Iterator[Lab]:
+    """The page, for the notebooks of that copy; its kernels are stopped afterwards."""
+    browser.begin(folder.name)
+    yield browser
+    browser.stop_kernels()
 
 
 @pytest.fixture
