@@ -45,6 +45,10 @@ class Refused(ValueError):
         refusal.args = ("\n".join(str(m) for m in found),)
         return refusal
 
+    def _render_traceback_(self) -> list[str]:
+        # What a notebook shows in the place of a traceback.
+        return [str(m) for m in self.mistakes]
+
     def at(self, place: str) -> Refused:
         """The same refusal, told from further out: `place` is put before each place."""
         return Refused.all_of(

@@ -166,3 +166,14 @@ def test_lab_opens_in_the_folder_and_asks_for_no_news(tmp_path: Path) -> None:
     ours = Path(lab_environment()["JUPYTER_CONFIG_PATH"].split(":")[0])
     config = json.loads((ours / "labconfig" / "page_config.json").read_text(encoding="utf-8"))
     assert config == {"disabledExtensions": {"@jupyterlab/apputils-extension:announcements": True}}
+
+
+def test_a_refusal_in_a_notebook_is_a_sentence_and_no_traceback(tmp_path: Path) -> None:
+    from nbclient import NotebookClient
+
+    made = nbformat.v4.new_notebook(cells=[nbformat.v4.new_code_cell(
+        "from unlanded.case.loading import load_case\nload_case('none.toml')")])
+    NotebookClient(made, timeout=60, allow_errors=True, kernel_name="python3",
+                   resources={"metadata": {"path": str(tmp_path)}}).execute()
+    (output,) = made.cells[0].outputs
+    assert output.traceback == ["none.toml: there is no such file."]

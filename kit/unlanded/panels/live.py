@@ -36,7 +36,7 @@ from .look import caption_html
 _FILL = {"metal": "#c98a5a", "earthed metal": "#d9d9d9", "cover": "none", "space": "#ffffff",
          "shade": "#eeeeee", "ink": "#222222"}
 _EDGE = {"metal": "#5a3517", "cover": "#444444"}
-_SHAPE = {"star": "ellipse"}  # bqplot has no star
+_SHAPE = {"star": "ellipse", "plus": "rectangle"}  # no star; a plus is too thin to be dragged
 _GRID = "#e2e2e2"
 _MARGIN = {"top": 56, "bottom": 52, "left": 66, "right": 14}
 _NARROW = {"top": 40, "bottom": 8, "left": 8, "right": 8}
@@ -268,7 +268,7 @@ def _points(points: Points, _: Figure) -> dict[str, Any]:
     paint, kind = colour(points.style), shape(points.style)
     named = {"names": np.array(points.texts)} if points.texts else {}
     return {"x": points.x, "y": points.y, "marker": _SHAPE.get(kind, kind),
-            "default_size": 80 if kind in _SHAPE else 70,
+            "default_size": 80,
             "colors": [paint], "stroke": paint, "fill": not points.hollow,
             "display_names": False,  **named}
 

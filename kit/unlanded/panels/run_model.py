@@ -118,7 +118,7 @@ class RunModel(traitlets.HasTraits):
         return Table(
             "matrix", f"Capacitance matrix (Maxwell), {unit}.",
             (Column(""), *(Column(name, "", "right") for name in names)),
-            tuple((name, *(f"{c * 1e12 * per:.2f}" for c in row))
+            tuple((name, *(f"{c * 1e12 * per:.2f}".replace("-", "−") for c in row))
                   for name, row in zip(names, self.run.matrix, strict=True)))
 
     def formulas(self) -> Table:
