@@ -26,8 +26,8 @@ _COLUMNS = (
     Column("Rank", "", "right"), Column("Device"), Column("Board"), Column("Rated", "mA", "right"),
     Column("Circuits", "", "right"), Column("As numbers, all on", "mA", "right"),
     Column("Expected", "mA", "right"), Column("Worst credible", "mA", "right"),
-    Column("Margin to must not trip", "mA", "right"),
-    Column("Margin to recommended", "mA", "right"), Column("Chance of a trip", "", "right"),
+    Column("Left to the trip band", "mA", "right"),
+    Column("Left to the share", "mA", "right"), Column("Chance of a trip", "", "right"),
 )
 
 
@@ -41,7 +41,8 @@ def ranking_table(screening: Screening, top: int | None = None) -> Table:
     return Table(
         "ranking" if top is None else "most-pressing",
         "Devices by chance of a trip, then by the margin left.", _COLUMNS, rows,
-        f"Margins at the worst credible current; below 0: exceeded. {RULE}")
+        "Left: margin of the worst credible current, to what must not trip the device and to the "
+        f"recommended share; below 0: exceeded. {RULE}")
 
 
 def _row(screening: Screening, rank: int, k: int, name: str, circuits: int) -> tuple[str, ...]:
