@@ -96,7 +96,7 @@ def test_what_fits_coupling_is_called_coupling() -> None:
 def test_textbook_readings_get_their_cause(
     readings: tuple[tuple[str, str], ...], cause: str
 ) -> None:
-    # The discrimination table that every trade course teaches (common practice): a phantom falls,
+    # What tells the causes apart (common practice, no source): a phantom falls,
     # a leak falls by R/(R + 3 kΩ), a connection and an induced voltage stay.
     assert told(*readings).likeliest("spare") == cause
 

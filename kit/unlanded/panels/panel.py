@@ -46,12 +46,11 @@ class Panel(w.VBox):  # type: ignore[misc]
         self.take_away.renew()
 
     def build(self) -> Sequence[w.Widget]:
-        """The widgets of the panel, top to bottom, showing the case as it is."""
-        raise NotImplementedError
+        """The widgets of the panel, top to bottom, showing the case as it is; none by itself."""
+        return ()
 
     def renew(self) -> None:
-        """Show the case as it is now."""
-        raise NotImplementedError
+        """Show the case as it is now; a panel without widgets has nothing to show."""
 
     def figures(self) -> tuple[Figure, ...]:
         """The figures as they stand; the first one is the picture of the bundle."""
