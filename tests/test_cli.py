@@ -6,24 +6,11 @@ import json
 from pathlib import Path
 
 import pytest
-from click.testing import CliRunner, Result
 
-from unlanded.cli import main
+from command_line import run
 
 SITES = Path(__file__).resolve().parent.parent / "workbook" / "sites"
 QUAY = SITES / "tern-quay.toml"
-
-
-def run(*words: object) -> Result:
-    result = CliRunner().invoke(main, [str(w) for w in words])
-    assert "Traceback" not in result.output
-    return result
-
-
-@pytest.fixture
-def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
-    monkeypatch.chdir(tmp_path)
-    return tmp_path
 
 
 def test_check_accepts_every_demo_site() -> None:

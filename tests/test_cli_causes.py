@@ -4,24 +4,9 @@ from __future__ import annotations
 
 from pathlib import Path
 
-import pytest
-from click.testing import CliRunner, Result
-
-from unlanded.cli import main
+from command_line import run
 
 QUAY = Path(__file__).resolve().parent.parent / "workbook" / "sites" / "tern-quay.toml"
-
-
-def run(*words: object) -> Result:
-    result = CliRunner().invoke(main, [str(w) for w in words])
-    assert "Traceback" not in result.output
-    return result
-
-
-@pytest.fixture
-def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
-    monkeypatch.chdir(tmp_path)
-    return tmp_path
 
 
 def test_causes_prints_the_finding_the_odds_and_the_caution() -> None:

@@ -98,8 +98,7 @@ def sheet(case: Path, csv_file: Path | None, field: bool) -> None:
         write_new(csv_file, csv_text(sheet_table(readings)).encode("utf-8-sig"))
         click.echo(f"Wrote {csv_file}")
         return
-    width = max(60, shutil.get_terminal_size((100, 24)).columns)
-    click.echo("\n\n".join(plain(table, width) for table in sheet_tables(readings)))
+    click.echo("\n\n".join(plain(table, _width()) for table in sheet_tables(readings)))
     click.echo(f"\n{CAUTION}")
 
 
@@ -245,8 +244,7 @@ def causes(case: Path, readings: Path | None) -> None:
 
     loaded = load_case(case)
     investigation = investigate(with_readings(loaded, readings) if readings else loaded)
-    width = max(60, shutil.get_terminal_size((100, 24)).columns)
-    click.echo(causes_text(investigation, width))
+    click.echo(causes_text(investigation, _width()))
     click.echo(f"\n{CAUTION}")
 
 

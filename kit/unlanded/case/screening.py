@@ -63,12 +63,13 @@ def screen_register(
     count = len(register.devices)
     fixed = np.zeros(count, dtype=complex)
     np.add.at(fixed, register.owner, np.where(uncertain | balanced, 0.0, 1j * cable * turns))
+    most = np.where(balanced, 0.0, cable + loads["count"] * loads["likely"])
+    # An unknown board is refused here, before the long work.
+    regrouping = _regrouped(register, most, regroup_board)
     rows = _bank(register, (1j * cable * turns, *spread, uncertain), loads, turns, three)
     screened = screen(list(register.devices.values()), rows, fixed, progress=progress)
-    most = np.where(balanced, 0.0, cable + loads["count"] * loads["likely"])
     return Screening(register, supply, screened, most,
-                     np.bincount(register.owner, most, minlength=count).astype(float),
-                     _regrouped(register, most, regroup_board))
+                     np.bincount(register.owner, most, minlength=count).astype(float), regrouping)
 
 
 def _turns(register: Register) -> Complex:

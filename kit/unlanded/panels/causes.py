@@ -12,7 +12,7 @@ from ..study.causes import Explanation
 from .causes_model import CausesModel
 from .live import LiveFigure
 from .look import alert, said, sentences_html, table_html
-from .pages import LatePicture, Page, Pages
+from .pages import LatePicture, Page, Pages, drawn
 from .panel import Panel
 from .quantity_box import QuantityBox
 from .readings_table import ReadingsTable
@@ -89,7 +89,7 @@ class CausesPanel(Panel):
         """The pictures that have been drawn so far."""
         known = {"Odds": self.odds, "Next measurement": self.next,
                  "Read and predicted": self.predicted, "Try a cause": self.tried}
-        return {name: late.live for name, late in known.items() if late.live is not None}
+        return drawn(known)
 
     def offers(self) -> Sequence[tuple[str, dict[str, Any]]]:
         """The cause that is tried; the odds are in every memo of a case with readings."""

@@ -12,7 +12,7 @@ from ..study.readings import Pair
 from .live import LiveFigure
 from .look import said, table_html
 from .margin_model import MarginModel
-from .pages import LatePicture, Page, Pages
+from .pages import LatePicture, Page, Pages, drawn
 from .panel import Panel
 from .quantity import Quantity
 from .quantity_box import QuantityBox
@@ -72,7 +72,7 @@ class MarginPanel(Panel):
         """The pictures that have been drawn so far."""
         known = {"Standing current": self.budget, "Added load": self.added,
                  "Instruments": self.trip_time, "Current log": self.history}
-        return {name: late.live for name, late in known.items() if late.live is not None}
+        return drawn(known)
 
     def offers(self) -> Sequence[tuple[str, dict[str, Any]]]:
         """The chance of a trip against the chosen load."""

@@ -64,3 +64,8 @@ class LatePicture(w.VBox):  # type: ignore[misc]
             self.live.update(figure)
         if self.live.view not in self.children:
             self.children = [self.live.view]
+
+
+def drawn(pictures: Mapping[str, LatePicture]) -> dict[str, LiveFigure]:
+    """Those that have been drawn so far, by the same names."""
+    return {name: late.live for name, late in pictures.items() if late.live is not None}
