@@ -7,6 +7,7 @@ the last multipoles changed is the measure of the error. Where it is too large, 
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
@@ -77,11 +78,12 @@ def capacitance_matrices(geometry: Geometry, tolerance: float = TOLERANCE) -> Re
             break
         failed = []
         for which in _groups(terms, pending):
-            solved, error, growth = _truncated(geometry.take(which), terms[which].max(axis=0),
-                                               tolerance)
+            solved, error = _truncated(geometry.take(which), terms[which].max(axis=0))
             out[which] = solved.matrix
-            terms[which] = np.ceil(terms[which] * growth[:, None])
-            failed.append(which[error > tolerance])
+            lacking = error > tolerance
+            growth = _growth(solved.matrix[lacking], error[lacking], tolerance)
+            failed.append(which[lacking])
+            terms[failed[-1]] = np.ceil(terms[failed[-1]] * growth[:, None])
         pending = np.concatenate(failed)
         if not len(pending):
             return out
@@ -96,9 +98,10 @@ def solve(geometry: Geometry, tolerance: float, names: Sequence[str]) -> Solved:
     for _ in range(_ROUNDS):
         if terms.max() > MOST_MULTIPOLES:
             break
-        solved, error, growth = _truncated(geometry, terms, tolerance)
+        solved, error = _truncated(geometry, terms)
         if error.max() <= tolerance:
             return solved
+        growth = _growth(solved.matrix, error, tolerance)
         terms = np.ceil(terms * growth.max()).astype(np.intp)
     raise _too_close(names[int(terms.argmax())], tolerance)
 
@@ -114,18 +117,23 @@ def _groups(terms: Index, pending: Index) -> Iterator[Index]:
         by_need = by_need[size:]
 
 
-def _truncated(geometry: Geometry, terms: Index, tolerance: float) -> tuple[Solved, Real, Real]:
-    """The batch with `terms` (n,) multipoles at its conductors, with its estimated errors (B,)
-    and how many times more multipoles would meet `tolerance` (B,)."""
+def _truncated(geometry: Geometry, terms: Index) -> tuple[Solved, Real]:
+    """The batch with `terms` (n,) multipoles at its conductors, with its estimated errors (B,)."""
     conductor, order, coarse = _listed(terms)
     system = assemble(geometry, conductor, order, coarse)
     *rough, fine = _grounded(system.inverse_potential_coefficients(), geometry)
-    error, smallest = _error(rough, fine)
+    return Solved(fine, system, conductor, order), _error(rough, fine)
+
+
+def _growth(matrix: Real, error: Real, tolerance: float) -> Real:
+    """How many times more multipoles would bring each `error` (B,) to `tolerance` (B,)."""
+    share = _shares(matrix)
+    smallest = np.min(_sizes(matrix, share) / share, axis=(-1, -2))
     # What covers that touch leave after m orders is about exp(−c √m) of the largest element; the
     # power would be 2, and a half more makes three in four meet the tolerance at the next trial.
     excess = np.clip(error, tolerance, 0.5)
     growth = np.log(smallest * tolerance) / np.log(smallest * excess)
-    return Solved(fine, system, conductor, order), error, np.clip(growth**2.5, 1.1, 2.5)
+    return np.asarray(np.clip(growth**2.5, 1.1, 2.5))
 
 
 def _too_close(name: str, tolerance: float) -> Refused:
@@ -143,36 +151,39 @@ def multipole_numbers(geometry: Geometry, tolerance: float) -> Index:
     proportion to the permittivity. Factors fitted to covered pairs; the error estimate decides.
     """
     a, b, ratio = geometry.metal, geometry.cover, geometry.ratio
-    slack = (b - a) / np.maximum(ratio, 1.0)
-    apart = np.abs(geometry.centre[:, :, None] - geometry.centre[:, None, :])
-    air = np.maximum(apart - b[:, :, None] - b[:, None, :], 0.0)
-    gap = air + slack[:, :, None] + slack[:, None, :]
-    lens = a[:, :, None] * a[:, None, :] / (a[:, :, None] + a[:, None, :])
-    bare = (a == b)[:, :, None] | (a == b)[:, None, :]
-    stiff = np.maximum(ratio[:, :, None], ratio[:, None, :])
-    need = _orders(a[:, :, None], gap, lens, air, b[:, :, None], np.where(bare, 4.0, 1.5) * stiff)
+    bend, slack = 1 / a, (b - a) / np.maximum(ratio, 1.0)
+    cusp = np.where(a == b, 4.0, 1.5)
+    one, other = np.s_[:, :, None], np.s_[:, None, :]
+    apart = np.abs(geometry.centre[one] - geometry.centre[other])
+    touching = b[one] + b[other]
+    stiff = np.maximum(cusp[one], cusp[other]) * np.maximum(ratio[one], ratio[other])
+    need = _orders(a[one], b[one], bend[one] + bend[other], apart - touching,
+                   slack[one] + slack[other], stiff)
     own = np.arange(a.shape[1])
     need[:, own, own] = 0.0
     most = need.max(axis=2)
     if geometry.wall != "none":
-        if geometry.wall == "plane":
-            air, lens = geometry.centre.imag - b, a
-        else:
+        wall, air = 0.0, geometry.centre.imag - b
+        if geometry.wall == "pipe":
             radius = geometry.pipe_radius[:, None]
-            air, lens = radius - np.abs(geometry.centre) - b, a * radius / (radius - a)
-        air = np.maximum(air, 0.0)
-        most = np.maximum(most, _orders(a, air + slack, lens, air, b, 1.5 * ratio))
+            wall, air = -1 / radius, radius - np.abs(geometry.centre) - b
+        most = np.maximum(most, _orders(a, b, bend + wall, air, slack, 1.5 * ratio))
     # Error falls by e² per a/c orders: 3.15 a/c orders are 5e-4.
-    scale = np.log(1 / tolerance) / np.log(1 / TOLERANCE)
-    # The more conductors, the better the farthest are screened from each other: the smaller the
-    # smallest element, and the more orders to the same share of it.
-    crowd = 0.7 + (0.12 if geometry.wall == "none" else 0.2) * min(a.shape[1], 9)
-    return np.asarray(np.ceil(4 + most * scale * crowd), dtype=np.intp)
+    scale = math.log(tolerance) / math.log(TOLERANCE)
+    # The more conductors and the farther they stand apart, the better the farthest are screened
+    # from each other: the smaller the smallest element, and the more orders to the same share of it.
+    far = np.maximum((apart / touching).max(axis=(1, 2)), 1.0)
+    screened = 0.65 * (far - 1) if geometry.wall == "none" else 1.5 * (far - 1) ** 1.5
+    crowd = np.minimum(0.9 + screened, min(0.4 + 0.3 * len(own), 2.75))
+    return np.asarray(np.ceil(4 + most * scale * crowd[:, None]), dtype=np.intp)
 
 
-def _orders(a: Real, gap: Real, lens: Real, air: Real, b: Real, cusp: Real) -> Real:
+def _orders(a: Real, b: Real, bend: Real, air: Real, slack: Real, cusp: Real) -> Real:
+    """With the bends 1/a of both metals added up, and `slack` that of the covers' gap."""
+    air = np.maximum(air, 0.0)
     with np.errstate(divide="ignore"):
-        return np.asarray(3.15 * a / np.sqrt(2 * gap * lens) + cusp / (1 + 4 * cusp * air / b))
+        tight = 3.15 * a * np.sqrt(0.5 * bend / (air + slack))
+    return np.asarray(tight + cusp / (1 + 4 * cusp * air / b))
 
 
 def _listed(terms: Index) -> tuple[Index, Index, tuple[int, ...]]:
@@ -198,17 +209,22 @@ def _grounded(inverse: Real, geometry: Geometry) -> Real:
     return np.asarray(scale * (inverse + inverse.swapaxes(-1, -2)) / 2)
 
 
-def _error(rough: Sequence[Real], fine: Real) -> tuple[Real, Real]:
-    """Estimated error of each matrix (B,), and its smallest element as a share of its largest.
-
-    The error is the worst element's, by the worst of the cuts.
-    """
-    own = np.sqrt(np.diagonal(fine, axis1=-2, axis2=-1))
-    share = own[:, :, None] * own[:, None, :]
-    size = np.maximum(np.abs(fine), FLOOR * share)
+def _error(rough: Sequence[Real], fine: Real) -> Real:
+    """Estimated error of each matrix (B,): the worst element's, by the worst of the cuts."""
     lacking = [part * np.abs(fine - cut) for part, cut in zip(_CUTS.values(), rough, strict=True)]
-    worst = np.max(np.max(lacking, axis=0) / size, axis=(-1, -2))
-    return worst, np.min(size / share, axis=(-1, -2))
+    worst = np.maximum(*lacking) / _sizes(fine, _shares(fine))
+    return np.asarray(worst.max(axis=(-1, -2)))
+
+
+def _shares(matrix: Real) -> Real:
+    """√(C_ii C_jj) of every element (B, n, n)."""
+    own = np.sqrt(np.diagonal(matrix, axis1=-2, axis2=-1))
+    return np.asarray(own[:, :, None] * own[:, None, :])
+
+
+def _sizes(matrix: Real, share: Real) -> Real:
+    """What the error of every element is relative to (B, n, n)."""
+    return np.asarray(np.maximum(np.abs(matrix), FLOOR * share))
 
 
 def _check(tolerance: float) -> None:

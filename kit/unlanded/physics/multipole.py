@@ -66,7 +66,7 @@ class Geometry:
             [(c.x, c.y, c.radius, c.outer, c.cover_permittivity) for c in s.conductors]
             for s in sections
         ]
-        x, y, metal, cover, permittivity = np.moveaxis(np.array(rows, dtype=float), -1, 0)
+        x, y, metal, cover, permittivity = np.array(rows, dtype=float).transpose(2, 0, 1)
         filler = np.array([s.filler_permittivity for s in sections], dtype=float)
         first = sections[0].surround
         origin = np.zeros(len(rows), dtype=complex)
@@ -104,14 +104,14 @@ class System:
 
     `upper` (B, 2N + n, 2N + n) is the Cholesky factor U of [[K, g], [gᵀ, P₀]] when `definite`
     (only its upper triangle is meant), else that matrix itself. `coarse`, ascending, are numbers
-    of multipoles at which the series is also cut. A = `amplitude` × x, (B, N).
+    of multipoles at which the series is also cut. `listed` tells which they are.
     """
 
     upper: Real
     coarse: tuple[int, ...]
     charges: int
     definite: bool
-    amplitude: Real
+    listed: _Listed
 
     def inverse_potential_coefficients(self) -> Real:
         """P⁻¹ for V = P λ, cut at each of `coarse` and in full: (cuts + 1, B, n, n)."""
@@ -119,7 +119,7 @@ class System:
         ends = [2 * k for k in self.coarse] + [stop]
         own, coupling = self.upper[:, stop:, stop:], self.upper[:, :stop, stop:]
         if self.definite:
-            own = np.triu(own)
+            own = own * _upper(self.charges)
             potential = [own.swapaxes(-1, -2) @ own]
             for start, end in zip(ends[-2::-1], ends[:0:-1], strict=True):
                 y = coupling[:, start:end]
@@ -139,7 +139,8 @@ class System:
         inner, coupling, own = whole[:stop, :stop], whole[:stop, stop:], whole[stop:, stop:]
         x = -np.linalg.solve(inner, coupling @ charges)
         volts = own.T @ (own @ charges) if self.definite else own @ charges + coupling.T @ x
-        return np.asarray(self.amplitude[0] * (x[0::2] + 1j * x[1::2])), volts
+        scale = self.listed.of(self.listed.weight)[0] / np.sqrt(self.listed.order)
+        return np.asarray(scale * (x[0::2] + 1j * x[1::2])), volts
 
 
 def assemble(
@@ -152,15 +153,18 @@ def assemble(
     stop, n = 2 * len(order), geometry.centre.shape[-1]
     matrix = np.empty((len(rho), stop + n, stop + n))
     # An order that the cover does not answer (|ρ| rounded to nothing) keeps a plain 1.
-    sign = np.where(listed.of(rho) > _NO_ANSWER, -1.0, 1.0)
-    definite = bool(np.all(sign > 0))
+    weak = rho > _NO_ANSWER
+    definite = not weak.any()
     g, p0 = _fill(matrix[:, :stop, :stop].view(complex), geometry, listed, definite)
     matrix[:, 0:stop:2, stop:], matrix[:, 1:stop:2, stop:] = g.real, g.imag
     matrix[:, stop:, stop:] = p0
-    np.einsum("bkk->bk", matrix)[:, :stop] += np.repeat(sign, 2, axis=-1)
+    diagonal = matrix.reshape(len(matrix), -1)[:, :: stop + n + 1]
     if definite:
+        diagonal[:, :stop] += 1.0
         _factorise(matrix)
-    return System(matrix, coarse, n, definite, listed.of(listed.weight) / np.sqrt(order))
+    else:
+        diagonal[:, :stop] += np.repeat(np.where(listed.of(weak), -1.0, 1.0), 2, axis=-1)
+    return System(matrix, coarse, n, definite, listed)
 
 
 @lru_cache(maxsize=1)
@@ -197,8 +201,9 @@ class _Listed:
 
     def spread(self, base: Complex) -> Complex:
         """√|ρ_r| base[i, j]^m for each multipole r = (i, m) and conductor j: (B, N, n)."""
-        powers = np.moveaxis(_powers(base, self.weight.shape[-1]), -1, 1)
-        powers = powers[:, self.order - 1, self.conductor]
+        out = np.empty((len(base), self.weight.shape[-1], *base.shape[1:]), dtype=complex)
+        out[...] = base[:, None]
+        powers = np.multiply.accumulate(out, axis=1, out=out)[:, self.order - 1, self.conductor]
         powers *= self.of(self.weight)[..., None]
         return np.asarray(powers)
 
@@ -284,7 +289,7 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     across: Complex = radius**2 - z[:, :, None] * np.conj(z[:, None, :])
     toward = b[:, :, None] * np.conj(z[:, None, :]) / across
     count, n, top = listed.weight.shape
-    i, j = np.triu_indices(n)
+    i, j = _pairs(n)
     tau = np.exp(1j * np.angle(toward[:, i, j]))
     p = b[:, i] * b[:, j] * (radius[..., 0] / across[:, i, j]) ** 2
     left = _shifted_powers(np.abs(toward[:, i, j]), top) * listed.weight[:, i, None, :]
@@ -293,9 +298,9 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     block = (left.swapaxes(-1, -2) @ right.view(float)).view(complex)
     block *= _powers(tau, top)[..., None]
     whole = np.empty((count, top, n, top, n), dtype=complex)
-    for k in range(len(i)):
-        whole[:, :, j[k], :, i[k]] = np.conj(block[:, k].swapaxes(-1, -2))
-        whole[:, :, i[k], :, j[k]] = block[:, k]
+    blocks = block.swapaxes(0, 1)
+    whole[:, :, j, :, i] = blocks.conj().swapaxes(-1, -2)
+    whole[:, :, i, :, j] = blocks
     matrix = whole.reshape(count, top * n, top * n)
     place = (listed.order - 1) * n + listed.conductor
     if len(place) < top * n:
@@ -316,8 +321,22 @@ def _shifted_powers(base: Any, top: int) -> Any:
     padded = np.zeros((*base.shape, 2 * top - 1), dtype=base.dtype)
     padded[..., top - 1] = 1.0
     padded[..., top:] = _powers(base, top - 1)
-    shifted = np.lib.stride_tricks.sliding_window_view(padded, top, axis=-1)[..., ::-1, :]
+    *outer, step = padded.strides
+    shifted = np.lib.stride_tricks.as_strided(
+        padded[..., top - 1 :], (*base.shape, top, top), (*outer, -step, step))
     return np.multiply(shifted, _triangle(top), out=np.empty(shifted.shape, dtype=base.dtype))
+
+
+@lru_cache(maxsize=8)
+def _pairs(n: int) -> tuple[Index, Index]:
+    """Every two of n, and each with itself, once."""
+    return np.triu_indices(n)
+
+
+@lru_cache(maxsize=8)
+def _upper(n: int) -> Real:
+    """1 on and above the diagonal, 0 below."""
+    return np.triu(np.ones((n, n)))
 
 
 @lru_cache(maxsize=8)
