@@ -47,6 +47,29 @@ def inductance_matrix(section: Section, *, return_distance: float) -> Real:
     return np.asarray(MU_0 / (2 * math.pi) * out)
 
 
+def with_tube(matrix: Real, *, radius: float, return_distance: float) -> Real:
+    """The matrix (n + 1, n + 1) [H/m] with, last, a thin tube round all the conductors.
+
+    L_tt = L_it = (μ₀/2π) ln(D/a), wherever in the tube a conductor lies: a current spread evenly
+    round the tube has no field within it, so that all within it link the flux outside alone.
+
+    Parameters
+    ----------
+    matrix : of the conductors inside (n, n) [H/m], with the same return distance
+    radius : a of the tube [m]
+    return_distance : D [m], larger than the tube
+
+    >>> round(float(with_tube(np.eye(1), radius=5e-3, return_distance=900.0)[0, 1]) * 1e6, 4)
+    2.4201
+    """
+    if not 0 < radius < return_distance:
+        raise Refused("tube", "radius must be above 0 m and below the return distance",
+                      given=f"{radius:g} m")
+    out = np.full((len(matrix) + 1,) * 2, MU_0 / (2 * math.pi) * math.log(return_distance / radius))
+    out[:-1, :-1] = matrix
+    return out
+
+
 def earth_return_distance(*, resistivity: float, frequency: float) -> float:
     """Equivalent depth of the earth return, 658.5 √(ρ/f) [m]; ρ [ohm·m], f [Hz], above 0.
 

@@ -37,7 +37,8 @@ from .section import Pipe, Plane, Section
 Real = NDArray[np.float64]
 Complex = NDArray[np.complex128]
 Index = NDArray[np.intp]
-Block = Callable[[slice, slice], Complex]  # of a matrix (B, N, N), by its rows and columns
+# Of a matrix (B, N, N), by its rows and columns, and what `_Listed.paths` has for them.
+Block = Callable[[slice, slice, Real], Complex]
 _NO_ANSWER = 1e-15
 _BAND = 48  # rows of multipoles filled together
 
@@ -207,15 +208,21 @@ class _Listed:
         powers *= self.of(self.weight)[..., None]
         return np.asarray(powers)
 
-    def between(self, there: Complex, back: Complex, rows: slice, columns: slice) -> Complex:
-        """there[r, j] back[s, i] (m + n − 1)! / ((m − 1)! (n − 1)! √(m n)), r = (i, m), s = (j, n).
+    def paths(self, rows: slice, columns: slice) -> Real:
+        """(m + n − 1)! / ((m − 1)! (n − 1)! √(m n)) of the orders m in `rows`, n in `columns`."""
+        table = _binomials(self.weight.shape[-1])
+        return table.take(self.order[rows] - 1, axis=0).take(self.order[columns] - 1, axis=1)
+
+    def between(
+        self, there: Complex, back: Complex, rows: slice, columns: slice, paths: Real
+    ) -> Complex:
+        """there[r, j] back[s, i] × `paths`, with r = (i, m) in `rows`, s = (j, n) in `columns`.
 
         From what the multipoles in `rows` do at a conductor j, and those in `columns` at i.
         """
-        table = _binomials(self.weight.shape[-1])
         block = there[:, rows].take(self.conductor[columns], axis=-1)
         block *= back[:, columns].take(self.conductor[rows], axis=-1).swapaxes(-1, -2)
-        block *= table[self.order[rows, None] - 1, self.order[columns] - 1]
+        block *= paths
         return np.asarray(block)
 
 
@@ -237,11 +244,12 @@ def _fill(
         rows = slice(start, start + _BAND if upper_only else size)
         columns = slice(start, size)
         real, imaginary = k[:, 0::2][:, rows, columns], k[:, 1::2][:, rows, columns]
-        block = direct(rows, columns)
+        paths = listed.paths(rows, columns)
+        block = direct(rows, columns, paths)
         if mirrored is None:
             real[...] = block
         else:
-            image_block = mirrored(rows, columns)
+            image_block = mirrored(rows, columns, paths)
             np.subtract(block, image_block, out=real)
             block += image_block
         np.multiply(block, -1j, out=imaginary)
@@ -292,11 +300,11 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     i, j = _pairs(n)
     tau = np.exp(1j * np.angle(toward[:, i, j]))
     p = b[:, i] * b[:, j] * (radius[..., 0] / across[:, i, j]) ** 2
-    left = _shifted_powers(np.abs(toward[:, i, j]), top) * listed.weight[:, i, None, :]
+    left = _shifted_powers(np.abs(toward[:, i, j]), top)
     right = _shifted_powers(np.conj(toward[:, j, i]), top) * listed.weight[:, j, None, :]
     right *= _powers(p / tau, top)[..., None]
     block = (left.swapaxes(-1, -2) @ right.view(float)).view(complex)
-    block *= _powers(tau, top)[..., None]
+    block *= (_powers(tau, top) * listed.weight[:, i])[..., None]
     whole = np.empty((count, top, n, top, n), dtype=complex)
     blocks = block.swapaxes(0, 1)
     whole[:, :, j, :, i] = blocks.conj().swapaxes(-1, -2)
@@ -306,7 +314,7 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     if len(place) < top * n:
         matrix = matrix.take(place, axis=1).take(place, axis=2)
     g = -listed.spread(np.conj(toward)) / np.sqrt(listed.order)[:, None]
-    return lambda rows, columns: matrix[:, rows, columns], g, np.log(np.abs(across) / radius)
+    return lambda rows, columns, _: matrix[:, rows, columns], g, np.log(np.abs(across) / radius)
 
 
 def _powers(base: Real | Complex, top: int) -> Any:

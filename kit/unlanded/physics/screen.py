@@ -1,41 +1,42 @@
-"""A screen that is not everywhere at 0 V, and cores in screens of their own."""
+"""A screen as a conductor round its cores, and cores in screens of their own."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from ..errors import Refused
 
 Real = NDArray[np.float64]
 
 
-def floating_screen(matrix: Real, *, to_earth: float) -> Real:
-    """Capacitance matrix (n, n) [F/m] of cores whose common screen is earthed at no end.
+def with_screen(matrix: Real, *, to_earth: ArrayLike) -> Real:
+    """Capacitance matrix (..., n + 1, n + 1) [F/m] of cores and, last, the screen round them all.
 
     Parameters
     ----------
-    matrix : with the screen at 0 V (n, n) [F/m]
-    to_earth : of the screen's outside [F/m], at least 0; 0 leaves only the cores for return
+    matrix : of the cores with the screen at 0 V (..., n, n) [F/m]; they face nothing outside it
+    to_earth : of the screen's outside (...) [F/m], at least 0; the two broadcast
 
-    The screen takes the potential at which its own charge is zero: c cᵀ / (Σ c + to_earth) is
-    taken off, with c the cores' capacitances to the screen. Earthed at one end or at both, it is
-    at 0 V for capacitance, and `matrix` holds; the two differ in what is induced magnetically.
+    A row's sum is what a core has to the screen. Of two cores with 1 F/m between them and 2 to a
+    screen that has 6 to earth:
 
-    Two cores in a floating screen that nothing else is near share all their charge:
-
-    >>> floating_screen(np.array([[3.0, -1.0], [-1.0, 3.0]]), to_earth=0.0).tolist()
-    [[2.0, -2.0], [-2.0, 2.0]]
+    >>> with_screen(np.array([[3.0, -1.0], [-1.0, 3.0]]), to_earth=6.0).tolist()
+    [[3.0, -1.0, -2.0], [-1.0, 3.0, -2.0], [-2.0, -2.0, 10.0]]
     """
-    if not to_earth >= 0:
+    outside = np.asarray(to_earth, dtype=float)
+    if not np.all(outside >= 0):
         raise Refused("screen", "capacitance to earth must be at least 0 F/m",
-                      given=f"{to_earth:g}")
-    own = matrix.sum(axis=1)
-    if own.sum() + to_earth <= 0:
-        raise Refused("screen", "has no capacitance to anything")
-    return np.asarray(matrix - np.outer(own, own) / (own.sum() + to_earth))
+                      given=f"{outside.min():g}")
+    own = matrix.sum(axis=-1)
+    size = own.shape[-1] + 1
+    out = np.empty((*np.broadcast_shapes(own.shape[:-1], outside.shape), size, size))
+    out[..., :-1, :-1] = matrix
+    out[..., :-1, -1] = out[..., -1, :-1] = -own
+    out[..., -1, -1] = own.sum(axis=-1) + outside
+    return out
 
 
 def own_screens(matrix: Real, screened: Sequence[int]) -> Real:
