@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from case_text import PAIR, SITES, changed
+from case_text import PAIR, SITES, changed, refusals
 from unlanded.case.build import build_run
 from unlanded.case.loading import load_case, read_case
 from unlanded.case.uncertainty import uncertain_run
@@ -99,3 +99,33 @@ def test_singles_in_a_conduit_lie_at_random() -> None:
     text = load_case(SITES / "heron-house.toml").text
     assert names(text) == ["permittivity of the covers", "how the singles lie"]
     assert names(text + "\n[spread]\narrangement = false\n") == ["permittivity of the covers"]
+
+
+SCREENED = changed(CORD, ('layout = "singles"', 'layout = "laid up"'), ('spacing = "10 mm"\n', ""),
+                   ('kind = "plane"\ngap = "2 mm"', 'kind = "screen"\nearthed = "none"'),
+                   ("H07V", "H05VV"), ("solid", "flexible"))
+OUTSIDE = "capacitance of the screen to earth"
+
+
+def test_what_a_floating_screen_has_to_earth_is_not_known_unless_said() -> None:
+    assert names(SCREENED)[-1] == OUTSIDE
+    given = changed(SCREENED, ('"none"', '"none"\nto_earth = "120 pF/m"'))
+    assert OUTSIDE not in names(given)
+    spread = given + '[spread]\nto_earth = {tolerance = "20 %"}\n'
+    found = uncertain_run(read_case(spread))
+    np.testing.assert_allclose(limits(found.inputs[-1].distribution), (96e-12, 144e-12), rtol=2e-3)
+    assert OUTSIDE not in names(changed(SCREENED, ('"none"', '"near"')))
+    batch = found.draws(8)
+    outside = batch.capacitance.sum(axis=2)[:, -1]
+    assert outside.min() > 95e-12
+    assert outside.max() > 1.1 * outside.min()
+    # Within the screen the cores have what the section gives them, draw by draw.
+    inside = np.abs(batch.capacitance[:, :3].sum(axis=2))
+    assert inside.max() < 1e-12 * batch.capacitance.max()
+
+
+@pytest.mark.parametrize("text", [
+    CORD, changed(SCREENED, ('"none"', '"both"')), changed(SCREENED, ('"none"', '"far"'))])
+def test_a_spread_of_a_screen_that_does_not_float_is_refused(text: str) -> None:
+    (said,) = refusals(text + '[spread]\nto_earth = "20 %"\n')
+    assert "spread.to_earth: is of a screen that is earthed at no end, and there is none." in said

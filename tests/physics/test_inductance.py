@@ -17,8 +17,9 @@ from unlanded.physics.inductance import (
     induced_voltage,
     inductance_matrix,
     loop_mutual_inductance,
+    with_tube,
 )
-from unlanded.physics.section import Conductor, Section
+from unlanded.physics.section import Conductor, Pipe, Section
 
 MICRO = 1e-6
 
@@ -188,3 +189,27 @@ def test_loops_that_share_a_wire_are_refused():
     assert loop_mutual_inductance(go=0, back=0.1, victim=1e-9, reference=0.5) > 0
     with pytest.raises(Refused, match="loops: must not share a wire"):
         loop_mutual_inductance(go=0, back=0.1, victim=0, reference=0.5)
+
+
+def test_a_core_and_a_tube_about_it_are_a_coaxial_loop():
+    # (μ₀/2π) [ln(b/a) + ¼]: the textbook's coaxial line with a thin outer conductor.
+    core = Section((Conductor("a", 0, 0, 1e-3),), Pipe(5e-3))
+    m = with_tube(inductance_matrix(core, return_distance=900.0), radius=5e-3,
+                  return_distance=900.0)
+    loop = m[0, 0] + m[1, 1] - 2 * m[0, 1]
+    assert loop == pytest.approx(MU_0 / (2 * math.pi) * (math.log(5) + 0.25), rel=1e-12, abs=0)
+
+
+@pytest.mark.parametrize("place", [0, 2e-3, 1e-3 + 3.5e-3j])
+def test_a_tube_links_whatever_lies_in_it_alike(place):
+    # The tube as 2000 filaments round the circle, each with its share of the current.
+    turns = 5e-3 * np.exp(2j * np.pi * np.arange(2000) / 2000)
+    by_filaments = MU_0 / (2 * math.pi) * np.log(900.0 / np.abs(turns - place)).mean()
+    found = with_tube(np.eye(1), radius=5e-3, return_distance=900.0)[0, 1]
+    assert found == pytest.approx(by_filaments, rel=1e-9, abs=0)
+
+
+@pytest.mark.parametrize("radius", [0.0, 900.0])
+def test_a_tube_that_cannot_be_is_refused(radius):
+    with pytest.raises(Refused, match="radius must be above 0 m and below the return distance"):
+        with_tube(np.eye(1), radius=radius, return_distance=900.0)

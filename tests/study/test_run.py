@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -19,7 +20,7 @@ from unlanded.physics.layouts import Core, laid_up
 from unlanded.physics.line import LUMPING_ERROR, exact_chain
 from unlanded.physics.section import Conductor, Pipe, Plane, Section
 from unlanded.study.ends import Bonded, Driven, Joined, Open, Through
-from unlanded.study.run import Run
+from unlanded.study.run import Run, Screen
 from unlanded.study.supply import Supply
 
 CORE = Core(0.69e-3, 1.39e-3, 5.0)  # 1.5 mm² under PVC
@@ -380,3 +381,76 @@ def test_no_two_ends_short_the_supply_or_give_power_of_their_own(near, far):
         if not run.same(point, "earth"):
             impedance = run.impedance(point)
             assert impedance.real >= -1e-9 * max(abs(impedance), OHM)
+
+
+# A screen as a conductor of the run.
+
+PF = 1e-12
+IN_SCREEN = np.array([[140.0, -40.0], [-40.0, 140.0]]) * PF  # 40 pF/m between, 100 to the screen
+BARE = Screen(resistance=15e-3, to_earth=50 * PF)
+
+
+def screened(near=None, screen=BARE, **more):
+    """Two cores, a on the line and b open, in a screen that nothing earths unless `near` does."""
+    section = Section(laid_up(("a", "b"), CORE), CONDUIT)
+    run = Run(section, 100.0, SUPPLY, {"a": Driven("L"), **(near or {})}, {}, (OHM, OHM),
+              screen=screen)
+    return replace(run, capacitance=run.screened(IN_SCREEN), **more)
+
+
+def test_two_cores_in_a_floating_screen_by_hand():
+    # Nodes b and s: 140 b − 100 s = 40 U, −100 b + 250 s = 100 U, so b = 0.8 U and s = 0.72 U.
+    run = screened()
+    assert run.names == ("a", "b", "screen")
+    assert abs(run.voltage("b@far")) == pytest.approx(0.8 * 230, rel=1e-5, abs=0)
+    assert abs(run.voltage("screen@far")) == pytest.approx(0.72 * 230, rel=1e-5, abs=0)
+    # Behind the screen a meter sees the two-terminal capacitance 250 − 100²/140 pF/m.
+    assert run.impedance("screen@far").imag == pytest.approx(
+        -1 / (2 * np.pi * 50 * 100 * (250 - 100**2 / 140) * PF), rel=1e-4, abs=0)
+
+
+@pytest.mark.parametrize("ends", ["near", "far", "both"])
+def test_an_earthed_screen_is_at_earth_for_capacitance(ends):
+    at = {end: {"screen": Bonded("earth")} for end in ("near", "far") if ends in (end, "both")}
+    run = screened(at.get("near"), far=at.get("far", {}))
+    pipe = replace(run, near={"a": Driven("L")}, far={}, capacitance=IN_SCREEN, screen=None)
+    assert abs(run.voltage("b@far")) == pytest.approx(230 * 40 / 140, rel=1e-5, abs=0)
+    assert abs(run.residual) == pytest.approx(abs(pipe.residual), rel=1e-5, abs=0)
+    assert run.same("screen@near", "earth") == (ends != "far")
+
+
+def test_a_screen_bonded_at_one_end_by_a_dense_solve():
+    # One π section of three conductors with earth return, nodal matrix by hand; a load on the core
+    # b, and the screen earthed at the near end. Order: a far, b near, b far, screen far.
+    omega, length = 2 * np.pi * 50, 100.0
+    load = Burden(20.0)
+    run = screened({"screen": Bonded("earth"), "b": Bonded("N")},
+                   far={"a": Through(load, "b")}, screen=Screen(15e-3, 50 * PF))
+    away = 658.5 * math.sqrt(100.0 / 50)
+    a, b = (complex(c.x, c.y) for c in run.section.conductors)
+    size, apart = run.section.conductors[0].radius, abs(a - b)
+    tube = math.log(away / CONDUIT.radius)
+    own, mutual = math.log(away / size) + 0.25, math.log(away / apart)
+    inductance = 2e-7 * np.array([[own, mutual, tube], [mutual, own, tube], [tube, tube, tube]])
+    series = (np.diag([OHM, OHM, 15e-3]) + math.pi**2 * 50e-7 + 1j * omega * inductance) * length
+    c = np.array([[140, -40, -100], [-40, 140, -100], [-100, -100, 250]]) * PF
+    y, shunt = np.linalg.inv(series), 1j * omega * c * length / 2
+    between = np.array([[1, -1, 0], [-1, 1, 0], [0, 0, 0]]) / 20.0
+    near = np.array([230, 0, 0])  # a on the line, b on the neutral, the screen on earth
+    far = np.linalg.solve(y + shunt + between, y @ near)
+    assert run.lumps == 1
+    for name, volts in zip(run.names, far, strict=True):
+        assert run.voltage(f"{name}@far") == pytest.approx(volts, rel=1e-6, abs=0)
+    into = y @ (near - far) + shunt @ near
+    assert run.residual == pytest.approx(into[0] + into[1], rel=1e-4, abs=0)
+
+
+def test_a_screen_needs_a_pipe_and_its_name():
+    with pytest.raises(Refused, match="needs a pipe round the section"):
+        Run(Section(laid_up(("a", "b"), CORE), TRAY), 1.0, SUPPLY, {}, {}, (OHM, OHM), screen=BARE)
+    with pytest.raises(Refused, match="no conductor of its name"):
+        Run(Section(laid_up(("a", "screen"), CORE), CONDUIT), 1.0, SUPPLY, {}, {}, (OHM, OHM),
+            screen=BARE)
+    for wrong in ((-1.0, 0.0), (math.inf, 0.0), (0.0, -1e-12)):
+        with pytest.raises(Refused, match="must be at least 0"):
+            Screen(*wrong)

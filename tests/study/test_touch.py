@@ -8,15 +8,17 @@ import numpy as np
 import pytest
 
 from unlanded.errors import Refused
-from unlanded.physics.section import Conductor, Plane, Section
+from unlanded.physics.section import Conductor, Pipe, Plane, Section
 from unlanded.reference.limits import LET_GO_CURRENT
 from unlanded.study.ends import Bonded, Driven
-from unlanded.study.run import Run
+from unlanded.study.run import Run, Screen
 from unlanded.study.supply import Supply
 from unlanded.study.touch import (
     induced_voltages,
     induction_finding,
     length_for_current,
+    screen_current,
+    screening_factor,
     touch_network,
     touch_sheet,
 )
@@ -134,3 +136,41 @@ def test_refusals() -> None:
         induced_voltages(carrying(pair_at(1.0), 10.0), {"sorce": 1.0})
     with pytest.raises(Refused, match="above 0 Hz"):
         touch_network(0.0)
+
+
+def screened(**bonds: object) -> Run:
+    """Two cores in a screen of 5 mm inside radius and 1 Ω/km."""
+    section = Section((Conductor("go", -2e-3, 0, 1e-3), Conductor("spare", 2e-3, 0, 1e-3)),
+                      Pipe(5e-3))
+    ends = {end: {"screen": Bonded("earth")} for end in bonds}
+    return Run(section, 1000.0, Supply(230.0, 50.0), {"go": Driven("L"), **ends.get("near", {})},
+               ends.get("far", {}), (7e-3, 7e-3), screen=Screen(1e-3, 50e-12))
+
+
+def test_a_screen_earthed_at_both_ends_takes_its_share_off() -> None:
+    # Screen with return by earth: R 1 + 0.0493 Ω/km, ωL = 2π50 × 0.2 ln(931.3 / 0.005) = 0.7624;
+    # the factor 1 / |1.0493 + 0.7624 j| = 0.7710, and a core's loop ωM is 0.7624 as well.
+    run = screened(near=1, far=1)
+    assert abs(screening_factor(run) - 0.7710) <= 5e-5
+    current = screen_current(run, {"go": 10.0})
+    assert abs(abs(current) - 10 * abs(0.0493 + 0.7624j) * 0.7710) <= 1e-3
+    bare = {end: induced_voltages(screened(**{end: 1}), {"go": 10.0}) for end in ("near", "far")}
+    assert bare["near"] == bare["far"]
+    # The loop of the screen is a little looser than that of two cores: the rest is not screened.
+    e, left = bare["near"], induced_voltages(run, {"go": 10.0})
+    assert set(left) == {"spare"}
+    z_screen = complex(1.0493480, 0.7623807)
+    by_hand = e["spare"] - e["screen"] * (z_screen - 1.0) / z_screen
+    assert left["spare"] == pytest.approx(by_hand, rel=1e-4, abs=0)
+
+
+def test_a_current_that_returns_inside_induces_none_in_the_screen() -> None:
+    run = screened(near=1, far=1)
+    assert abs(screen_current(run, {"go": 10.0, "spare": -10.0})) < 1e-12
+    assert screen_current(screened(near=1), {"go": 10.0}) == 0
+    assert screening_factor(run_of(10.0)) == 1.0
+
+
+def test_a_screen_that_nothing_earths_can_be_touched() -> None:
+    assert "screen" in {t.point.partition("@")[0] for t in touch_sheet(screened())}
+    assert "screen" not in {t.point.partition("@")[0] for t in touch_sheet(screened(far=1))}

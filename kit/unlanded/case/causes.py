@@ -9,7 +9,7 @@ from pydantic import BeforeValidator, Field
 from ..errors import Refused, nearest
 from ..study.hypotheses import CAUSES, Cause
 from ..study.observation import ACTIONS, Action
-from .fields import Cost, KnownCore, Share, Table, entries
+from .fields import Cost, KnownConductor, Share, Table, entries
 
 
 def _word_of(kind: str, words: tuple[str, ...]) -> BeforeValidator:
@@ -29,7 +29,7 @@ Actions = Annotated[tuple[ActionWord, ...], BeforeValidator(entries)]
 class CausesTable(Table):
     """`[causes]`: on which conductors a cause is looked for, and what is thought beforehand."""
 
-    suspects: Annotated[tuple[KnownCore, ...], BeforeValidator(entries)] = Field(
+    suspects: Annotated[tuple[KnownConductor, ...], BeforeValidator(entries)] = Field(
         (), examples=[["black"]])
     shares: dict[CauseWord, Share] = Field(
         default_factory=dict, examples=['{"solid connection" = "20 %"}'])

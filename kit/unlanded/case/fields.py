@@ -28,13 +28,15 @@ MOST_ENTRIES = 1000
 class Vocabulary:
     """The names that one case uses, gathered before it is validated, and the tables it has.
 
-    `cores` is None where the list of cores itself cannot be read. `tables` says which model
-    reads which table of the file, by the identity of the table.
+    `cores` is None where the list of cores itself cannot be read; `screen` has the name of the
+    screen, if the cable has one. `tables` says which model reads which table of the file, by the
+    identity of the table.
     """
 
     cores: tuple[str, ...] | None
     phases: tuple[str, ...]
     instruments: tuple[str, ...]
+    screen: tuple[str, ...] = ()
     tables: dict[int, type[BaseModel]] = field(default_factory=dict)
 
 
@@ -254,8 +256,10 @@ def _one_of(kind: str, known: Callable[[Vocabulary], tuple[str, ...] | None]) ->
     def check(given: Any, info: ValidationInfo) -> Any:
         words = known(vocabulary(info))
         if words is not None and given not in words:
-            raise Refused("", f"is not {kind} of this case", given=written(given),
-                          hint=nearest(given if isinstance(given, str) else "", words))
+            hint = nearest(given if isinstance(given, str) else "", words)
+            if given in vocabulary(info).screen:
+                hint = "what the screen meets is told by earthed of [run.surround]"
+            raise Refused("", f"is not {kind} of this case", given=written(given), hint=hint)
         return given
 
     return BeforeValidator(check)
@@ -268,13 +272,17 @@ def _and(words: tuple[str, ...] | None, more: tuple[str, ...]) -> tuple[str, ...
 def _points(names: Vocabulary) -> tuple[str, ...] | None:
     if names.cores is None:
         return None
-    ends = tuple(f"{core}@{end}" for core in names.cores for end in ("near", "far"))
+    ends = tuple(f"{name}@{end}" for name in (*names.cores, *names.screen)
+                 for end in ("near", "far"))
     return (*ends, "earth", "N", *names.phases)
 
 
 CoreName = Annotated[str, BeforeValidator(_core_name)]
 CoreNames = Annotated[tuple[CoreName, ...], BeforeValidator(_names)]
 KnownCore = Annotated[str, _one_of("a core", lambda v: v.cores)]
+KnownConductor = Annotated[
+    str, _one_of("a core", lambda v: _and(v.cores, v.screen))
+]
 Return = Annotated[
     str, _one_of("a core or supply word", lambda v: _and(v.cores, ("earth", "N", *v.phases)))
 ]

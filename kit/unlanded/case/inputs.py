@@ -23,6 +23,7 @@ from .fields import (
     KnownCore,
     Length,
     Line,
+    LinearCapacitance,
     Permittivity,
     Point,
     Resistance,
@@ -132,7 +133,9 @@ _GEOMETRY = ("thickness", "spacing", "gap")
 class SpreadTable(Table):
     """`[spread]`: how sure the inputs are; what is not named keeps its value.
 
-    Without a `permittivity` here the covers have the range of their material, or of their limits.
+    Without a `permittivity` here the covers have the range of their material, or of their limits;
+    without `to_earth` a screen that nothing earths has the range of the trade, unless its own
+    capacitance to earth is given.
     """
 
     coverage: Share = 0.95
@@ -142,6 +145,7 @@ class SpreadTable(Table):
     thickness: Uncertain[Width] | None = None
     spacing: Uncertain[Width] | None = None
     gap: Uncertain[Gap] | None = None
+    to_earth: Uncertain[LinearCapacitance] | None = None
     loads: dict[Line, Tolerance] = Field(default_factory=dict)
     arrangement: StrictBool = True
 
@@ -166,6 +170,9 @@ class SpreadTable(Table):
             elif run.cable.layout == "in conduit":
                 yield Mistake(f"spread.{key}", "cannot vary in a conduit: the singles would lie "
                               "otherwise for each value")
+        if self.to_earth and not (run.screen and run.screen.earthed == "none"):
+            yield Mistake("spread.to_earth", "is of a screen that is earthed at no end, and there "
+                          "is none", "", 'it goes with earthed = "none" of [run.surround]')
         labels = [t.load.name for end in (run.ends.near, run.ends.far)
                   for t in end.values() if t.load is not None]
         for label in self.loads:

@@ -48,7 +48,7 @@ def case_suspects(content: CaseFile, run: Run) -> tuple[str, ...]:
     if content.causes.suspects:
         return content.causes.suspects
     read = {p.rpartition("@")[0] for r in content.readings for p in (r.a, r.b)}
-    names = [n for n in run.section.names if n in read and may_be_suspect(run, n)]
+    names = [n for n in run.names if n in read and may_be_suspect(run, n)]
     return tuple(names) if read else free_conductors(run)
 
 

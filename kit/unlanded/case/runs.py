@@ -2,31 +2,36 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
+from typing import Literal
 
 from ..errors import Mistake
 from ..physics.network import EARTH
-from ..study.ends import Bonded, Driven, Joined, Open, Through
+from ..study.ends import SCREEN, Bonded, Driven, Joined, Open, Through
 from ..study.ends import Termination as RunTermination
-from ..study.run import Run
+from ..study.run import Run, Screen
 from ..study.supply import NEUTRAL, Supply
-from .schema import CaseFile, SupplyTable
+from .schema import CaseFile, RunTable, SupplyTable
 from .sections import Limit, resistances, section_of
 from .terminations import Termination
+
+End = Literal["near", "far"]
 
 
 def run_of(content: CaseFile, permittivity: Limit = "likely") -> Run:
     """The run that the case describes; refused where its ends cannot be."""
     supply = _supply(content.supply)
     section = section_of(content.run, permittivity)
+    screen = content.run.screen
     by_name = resistances(content.run.cable)
     return Run(
         section=section,
         length=content.run.length,
         supply=supply,
-        near=_end(content.run.ends.near, supply.frequency),
-        far=_end(content.run.ends.far, supply.frequency),
+        near=_end(content.run, "near", supply.frequency),
+        far=_end(content.run, "far", supply.frequency),
         resistance=tuple(by_name[name] for name in section.names),
+        screen=Screen(screen.resistance, screen.to_earth) if screen else None,
     )
 
 
@@ -40,12 +45,13 @@ def end_mistakes(run: Run) -> Iterator[Mistake]:
             met = run.node(point)
             held |= met in fixed
             if isinstance(t, Through):
-                other = run.node(f"{t.to}@{end}" if t.to in run.section.names else t.to)
+                other = run.node(f"{t.to}@{end}" if t.to in run.names else t.to)
                 held |= other in fixed
                 if other == met:
                     yield Mistake(f'"{point}"', "has a load with both its terminals on one point",
                                   t.to)
-    if run.section.surround is None and not held:
+    grounded = run.screen.to_earth > 0 if run.screen else run.section.surround is not None
+    if not (grounded or held):
         yield Mistake("", "floats: no conductor is connected to the supply or earth, and there is "
                           "no earthed surround", "", "name an end, or describe [run.surround]")
 
@@ -55,8 +61,11 @@ def _supply(written: SupplyTable) -> Supply:
                   written.inductance, written.harmonics)
 
 
-def _end(end: Mapping[str, Termination], frequency: float) -> dict[str, RunTermination]:
-    return {name: _termination(t, frequency) for name, t in end.items()}
+def _end(run: RunTable, end: End, frequency: float) -> dict[str, RunTermination]:
+    made = {name: _termination(t, frequency) for name, t in getattr(run.ends, end).items()}
+    if run.screen and run.screen.earthed in ("both", end):
+        made[SCREEN] = Bonded(EARTH)
+    return made
 
 
 def _termination(written: Termination, frequency: float) -> RunTermination:

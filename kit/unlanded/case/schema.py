@@ -14,6 +14,7 @@ from pydantic import BeforeValidator, Field, field_validator, model_validator
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.instruments import INSTRUMENTS, Instrument, Kind, Responds, custom_instrument
+from ..study.ends import SCREEN
 from .behind import DeviceTable, LogTable, Standing
 from .cable import AnyCable, InConduit
 from .causes import Actions, CausesTable
@@ -44,7 +45,7 @@ from .fields import (
 )
 from .inputs import LoadedTable, OperationTable, SizingTable, SpreadTable
 from .memo import MemoTable
-from .surround import AnySurround
+from .surround import AnySurround, ScreenRound
 from .terminations import Ends
 
 
@@ -66,6 +67,18 @@ class RunTable(Table):
     cable: AnyCable = Field(examples=['{layout = "laid up", …}'])
     surround: AnySurround | None = None
     ends: Ends = Field(examples=['{near = {brown = "L", blue = "N"}}'])
+
+    @property
+    def screen(self) -> ScreenRound | None:
+        """The cable's own screen, where it has one."""
+        return self.surround if isinstance(self.surround, ScreenRound) else None
+
+    @model_validator(mode="after")
+    def _one_of_a_name(self) -> Self:
+        if self.screen and SCREEN in self.cable.names:
+            raise Refused("surround", "is a screen, and goes by that name itself", given=SCREEN,
+                          hint="give the core of that name another")
+        return self
 
     @model_validator(mode="after")
     def _one_surround(self) -> Self:

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..physics.section import Plane, Section
+from ..reference.screens import SCREEN_TO_EARTH
 from ..study.run import Run
 from ..study.spread import Distribution, Input, triangular, within
 from ..study.uncertain import (
@@ -43,7 +44,21 @@ def uncertain_run(
         None if table.length is None else table.length.over(run.length),
         _share(table, run.supply.voltage),
         {label: within(1.0, tolerance) for label, tolerance in table.loads.items()},
+        _screen(content),
     )
+
+
+def _screen(content: CaseFile) -> Distribution | None:
+    """Of the capacitance to earth of a screen that nothing earths; None where it is known."""
+    screen = content.run.screen
+    if screen is None or screen.earthed != "none":
+        return None
+    if content.spread.to_earth is not None:
+        return content.spread.to_earth.over(screen.to_earth)
+    if "to_earth" in screen.model_fields_set:
+        return None
+    usual = SCREEN_TO_EARTH
+    return triangular(usual.low, usual.likely, usual.high)
 
 
 def _share(table: SpreadTable, volts: float) -> Distribution | None:

@@ -12,6 +12,7 @@ from pydantic.fields import FieldInfo
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.instruments import INSTRUMENTS
+from ..study.ends import SCREEN
 from .fields import MOST_CORES, Vocabulary, is_core_name, written
 from .places import Place, spell, unspell
 from .schema import CaseFile, RunTable
@@ -81,12 +82,14 @@ def validate_run(plain: Mapping[str, Any]) -> RunTable | None:
 
 def _vocabulary(plain: Mapping[str, Any]) -> Vocabulary:
     phases = _table(plain, "supply").get("phases", 1)
+    run = _table(plain, "run")
     own = plain.get("own_instruments", [])
     keys = [i.get("key") for i in own if isinstance(i, dict)] if isinstance(own, list) else []
     return Vocabulary(
-        cores=_cores(_table(_table(plain, "run"), "cable")),
+        cores=_cores(_table(run, "cable")),
         phases=_PHASES.get(phases, _ANY_PHASE) if isinstance(phases, int) else _ANY_PHASE,
         instruments=(*INSTRUMENTS, *(k for k in keys if isinstance(k, str))),
+        screen=(SCREEN,) if _table(run, "surround").get("kind") == "screen" else (),
     )
 
 

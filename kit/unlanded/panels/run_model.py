@@ -10,7 +10,7 @@ import traitlets
 
 from ..case.build import build_run
 from ..errors import Refused
-from ..report.cross_section import section_figure
+from ..report.cross_section import run_section
 from ..report.figure import Figure
 from ..report.formulas import formula_table
 from ..report.tables import Column, Table
@@ -107,14 +107,12 @@ class RunModel(traitlets.HasTraits):
 
     def section(self, *, detail: int = DETAIL) -> Figure:
         """The section to scale with the unloaded potential at the far end."""
-        volts = [self.run.voltage(f"{name}@far") for name in self.run.section.names]
-        return section_figure(self.run.section, volts, detail=detail,
-                              customary=self.desk.customary)
+        return run_section(self.run, detail=detail, customary=self.desk.customary)
 
     def matrix(self) -> Table:
         """The capacitance matrix, a row for each conductor."""
         unit, per = ("pF/ft", FOOT) if self.desk.customary else ("pF/m", 1.0)
-        names = self.run.section.names
+        names = self.run.names
         return Table(
             "matrix", f"Capacitance matrix (Maxwell), {unit}.",
             (Column(""), *(Column(name, "", "right") for name in names)),
@@ -168,7 +166,7 @@ class RunModel(traitlets.HasTraits):
 
 def keeping(run: Run, old: Run | None) -> Run:
     """The run with the matrix of the old one, where the section is the same."""
-    same = old is not None and run.section == old.section
+    same = old is not None and (run.section, run.screen) == (old.section, old.screen)
     return replace(run, capacitance=old.matrix) if same and old else run
 
 

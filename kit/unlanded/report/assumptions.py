@@ -10,7 +10,7 @@ from ..units import show
 from .cores import permittivity_words
 from .investigation import Investigation
 from .memo import Bullets, Paragraph, Part
-from .words import listed, percent
+from .words import listed, percent, screen_words
 
 
 def assumptions_part(investigation: Investigation) -> Part:
@@ -42,11 +42,31 @@ def _cable(investigation: Investigation) -> Iterator[str]:
     filler = cable.filler_permittivity
     yield ("Air lies between the covers." if filler == 1 else
            f"What lies between the covers has relative permittivity {filler:g}.")
-    if isinstance(investigation.run.section.surround, Pipe | Plane):
+    if investigation.run.screen:
+        yield from _screen(investigation)
+    elif isinstance(investigation.run.section.surround, Pipe | Plane):
         yield "The metal around or under the run is earthed all along it, at 0 V."
     else:
         yield ("No earthed metal lies near the run; a tray, wall or conduit would lower the "
                "voltages of open conductors.")
+
+
+def _screen(investigation: Investigation) -> Iterator[str]:
+    run, written = investigation.run, investigation.case.content.run.screen
+    assert run.screen is not None
+    assert written is not None
+    usual = "" if "resistance" in written.model_fields_set else ", a usual value"
+    yield (f"The screen is {screen_words(run)}. It closes round the cores without gaps, and has "
+           f"{show(run.screen.resistance * 1e3, 'Ω')}/km{usual}. A current along it is taken as "
+           "spread evenly round it.")
+    if written.earthed == "none":
+        given = "to_earth" in written.model_fields_set
+        yield (f"The outside of the screen has {show(run.screen.to_earth, 'F')}/m to earth"
+               f"{'' if given else ', which depends on what the cable lies on: a judgement'}. "
+               "The screen touches no earthed metal on its way.")
+    elif written.earthed != "both":
+        yield ("Earthed at one end, the screen keeps electric fields out and takes nothing off "
+               "what is induced magnetically.")
 
 
 def _layout(cable: AnyCable) -> Iterator[str]:

@@ -2,20 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from typing import Any
 
-from ..physics.section import Conductor, Pipe, Plane, Section
-from ..study.ends import Bonded, Driven, Joined, Open, Termination, Through
+from ..physics.section import Conductor, Pipe, Plane
+from ..reference.records import Source
+from ..reference.screens import SCREEN_RESISTANCE, SCREEN_TO_EARTH
+from ..study.ends import SCREEN, Bonded, Driven, Joined, Open, Termination, Through
 from ..study.run import Run
 from ..study.supply import Supply
 from ..units import FOOT, show, show_length
 from .cores import core_sizes
-from .cross_section import section_figure
+from .cross_section import run_section
 from .investigation import Investigation
 from .memo import Block, Paragraph, Part
 from .tables import Column, Table
-from .words import listed, point_words
+from .words import listed, point_words, screen_words
 
 MATRIX = 9  # conductors whose matrix a page is wide enough for
 _INCH = 0.0254
@@ -33,27 +35,36 @@ def circuit_part(investigation: Investigation) -> Part:
     """The run as computed: ends, capacitances, the section to scale."""
     run, case = investigation.run, investigation.case.content
     length = show_length(run.length, customary=investigation.customary)
-    text = f"A run of {length}, {_surround(run.section)}. Supply: {_supply_words(run.supply)}."
+    text = f"A run of {length}, {_surround(run)}. Supply: {_supply_words(run.supply)}."
     notes = [Paragraph(" ".join(p.split())) for p in case.notes.split("\n\n") if p.strip()]
-    volts = [run.voltage(f"{name}@far") for name in run.section.names]
-    matrix: list[Block] = [capacitance_table(investigation)] if len(volts) <= MATRIX else [
+    matrix: list[Block] = [capacitance_table(investigation)] if len(run.names) <= MATRIX else [
         Paragraph("The matrix of capacitances is in capacitance.csv.")]
     return Part("The circuit", (
         *notes, Paragraph(text), conductor_table(investigation), *matrix,
-        section_figure(run.section, volts, customary=investigation.customary,
-                       title="Section, with the unloaded voltages at the far end"),
+        run_section(run, customary=investigation.customary,
+                    title="Section, with the unloaded voltages at the far end"),
     ))
+
+
+def circuit_sources(investigation: Investigation) -> Iterator[tuple[str, Source]]:
+    """The sources of what the case does not say of its screen."""
+    written = investigation.case.content.run.screen
+    given = set() if written is None else written.model_fields_set
+    if written and "resistance" not in given:
+        yield "resistance of the screen", SCREEN_RESISTANCE.source
+    if written and written.earthed == "none" and "to_earth" not in given:
+        yield "capacitance of the screen to earth", SCREEN_TO_EARTH.source
 
 
 def run_results(investigation: Investigation) -> Mapping[str, Any]:
     """The run for results.json; each key names its unit."""
     run = investigation.run
     return {
-        "conductors": run.section.names,
+        "conductors": run.names,
         "length_m": run.length,
         "frequency_Hz": run.frequency,
         "capacitance_F_per_m": run.matrix,
-        "resistance_ohm_per_m": run.resistance,
+        "resistance_ohm_per_m": run.resistances,
         "standing_residual_A": run.residual,
     }
 
@@ -75,9 +86,19 @@ def conductor_table(investigation: Investigation) -> Table:
          termination_words(run.far[c.name]))
         for c, (low, high) in zip(run.section.conductors, ends, strict=True)
     )
-    return Table("conductors", "Conductors, and what is done with their ends.", columns, rows,
+    return Table("conductors", "Conductors, and what is done with their ends.", columns,
+                 rows + _screen_row(run, customary),
                  "Outside diameters. The metal's is that of the smooth wire with the same "
                  "capacitance, which for a strand is less than the circle round it.")
+
+
+def _screen_row(run: Run, customary: bool) -> tuple[tuple[str, ...], ...]:
+    if run.screen is None:
+        return ()
+    assert isinstance(run.section.surround, Pipe)
+    inside = f"{_diameter(run.section.surround.radius, customary)} inside"
+    return ((SCREEN, "–", inside, "–", "–", termination_words(run.near[SCREEN]),
+             termination_words(run.far[SCREEN])),)
 
 
 def _covered(c: Conductor) -> bool:
@@ -100,10 +121,10 @@ def capacitance_table(investigation: Investigation) -> Table:
     """The Maxwell matrix in pF/m, or in pF/ft."""
     run = investigation.run
     unit, per = ("pF/ft", FOOT) if investigation.customary else ("pF/m", 1.0)
-    columns = (Column(unit), *(Column(name, "", "right") for name in run.section.names))
+    columns = (Column(unit), *(Column(name, "", "right") for name in run.names))
     rows = tuple(
         (name, *(_fixed(value * 1e12 * per) for value in row))
-        for name, row in zip(run.section.names, run.matrix, strict=True)
+        for name, row in zip(run.names, run.matrix, strict=True)
     )
     return Table(
         "capacitance", "Capacitance per length, as the Maxwell matrix.", columns, rows,
@@ -137,9 +158,9 @@ def termination_words(end: Termination) -> str:
 def _open_words(run: Run) -> str:
     loose = [n for n in run.section.names
              if isinstance(run.near[n], Open) and isinstance(run.far[n], Open)]
-    if not loose:
-        return "no conductor is open at both ends"
-    return f"{listed(loose)} {'is' if len(loose) == 1 else 'are'} open at both ends"
+    said = (f"{listed(loose)} {'is' if len(loose) == 1 else 'are'} open at both ends" if loose
+            else "no conductor is open at both ends")
+    return f"{said}; the screen is {screen_words(run)}" if run.screen else said
 
 
 def _supply_words(supply: Supply) -> str:
@@ -147,7 +168,10 @@ def _supply_words(supply: Supply) -> str:
     return f"{show(supply.voltage, 'V')} line to neutral, {show(supply.frequency, 'Hz')}{live}"
 
 
-def _surround(section: Section) -> str:
+def _surround(run: Run) -> str:
+    section = run.section
+    if run.screen is not None:
+        return f"in a screen that is {screen_words(run)}"
     if isinstance(section.surround, Pipe):
-        return "in an earthed metal pipe or screen"
+        return "in an earthed metal pipe"
     return "on an earthed surface" if isinstance(section.surround, Plane) else "in open air"

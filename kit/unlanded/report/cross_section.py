@@ -11,15 +11,18 @@ from numpy.typing import ArrayLike, NDArray
 
 from ..physics.potential import potential_map
 from ..physics.section import Conductor, Pipe, Plane, Section
+from ..study.ends import SCREEN
+from ..study.run import Run
 from ..units import show
 from .figure import Area, Axis, Field, Figure, Floats, Line, Material, Note, even_axis, round_step
-from .words import cut, listed
+from .words import cut, listed, screen_words
 
 DETAIL = 150  # points of the field across the shorter side of its window
 ROW = 0.075  # height of a row of words over the window's height
 LETTER = 0.0112  # width of a letter over the picture's width
 NAME = 20  # letters of a name that fit beside the window
 _MM = 1e3
+_WALL = 0.07  # drawn thickness of a pipe over its radius
 
 
 @dataclass(frozen=True)
@@ -46,7 +49,7 @@ class _Window:
 
 def section_figure(
     section: Section, voltages: ArrayLike, *, title: str = "Section", customary: bool = False,
-    detail: int = DETAIL,
+    detail: int = DETAIL, screen: tuple[str, complex] | None = None,
 ) -> Figure:
     """`section` to scale with the potential round it, shaded, with equipotentials.
 
@@ -57,13 +60,15 @@ def section_figure(
     title : of the picture
     customary : sizes in inches
     detail : points of the field across the shorter side of its window
+    screen : how the surround is earthed, where it is a screen, and its voltage [V]
 
     The magnitude of the potential is shown. Equipotentials stand at the ticks of its scale
     and half-way between them.
     """
     volts = np.atleast_1d(np.asarray(voltages, dtype=complex))
+    earthed, wall = screen or ("", 0.0)
     window = _window(section)
-    field = _field(section, volts, window, detail)
+    field = _field(section, volts, wall, window, detail)
     said = [f"{c.name} {_volts(abs(v), field.scale.high)}"
             for c, v in zip(section.conductors, volts, strict=True)]
     labels = [f"{cut(c.name, NAME)}  {_volts(abs(v), field.scale.high)}"
@@ -72,6 +77,9 @@ def section_figure(
     notes = _names(list(zip(section.conductors, labels, strict=True)), window, x)
     bar, bar_note = _scale_bar(window, customary)
     surround = _surround_words(section, customary)
+    if screen:
+        surround = (f"{surround.replace('an earthed metal surround', 'a screen')}, {earthed}, at "
+                    f"{_volts(abs(wall), field.scale.high)}")
     step = (field.scale.ticks[1][0] - field.scale.ticks[0][0]) / 2
     return Figure(
         key="section",
@@ -89,6 +97,16 @@ def section_figure(
         aspect=min(0.62, max(0.36, (y.high - y.low) / (x.high - x.low) * 0.86 + 0.05)),
         to_scale=True,
     )
+
+
+def run_section(
+    run: Run, *, title: str = "Section", customary: bool = False, detail: int = DETAIL
+) -> Figure:
+    """The section of a run with the unloaded voltages at its far end."""
+    volts = [run.voltage(f"{name}@far") for name in run.section.names]
+    screen = (screen_words(run), run.voltage(f"{SCREEN}@far")) if run.screen else None
+    return section_figure(run.section, volts, title=title, customary=customary, detail=detail,
+                          screen=screen)
 
 
 def _volts(value: float, top: float) -> str:
@@ -114,15 +132,24 @@ def _window(section: Section) -> _Window:
 
 
 def _field(
-    section: Section, volts: NDArray[np.complex128], window: _Window, detail: int
+    section: Section, volts: NDArray[np.complex128], wall: complex, window: _Window, detail: int
 ) -> Field:
     step = min(window.width, window.height) / detail
     x = np.linspace(window.left, window.right, max(2, round(window.width / step)))
     y = np.linspace(window.bottom, window.top, max(2, round(window.height / step)))
-    values = np.abs(potential_map(section, volts, x / _MM, y / _MM))
-    top = float(np.max(np.abs(volts)))
+    values = np.abs(potential_map(section, volts - wall, x / _MM, y / _MM)
+                    + wall * _within_wall(section, x / _MM, y / _MM))
+    top = float(np.max(np.abs([*volts, wall])))
     scale = even_axis("Potential, RMS", "V", 0.0, top if top > 0 else 1.0, parts=5)
     return Field(x, y, values, scale)
+
+
+def _within_wall(section: Section, x: Floats, y: Floats) -> NDArray[np.bool_]:
+    """Which points of the grid (m, k) lie within a pipe, up to the middle of its drawn wall."""
+    pipe = section.surround
+    if not isinstance(pipe, Pipe):
+        return np.zeros((len(y), len(x)), dtype=bool)
+    return np.asarray(np.hypot(x - pipe.x, y[:, None] - pipe.y) < (1 + _WALL / 2) * pipe.radius)
 
 
 def _equipotentials(field: Field, step: float) -> tuple[Line, ...]:
@@ -155,7 +182,7 @@ def _disc(x: float, y: float, radius: float, material: Material) -> Area:
 def _surround(section: Section, window: _Window) -> list[Area]:
     wall = section.surround
     if isinstance(wall, Pipe):
-        inner, outer = (_circle(wall.x, wall.y, wall.radius * k) for k in (1.0, 1.07))
+        inner, outer = (_circle(wall.x, wall.y, wall.radius * k) for k in (1.0, 1 + _WALL))
         ring = [np.concatenate([o, i[::-1]]) for o, i in zip(outer, inner, strict=True)]
         return [Area(ring[0], ring[1], "earthed metal")]
     if isinstance(wall, Plane):

@@ -197,7 +197,7 @@ def _load_sentences(investigation: Investigation, end: str) -> list[str]:
         if not (isinstance(t, Through) and isinstance(run.near[name], idle)
                 and isinstance(run.far[name], idle)):
             continue
-        to = f"{t.to}@{end}" if t.to in run.section.names else t.to
+        to = f"{t.to}@{end}" if t.to in run.names else t.to
         low, high = voltage_band(investigation.uncertain, Pair(f"{name}@{end}", to))
         found.append(f"The {t.label}, from {name} to {point_words(t.to)}, has "
                      f"{show(abs(run.voltage(f'{name}@{end}', to)), 'V')} ({show(low, 'V')} to "

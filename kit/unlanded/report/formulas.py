@@ -58,7 +58,8 @@ def _of_pair(run: Run) -> Iterator[Neighbour]:
 def _to_surround(run: Run) -> Iterator[Neighbour]:
     """The nearest conductor alone with the surround, against its sum of the matrix."""
     section = run.section
-    cs, sums = section.conductors, run.matrix.sum(axis=1)
+    cs = section.conductors
+    sums = run.matrix[:len(cs), :len(cs)].sum(axis=1)
     match section.surround:
         case Plane() as plane:
             k = int(np.argmin([a.y - a.outer for a in cs]))

@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from ..reference.records import Source
 from .causes import causes_sources
+from .circuit import circuit_sources
 from .cores import core_sources
 from .investigation import Investigation
 from .margin import margin_sources
@@ -42,6 +43,7 @@ def sources_part(investigation: Investigation) -> Part:
 
 def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
     yield from core_sources(investigation.case.content.run.cable)
+    yield from circuit_sources(investigation)
     for tool in investigation.instruments:
         yield tool.name, tool.source
     yield from margin_sources(investigation)

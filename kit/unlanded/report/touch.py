@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
+from ..case.inputs import LoadedTable
 from ..reference.limits import (
     CHARGE_PERCEPTION,
     EXTRA_LOW_VOLTAGE_AC,
@@ -14,18 +15,21 @@ from ..reference.limits import (
     STORED_CHARGE,
 )
 from ..reference.records import Source
+from ..study.run import Run
 from ..study.touch import (
     Touch,
     induced_voltages,
     induction_finding,
     length_for_current,
+    screen_current,
+    screening_factor,
     touch_sheet,
 )
 from ..units import show, show_length
 from .investigation import Investigation
 from .memo import Block, Caution, Paragraph, Part
 from .tables import Column, Table
-from .words import listed, point_words
+from .words import listed, point_words, screen_words
 
 ROWS = 14
 
@@ -119,7 +123,8 @@ def _lengths(investigation: Investigation, rows: tuple[Touch, ...]) -> str:
 
 def _induced(investigation: Investigation, number: int) -> Table:
     entry = investigation.case.content.loaded[number]
-    volts = induced_voltages(investigation.run, entry.currents)
+    run = investigation.run
+    volts = induced_voltages(run, entry.currents)
     back = f" and back in {entry.back}" if entry.back else " and back by earth"
     return Table(
         f"induced-{number + 1}",
@@ -128,4 +133,18 @@ def _induced(investigation: Investigation, number: int) -> Table:
         (Column("Conductor"), Column("Induced", "", "right"), Column("Finding")),
         tuple((name, show(abs(e), "V"), induction_finding(abs(e))) for name, e in volts.items()),
         "It stands at one end of a conductor that is bonded to earth at the other; a meter of low "
-        "impedance reads it as well as any.")
+        f"impedance reads it as well as any.{_screened(run, entry)}")
+
+
+def _screened(run: Run, entry: LoadedTable) -> str:
+    """What the screen does about induction, in words; "" for a run without one."""
+    if run.screen is None:
+        return ""
+    how = f" The screen is {screen_words(run)}"
+    current = screen_current(run, entry.currents)
+    if not current:
+        return f"{how}: no current flows along it, and it takes nothing off what is induced."
+    if entry.back:
+        return f"{how}; a current that returns inside it induces none in it, and is not screened."
+    return (f"{how}, carries {show(abs(current), 'A')} of it back, and leaves "
+            f"{100 * screening_factor(run):.3g} % of what would be induced without its bonds.")

@@ -5,6 +5,10 @@ from __future__ import annotations
 import re
 import unicodedata
 
+from ..physics.network import EARTH
+from ..study.ends import SCREEN
+from ..study.run import Run
+
 
 def point_words(point: str) -> str:
     """What a reader calls a point of a run.
@@ -27,6 +31,15 @@ def pair_words(a: str, b: str, *, end: bool = True) -> str:
         return f"{point_words(a)} to {point_words(b)}"
     names = " to ".join(p.rpartition("@")[0] if "@" in p else point_words(p) for p in (a, b))
     return f"{names}, {ends[0]} end" if ends and end else names
+
+
+def screen_words(run: Run) -> str:
+    """How the screen of a run is earthed, to follow "the screen is"; "" for a run without one."""
+    if run.screen is None:
+        return ""
+    ends = [end for end in ("near", "far") if run.node(f"{SCREEN}@{end}") == EARTH]
+    return ("earthed at no end" if not ends else "earthed at both ends" if len(ends) == 2 else
+            f"earthed at the {ends[0]} end alone")
 
 
 def tool_words(name: str) -> str:

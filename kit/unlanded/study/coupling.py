@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from ..reference.records import Source, Value
+from .ends import SCREEN
 from .hypotheses import size_at
 from .run import Run
 
@@ -57,12 +58,13 @@ class Coupling:
     def coordinates(self) -> tuple[str, ...]:
         """Names of its unknowns."""
         each = tuple(f"{what} {name}" for name in self.suspects for what in ("live", "earth"))
-        return ("permittivity", *each) if self.described else each
+        screen = (SCREEN,) if SCREEN in self.free else ()
+        return ("permittivity", *screen, *each) if self.described else each
 
     @cached_property
     def columns(self) -> list[int]:
         """Of the free conductors among all."""
-        return [self.run.section.names.index(n) for n in self.free]
+        return [self.run.names.index(n) for n in self.free]
 
     def at(self, scores: Scores) -> Real:
         """Of the free conductors to all others and to earth (Q, m, n + 1) [F]."""
@@ -73,6 +75,9 @@ class Coupling:
         log = likely + np.where(z > 0, z * (high - likely), z * (likely - low))
         c = np.exp(log)
         c[:, :, -1] += self._open * self.run.length
+        if SCREEN in self.free:
+            lies = score_of(scores, SCREEN)  # on earthed metal, or in the open
+            c[:, self.free.index(SCREEN), -1] *= np.exp(OPEN_SPREAD.likely * lies)
         live = np.append(self.live, False)
         for k, name in enumerate(self.free):
             for what, columns in (("live", live), ("earth", ~live)):

@@ -11,6 +11,8 @@ from ..physics.burden import Burden
 from ..physics.network import EARTH
 from .supply import NEUTRAL
 
+SCREEN = "screen"  # the name of a cable's screen among the conductors of its run
+
 
 @dataclass(frozen=True)
 class Driven:

@@ -63,7 +63,7 @@ def run_inrush(run: Run, filters: float = 0.0) -> Inrush | None:
 
 def loop_inductance(run: Run) -> float:
     """Of the first line out and the earth conductor back, or the earth itself [H]."""
-    names = run.section.names
+    names = run.names
     matrix = run.series[1] * run.length
     i = next(k for k, n in enumerate(names) if isinstance(run.near[n], Driven))
     back = [k for k, n in enumerate(names) if run.near[n] == Bonded("earth")]

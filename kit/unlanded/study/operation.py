@@ -17,12 +17,13 @@ from numpy.typing import ArrayLike, NDArray
 from ..errors import Refused
 from ..physics.burden import Burden
 from ..physics.lamp import rectified_current
+from ..physics.network import EARTH
 from ..physics.screen import own_screens
 from ..reference.loads import Threshold
 from ..reference.preferred import preferred
 from ..units import show
 from .batch import Ports, RunBatch
-from .ends import Bonded, Driven, Ends, Open, Through
+from .ends import SCREEN, Bonded, Driven, Ends, Open, Through
 from .readings import Pair
 from .run import Run
 from .sizing import Bleeder, Met, Result, bleeder, by_length, solve_for
@@ -213,6 +214,7 @@ def _cures(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     yield from _resistor(drawn, watched)
     yield from _capacitor(drawn, watched)
     yield from _spares(drawn, watched)
+    yield from _screen(drawn, watched)
     yield from _own_cable(drawn, watched)
     yield from _low_voltage(drawn, watched)
     yield from _at_supply(drawn, watched)
@@ -274,9 +276,18 @@ def _spares(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
                     _covered(replace(drawn, run=bonded), watched), watched)
 
 
+def _screen(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
+    run = drawn.run
+    if run.screen and isinstance(run.near[SCREEN], Open) and isinstance(run.far[SCREEN], Open):
+        bonded = replace(run, near={**run.near, SCREEN: Bonded(EARTH)})
+        yield _cure("the screen bonded to earth at the near end",
+                    _covered(replace(drawn, run=bonded), watched), watched,
+                    note="at one end it carries no current, and screens from electric fields alone")
+
+
 def _own_cable(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     if live := _live(drawn.run, ("near", "far")):
-        apart = own_screens(drawn.capacitance, [drawn.run.section.index(n) for n in live])
+        apart = own_screens(drawn.capacitance, [drawn.run.names.index(n) for n in live])
         yield _cure(f"the live core ({', '.join(live)}) in an earthed screen or a cable of its own",
                     _covered(replace(drawn, capacitance=apart), watched), watched,
                     note="a screen earthed at one end or at both")

@@ -121,7 +121,7 @@ def usual_pairs(run: Run) -> Iterator[Pair]:
     that are always at one potential are left out.
     """
     for end in ("near", "far"):
-        points = [f"{n}@{end}" for n in run.section.names]
+        points = [f"{n}@{end}" for n in run.names]
         supply = [*run.supply.lines, NEUTRAL] if end == "near" else []
         apart = [w for w in supply if not any(run.same(w, p) for p in points)]
         seen: set[frozenset[str]] = set()

@@ -106,8 +106,8 @@ class Reduced:
 
     @cached_property
     def free(self) -> tuple[str, ...]:
-        """Conductors whose voltage is unknown, in the section's order."""
-        return tuple(n for n in self.run.section.names
+        """Conductors whose voltage is unknown, in the run's order."""
+        return tuple(n for n in self.run.names
                      if (self.described and _free(self.run, n))
                      or (n in self.suspects and may_be_suspect(self.run, n)))
 
@@ -134,12 +134,12 @@ class Reduced:
 
     def cable_lines(self) -> tuple[str, ...]:
         """Lines of the supply that conductors of the cable bring."""
-        ends = (end[n] for end in (self.run.near, self.run.far) for n in self.run.section.names)
+        ends = (end[n] for end in (self.run.near, self.run.far) for n in self.run.names)
         return tuple(dict.fromkeys(t.phase for t in ends if isinstance(t, Driven)))
 
     def live_conductors(self) -> tuple[str, ...]:
         """Conductors that hold a line's voltage."""
-        return tuple(n for n, live in zip(self.run.section.names, self._live, strict=True) if live)
+        return tuple(n for n, live in zip(self.run.names, self._live, strict=True) if live)
 
     def defect(self, name: str, variant: Variant, size: Real, angle: Real) -> Defect:
         """The defect whose size has that share (Q,) of its prior below it, and angle likewise."""
@@ -234,7 +234,7 @@ class Reduced:
         """Voltage of each conductor, halfway along, and of earth (H, n + 1); 0 for free ones."""
         columns = [np.zeros(len(self.orders), dtype=complex) if n in self.free else
                    (self._volts(f"{n}@near") + self._volts(f"{n}@far")) / 2
-                   for n in self.run.section.names]
+                   for n in self.run.names]
         return np.stack([*columns, np.zeros(len(self.orders), dtype=complex)], axis=1)
 
     @cached_property
@@ -272,7 +272,7 @@ class Reduced:
         y = (t.burden.admittance(frequencies) if isinstance(t, Through)
              else np.full(len(frequencies), _BOND, dtype=complex))
         free = self.free.index(other) if other in self.free else None
-        point = f"{other}@{end}" if other in self.run.section.names else other
+        point = f"{other}@{end}" if other in self.run.names else other
         return _Tie(self.free.index(name), end, free, point, y, isinstance(t, Through))
 
     def _join(
@@ -325,7 +325,7 @@ def may_be_suspect(run: Run, name: str) -> bool:
 
 def free_conductors(run: Run) -> tuple[str, ...]:
     """Conductors that nothing feeds and nothing bonds."""
-    return tuple(n for n in run.section.names if _free(run, n))
+    return tuple(n for n in run.names if _free(run, n))
 
 
 def _free(run: Run, name: str) -> bool:

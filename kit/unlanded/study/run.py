@@ -22,11 +22,13 @@ from ..physics.inductance import (
     earth_return_distance,
     earth_return_resistance,
     inductance_matrix,
+    with_tube,
 )
 from ..physics.line import sections_needed
 from ..physics.network import EARTH, Network, Solution
-from ..physics.section import Section
-from .ends import Bonded, Driven, Ends, Joined, Open, Through, mistakes, word
+from ..physics.screen import with_screen
+from ..physics.section import Pipe, Section
+from .ends import SCREEN, Bonded, Driven, Ends, Joined, Open, Through, mistakes, word
 from .supply import NEUTRAL, Supply
 
 Real = NDArray[np.float64]
@@ -69,19 +71,41 @@ class Port:
     residual_per_ampere: complex
 
 
+@dataclass(frozen=True)
+class Screen:
+    """The section's pipe as a cable's screen: a conductor with ends of its own.
+
+    Parameters
+    ----------
+    resistance : end to end [ohm/m], at least 0
+    to_earth : capacitance of its outside [F/m], at least 0
+    """
+
+    resistance: float
+    to_earth: float
+
+    def __post_init__(self) -> None:
+        for value, what, unit in ((self.resistance, "resistance", "Ω/m"),
+                                  (self.to_earth, "capacitance to earth", "F/m")):
+            if not 0 <= value < math.inf:
+                raise Refused("screen", f"{what} must be at least 0 {unit}", given=f"{value:g}")
+
+
 @dataclass(frozen=True, eq=False)
 class Run:
     """A cable between two ends.
 
     Parameters
     ----------
-    section : cross-section, n conductors
+    section : cross-section
     length : [m], above 0
     near, far : what each conductor meets there; a conductor not named is open
-    resistance : of each conductor per metre (n,) [ohm/m], at least 0
+    resistance : of each conductor of the section per metre [ohm/m], at least 0
     capacitance : Maxwell matrix (n, n) [F/m]; computed from the section when None
     order : multiple of the supply's frequency at which it is solved
     earth_resistivity : of the soil [ohm·m], for the return by earth
+    screen : the section's pipe, where it is a conductor of the run and not at 0 V all along; it
+        comes last of the n conductors, with the name "screen" at the ends
 
     The supply lies at the near end of what it feeds; a line or neutral that an end at the far side
     meets is the same one, through no impedance. Raises `Refused`.
@@ -104,9 +128,13 @@ class Run:
     capacitance: Real | None = None
     order: int = 1
     earth_resistivity: float = EARTH_RESISTIVITY
+    screen: Screen | None = None
 
     def __post_init__(self) -> None:
-        names = self.section.names
+        names = self.names
+        if self.screen and (SCREEN in self.section.names
+                            or not isinstance(self.section.surround, Pipe)):
+            raise Refused(SCREEN, "needs a pipe round the section, and no conductor of its name")
         for end in ("near", "far"):
             given = getattr(self, end)
             if found := tuple(mistakes(end, given, names, self.supply.lines)):
@@ -114,7 +142,7 @@ class Run:
             object.__setattr__(self, end, {n: given.get(n, Open()) for n in names})
         if not (self.length > 0 and math.isfinite(self.length)):
             raise Refused("run length", "must be above 0 m", given=f"{self.length:g} m")
-        if not (len(self.resistance) == len(names)
+        if not (len(self.resistance) == len(self.section.names)
                 and all(0 <= r < math.inf for r in self.resistance)):
             raise Refused("run resistance", "must be at least 0 Ω/m for each conductor",
                           given=self.resistance)
@@ -125,6 +153,16 @@ class Run:
                           given=np.shape(self.capacitance))
 
     @property
+    def names(self) -> tuple[str, ...]:
+        """The conductors, in the order of every matrix: the section's, then the screen."""
+        return (*self.section.names, SCREEN) if self.screen else self.section.names
+
+    @property
+    def resistances(self) -> tuple[float, ...]:
+        """Of each conductor (n,) [ohm/m], in the order of `names`."""
+        return (*self.resistance, self.screen.resistance) if self.screen else self.resistance
+
+    @property
     def frequency(self) -> float:
         """At which it is solved [Hz]."""
         return self.order * self.supply.frequency
@@ -132,13 +170,24 @@ class Run:
     @property
     def points(self) -> tuple[str, ...]:
         """Every point that a burden can be connected to."""
-        ends = (f"{n}@{end}" for end in ("near", "far") for n in self.section.names)
+        ends = (f"{n}@{end}" for end in ("near", "far") for n in self.names)
         return (*ends, *self.supply.lines, NEUTRAL, EARTH)
 
     @cached_property
     def matrix(self) -> Real:
-        """Maxwell capacitance matrix (n, n) [F/m], in the order of the section's conductors."""
-        return capacitance_matrix(self.section) if self.capacitance is None else self.capacitance
+        """Maxwell capacitance matrix (n, n) [F/m], in the order of `names`."""
+        if self.capacitance is not None:
+            return self.capacitance
+        return self.screened(capacitance_matrix(self.section))
+
+    def screened(self, inner: Real, to_earth: ArrayLike | None = None) -> Real:
+        """Matrices of the section (..., m, m) [F/m] with the screen, if the run has one.
+
+        `to_earth` (...) [F/m] is in place of the screen's own.
+        """
+        if self.screen is None:
+            return inner
+        return with_screen(inner, to_earth=self.screen.to_earth if to_earth is None else to_earth)
 
     @property
     def residual(self) -> complex:
@@ -193,8 +242,13 @@ class Run:
         """Resistance [ohm/m] and inductance [H/m] of the conductors with return by earth (n, n)."""
         distance = earth_return_distance(resistivity=self.earth_resistivity,
                                          frequency=self.frequency)
-        resistance = np.diag(self.resistance) + earth_return_resistance(frequency=self.frequency)
-        return resistance, inductance_matrix(self.section, return_distance=distance)
+        resistance = np.diag(self.resistances) + earth_return_resistance(frequency=self.frequency)
+        inductance = inductance_matrix(self.section, return_distance=distance)
+        if self.screen is not None:
+            assert isinstance(self.section.surround, Pipe)
+            inductance = with_tube(inductance, radius=self.section.surround.radius,
+                                   return_distance=distance)
+        return resistance, inductance
 
     @cached_property
     def lumps(self) -> int:
@@ -242,7 +296,7 @@ class Run:
         step = length[:, None, None] / lumps
         resistance, inductance = (m * step for m in self.series)
         stations = [self._end_nodes("near"),
-                    *([f"{n}@{k}" for n in self.section.names] for k in range(1, lumps)),
+                    *([f"{n}@{k}" for n in self.names] for k in range(1, lumps)),
                     self._end_nodes("far")]
         half = matrix * step / 2
         for near, far in pairwise(stations):
@@ -251,7 +305,7 @@ class Run:
             network.capacitance_matrices(far, half)
 
     def _end_nodes(self, end: str) -> list[str]:
-        return [self._aliases[f"{n}@{end}"] for n in self.section.names]
+        return [self._aliases[f"{n}@{end}"] for n in self.names]
 
     @cached_property
     def closed(self) -> tuple[tuple[str, str, Through], ...]:

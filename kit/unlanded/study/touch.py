@@ -31,7 +31,7 @@ from ..reference.limits import (
 )
 from ..reference.records import Value
 from ..units import show
-from .ends import Driven
+from .ends import SCREEN, Driven
 from .run import Run
 
 Complex = NDArray[np.complex128]
@@ -98,7 +98,7 @@ class Touch:
 def touch_sheet(run: Run) -> tuple[Touch, ...]:
     """Every conductor that no end bonds to earth, at the end that drives more; most first."""
     worst = {}
-    for name in run.section.names:
+    for name in run.names:
         points = [f"{name}@{end}" for end in ("near", "far")]
         if EARTH not in map(run.node, points):
             worst[name] = max((_touch(run, p) for p in points), key=lambda t: t.current)
@@ -154,7 +154,8 @@ def induced_voltages(run: Run, currents: Mapping[str, complex]) -> dict[str, com
     """Voltage along each conductor that is not loaded itself, end to end, return by earth [V].
 
     E_i = Σ_k (R_e + jω L_ik) I_k l, with the earth return of Carson's first term. For a conductor
-    bonded to earth at one end it stands at the other; bonded at both it drives a current.
+    bonded to earth at one end it stands at the other; bonded at both it drives a current, of
+    which that in the screen (`screen_current`) counts here.
 
     Parameters
     ----------
@@ -162,14 +163,46 @@ def induced_voltages(run: Run, currents: Mapping[str, complex]) -> dict[str, com
 
     Raises `Refused`. Source: Carson (1926).
     """
-    names = run.section.names
+    if current := screen_current(run, currents):
+        currents = {**currents, SCREEN: current}
+    return {n: e for n, e in _open_voltages(run, currents).items() if n not in currents}
+
+
+def screen_current(run: Run, currents: Mapping[str, complex]) -> complex:
+    """Current that the others induce in a screen bonded to earth at both ends [A], else 0.
+
+    I_s = −Σ_k Z_sk I_k / Z_ss, in the screen and back by earth. With all the currents inside it,
+    what they induce in conductors inside is left as the share that `screening_factor` tells.
+    """
+    if run.screen is None or SCREEN in currents or {
+            run.node(f"{SCREEN}@{end}") for end in ("near", "far")} != {EARTH}:
+        return 0j
+    return -_open_voltages(run, currents)[SCREEN] / complex(_impedance(run)[-1, -1])
+
+
+def screening_factor(run: Run) -> float:
+    """|R_s / Z_ss|: share of what inner currents induce in the cores that a screen leaves [1].
+
+    For a screen bonded to earth at both ends and currents that return by earth; 1 with no screen.
+    """
+    if run.screen is None:
+        return 1.0
+    return abs(run.screen.resistance * run.length / complex(_impedance(run)[-1, -1]))
+
+
+def _open_voltages(run: Run, currents: Mapping[str, complex]) -> dict[str, complex]:
     for name in currents:
-        if name not in names:
-            raise Refused(f'conductor "{name}"', "is not in this run", hint=nearest(name, names))
+        if name not in run.names:
+            raise Refused(f'conductor "{name}"', "is not in this run",
+                          hint=nearest(name, run.names))
+    through = np.array([currents.get(name, 0.0) for name in run.names], dtype=complex)
+    return dict(zip(run.names, map(complex, _impedance(run) @ through), strict=True))
+
+
+def _impedance(run: Run) -> Complex:
+    """Series impedance end to end with return by earth (n, n) [ohm]."""
     resistance, inductance = run.series
-    z = (resistance + 2j * math.pi * run.frequency * inductance) * run.length
-    through = np.array([currents.get(name, 0.0) for name in names], dtype=complex)
-    return {n: complex(e) for n, e in zip(names, z @ through, strict=True) if n not in currents}
+    return np.asarray((resistance + 2j * math.pi * run.frequency * inductance) * run.length)
 
 
 def induction_finding(volts: float) -> str:

@@ -169,9 +169,10 @@ class UncertainRun:
     length : of the run [m]
     supply : share of the supply's voltage [1]
     loads : by label, share of a load's impedance [1]
+    screen : capacitance of the outside of the run's screen to earth [F/m]
 
     What is None or not named is known. Inputs are in this order: the section's, length, supply,
-    loads.
+    loads, screen.
     """
 
     run: Run
@@ -179,6 +180,7 @@ class UncertainRun:
     length: Distribution | None = None
     supply: Distribution | None = None
     loads: Mapping[str, Distribution] = field(default_factory=dict)
+    screen: Distribution | None = None
 
     @property
     def inputs(self) -> tuple[Input, ...]:
@@ -192,20 +194,25 @@ class UncertainRun:
             yield Input("supply voltage", self.supply)
         for label, distribution in self.loads.items():
             yield Input(f"impedance of {label}", distribution)
+        if self.screen is not None:
+            yield Input("capacitance of the screen to earth", self.screen)
 
     def at(self, values: Real) -> RunBatch:
         """The runs for values of the inputs (B, d); further columns are not looked at."""
         columns = iter(values.T)
-        matrix, length, supply = self.run.matrix[None], np.array([self.run.length]), np.ones(1)
+        cores = len(self.run.section.names)
+        inner = self.run.matrix[None, :cores, :cores]
+        length, supply = np.array([self.run.length]), np.ones(1)
         if self.section is not None:
-            matrix = self.section.matrices(
+            inner = self.section.matrices(
                 np.column_stack([next(columns) for _ in self.section.inputs]))
         if self.length is not None:
             length = next(columns)
         if self.supply is not None:
             supply = next(columns)
-        return RunBatch(self.run, matrix, length, supply,
-                        {label: next(columns) for label in self.loads})
+        loads = {label: next(columns) for label in self.loads}
+        matrix = self.run.screened(inner, next(columns) if self.screen else None)
+        return RunBatch(self.run, matrix, length, supply, loads)
 
     def draws(self, count: int, *, seed: int = 1) -> RunBatch:
         """A batch of `count` (a power of 2) draws, for a curve; the run alone if all is known."""
