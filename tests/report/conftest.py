@@ -63,6 +63,17 @@ def folder(contents: Contents, tmp_path_factory: pytest.TempPathFactory) -> Path
 
 
 @pytest.fixture(scope="session")
+def screened(written: Callable[..., Investigation]) -> Callable[[str], Investigation]:
+    """Tern Quay's cord in a screen that is earthed at the ends of that word, 6 A through it."""
+
+    def make(earthed: str) -> Investigation:
+        return written(("[run.ends.near]", f'[run.surround]\nkind = "screen"\ngap = "0.3 mm"\n'
+                        f'earthed = "{earthed}"\n[run.ends.near]'),
+                       ("[device]", '[[loaded]]\ngo = "brown"\ncurrent = "6 A"\n[device]'))
+    return make
+
+
+@pytest.fixture(scope="session")
 def written() -> Callable[..., Investigation]:
     """A case written as Tern Quay's with some of its text replaced."""
 

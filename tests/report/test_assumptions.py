@@ -51,3 +51,14 @@ def test_a_filler_and_an_instrument_from_its_data_sheet(
          "[[readings]]\ninstrument = \"mine\"")))
     assert "What lies between the covers has relative permittivity 2.5." in text
     assert "typical of their class" not in text
+
+
+@pytest.mark.parametrize(("earthed", "words"), [
+    ("none", "The outside of the screen has 50 pF/m to earth, which depends on what the cable"),
+    ("near", "takes nothing off what is induced magnetically"),
+    ("both", "The screen is earthed at both ends. It closes round the cores without gaps, and has "
+             "15 Ω/km, a usual value")])
+def test_what_is_taken_for_granted_of_a_screen(
+    screened: Callable[[str], Investigation], earthed: str, words: str
+) -> None:
+    assert words in said(screened(earthed))

@@ -9,10 +9,12 @@ from unlanded.report.circuit import (
     capacitance_table,
     circuit_finding,
     circuit_part,
+    circuit_sources,
     conductor_table,
     run_results,
     termination_words,
 )
+from unlanded.report.figure import Figure
 from unlanded.report.investigation import Investigation
 from unlanded.report.memo import Paragraph
 from unlanded.report.tables import Table
@@ -83,3 +85,34 @@ def test_results(quay: Investigation) -> None:
     assert found["length_m"] == 85
     assert found["conductors"] == ("brown", "blue", "green-yellow", "black")
     assert found["standing_residual_A"] == quay.run.residual
+
+
+@pytest.mark.parametrize(("earthed", "words", "ends"), [
+    ("both", "earthed at both ends", ("bonded to earth", "bonded to earth")),
+    ("near", "earthed at the near end alone", ("bonded to earth", "open")),
+    ("far", "earthed at the far end alone", ("open", "bonded to earth")),
+    ("none", "earthed at no end", ("open", "open"))])
+def test_how_the_screen_is_earthed(
+    screened: Callable[[str], Investigation], earthed: str, words: str, ends: tuple[str, str]
+) -> None:
+    found = screened(earthed)
+    part = circuit_part(found)
+    (summary,) = circuit_finding(found)
+    assert isinstance(summary, Paragraph)
+    assert summary.text.endswith(f"black is open at both ends; the screen is {words}.")
+    assert any(isinstance(b, Paragraph) and f"in a screen that is {words}." in b.text
+               for b in part.blocks)
+    section = next(b for b in part.blocks if isinstance(b, Figure))
+    assert f"mm inside, {words}, at " in section.caption
+    assert conductor_table(found).rows[-1][0] == "screen"
+    assert conductor_table(found).rows[-1][-2:] == ends
+    assert [row[0] for row in capacitance_table(found).rows][-1] == "screen"
+    assert run_results(found)["resistance_ohm_per_m"][-1] == 15e-3
+    assert {what for what, _ in circuit_sources(found)} == {
+        "resistance of the screen", *(["capacitance of the screen to earth"]
+                                      if earthed == "none" else [])}
+
+
+def test_without_a_screen_none_is_spoken_of(quay: Investigation) -> None:
+    assert list(circuit_sources(quay)) == []
+    assert "screen" not in str(circuit_finding(quay))

@@ -77,3 +77,20 @@ def test_wide_sections_have_their_names_above() -> None:
     names = [n for n in figure.notes if n.target]
     assert [n.align for n in names] == ["middle"] * 5
     assert len({(n.x, n.y) for n in names}) == 5
+
+
+def test_a_screen_that_floats_is_at_its_own_potential() -> None:
+    section = Section(PAIR, Pipe(0.008))
+    figure = section_figure(section, [230, 100], screen=("earthed at no end", 60j))
+    assert "in a screen of 16 mm inside, earthed at no end, at 60 V" in figure.caption
+    assert figure.field is not None
+    x, y, values = figure.field.x, figure.field.y, figure.field.values
+    at_wall = values[np.abs(y).argmin(), np.abs(x + 8).argmin()]
+    assert at_wall == pytest.approx(60, rel=0.02, abs=0)
+    # Everything, screen and all, lifted by the same voltage has the same differences.
+    lifted = section_figure(section, [230 + 50, 100 + 50], screen=("", 50.0)).field
+    plain = section_figure(section, [230, 100]).field
+    assert lifted is not None
+    assert plain is not None
+    within = np.hypot(x, y[:, None]) < 7.9
+    np.testing.assert_allclose(lifted.values[within], plain.values[within] + 50, rtol=1e-9)

@@ -1,5 +1,9 @@
 from __future__ import annotations
 
+from collections.abc import Callable
+
+import pytest
+
 from unlanded.report.investigation import Investigation
 from unlanded.report.memo import Caution, Paragraph
 from unlanded.report.tables import Table
@@ -40,3 +44,20 @@ def test_results_and_sources(moor: Investigation) -> None:
     assert [r["body_current_A"] for r in rows] == sorted(
         (r["body_current_A"] for r in rows), reverse=True)
     assert {"current that is felt", "extra-low voltage"} <= {w for w, _ in touch_sources(moor)}
+
+
+@pytest.mark.parametrize(("earthed", "words"), [
+    ("none", "The screen is earthed at no end: no current flows along it, and it takes nothing"),
+    ("near", "The screen is earthed at the near end alone: no current flows along it"),
+    # Screen of (1 + √2) 1.83 + 0.3 mm, 15 Ω/km: 2π50 × 0.2 ln(931.3 / 0.004718) = 0.7660 mΩ/m, so
+    # 6 |0.0493 + 0.7660 j| / |15.0493 + 0.7660 j| = 0.306 A, and 15 / 15.0688 is left.
+    ("both", "The screen is earthed at both ends, carries 306 mA of it back, and leaves 99.5 %")])
+def test_induction_with_a_screen(
+    screened: Callable[[str], Investigation], earthed: str, words: str
+) -> None:
+    part = touch_part(screened(earthed))
+    assert part is not None
+    touch, induced = (b for b in part.blocks if isinstance(b, Table))
+    assert words in induced.note
+    assert ("screen" in [row[0] for row in induced.rows]) == (earthed != "both")
+    assert any(row[0].startswith("screen") for row in touch.rows) == (earthed == "none")

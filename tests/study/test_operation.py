@@ -3,19 +3,21 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pytest
 
 from unlanded.errors import Refused
 from unlanded.physics.burden import Burden
-from unlanded.physics.section import Conductor, Plane, Section
+from unlanded.physics.section import Conductor, Pipe, Plane, Section
 from unlanded.reference.loads import longest_control_cable, threshold
 from unlanded.study.arrangements import remote_contact
 from unlanded.study.batch import RunBatch
+from unlanded.study.ends import Bonded
 from unlanded.study.operation import Cure, Operation, Watched, level_on, operation
 from unlanded.study.readings import Pair
-from unlanded.study.run import Run
+from unlanded.study.run import Run, Screen
 from unlanded.study.spread import uniform, within
 from unlanded.study.supply import Supply
 from unlanded.study.uncertain import UncertainRun
@@ -165,3 +167,23 @@ def test_limits_must_be_in_order() -> None:
         _ = watched(0.9, 0.5).limits
     with pytest.raises(Refused, match="needs the rated voltage"):
         _ = Watched("relay", PAIR, threshold("relay")).limits
+
+
+@pytest.mark.parametrize(("earthed", "offered"), [(False, True), (True, False)])
+def test_a_floating_screen_may_be_earthed_as_a_cure(earthed: bool, offered: bool) -> None:
+    # Of 40 pF/m between the cores and 100 to the screen, floating with 50 to earth, a core takes
+    # 0.8 of the line; with the screen earthed 40 / 140. The coil is next to nothing beside them.
+    section = Section(SECTION.conductors, Pipe(20e-3, y=0.01))
+    ends = remote_contact("out", "back", load=Burden(1e9))
+    near = {**ends.near, **({"screen": Bonded("earth")} if earthed else {})}
+    inner = np.array([[140e-12, -40e-12], [-40e-12, 140e-12]])
+    run = Run(section, 100.0, Supply(240.0, 50.0), near, ends.far, (7e-3, 7e-3),
+              screen=Screen(15e-3, 50e-12))
+    run = replace(run, capacitance=run.screened(inner))
+    found = operation(UncertainRun(run), watched(0.5, 0.75))
+    cures = [c for c in found.cures if "screen bonded" in c.name]
+    assert bool(cures) == offered
+    assert found.level == pytest.approx(240 * (40 / 140 if earthed else 0.8), rel=1e-3, abs=0)
+    for cure in cures:
+        assert cure.works
+        assert cure.level == pytest.approx(240 * 40 / 140, rel=1e-3, abs=0)

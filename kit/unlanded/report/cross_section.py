@@ -92,7 +92,7 @@ def section_figure(
         numbers=tuple(said),
         field=field,
         areas=(*_surround(section, window), *_conductors(section), bar),
-        lines=_equipotentials(field, step),
+        lines=_equipotentials(field, step, _within_wall(section, field.x / _MM, field.y / _MM)),
         notes=(*notes, bar_note),
         aspect=min(0.62, max(0.36, (y.high - y.low) / (x.high - x.low) * 0.86 + 0.05)),
         to_scale=True,
@@ -148,14 +148,17 @@ def _within_wall(section: Section, x: Floats, y: Floats) -> NDArray[np.bool_]:
     """Which points of the grid (m, k) lie within a pipe, up to the middle of its drawn wall."""
     pipe = section.surround
     if not isinstance(pipe, Pipe):
-        return np.zeros((len(y), len(x)), dtype=bool)
+        return np.ones((len(y), len(x)), dtype=bool)
     return np.asarray(np.hypot(x - pipe.x, y[:, None] - pipe.y) < (1 + _WALL / 2) * pipe.radius)
 
 
-def _equipotentials(field: Field, step: float) -> tuple[Line, ...]:
+def _equipotentials(
+    field: Field, step: float, shown: NDArray[np.bool_]
+) -> tuple[Line, ...]:
     from contourpy import contour_generator
 
-    contours: Any = contour_generator(field.x, field.y, field.values)
+    values = np.ma.masked_array(field.values, ~shown)
+    contours: Any = contour_generator(field.x, field.y, values)
     count = math.floor(field.scale.high / step + 1e-9)
     return tuple(
         Line(path[:, 0], path[:, 1], style=None)
