@@ -1,8 +1,8 @@
 """What the trade says of a cord with open cores (common practice, no source), in one geometry.
 
-Assumed: three 14 AWG flexible cores (1.88 mm over the strands) under 0.030 in of PVC, permittivity
-4.8, laid up and touching; its jacket is not counted. The cord lies with its axis 10 mm above an
-earthed surface, as a jacketed cord of 9 mm does on 5.5 mm of board over a steel bench. One core is
+Assumed: three 18 AWG flexible cores (1.2 mm over the strands) under 0.030 in of PVC, permittivity
+4.8, laid up and touching; its jacket is not counted. The cord lies with its axis 12 mm above an
+earthed surface, as a jacketed cord of 8 mm does on 8 mm of board over a steel bench. One core is
 live at 122 V 60 Hz, two are open at both ends.
 """
 
@@ -23,13 +23,13 @@ from unlanded.study.run import Run
 from unlanded.study.supply import Supply
 
 FOOT, VOLTS = 0.3048, 122.0
-AXIS = 10e-3
+AXIS = 12e-3
 OPEN_CORES = ("white", "green")
 
 
 @cache
 def cord(height: float = AXIS) -> Run:
-    size = conductor_size("14 AWG", stranding="flexible")
+    size = conductor_size("18 AWG", stranding="flexible")
     core = Core(size.radius, size.radius + 0.030 * 25.4e-3, material("PVC").permittivity.likely)
     section = Section(laid_up(("black", *OPEN_CORES), core), Plane(-height))
     return Run(section, 1.0, Supply(VOLTS, 60.0), {"black": Driven("L")}, {},
@@ -54,9 +54,9 @@ def test_unloaded_open_core_is_at_80_to_85_percent(core):
     assert 0.80 < share < 0.85
 
 
-@pytest.mark.parametrize("length", [6.0, 7.0])
+@pytest.mark.parametrize("length", [7.0, 8.0])
 def test_a_few_metres_show_70_to_80_volts_on_high_and_a_tenth_on_low_impedance(length):
-    # 70 V is reached at 5 m, 80 V at 7.5 m. Three metres show 55 V.
+    # 70 V is reached just under 6 m, 80 V just under 9 m. Three metres show 49 V.
     high, low = (shown(key, length) for key in ("digital-10M", "low-impedance"))
     assert 70 < high[0] < 80
     assert 0.05 < low[0] < 0.10
@@ -64,10 +64,10 @@ def test_a_few_metres_show_70_to_80_volts_on_high_and_a_tenth_on_low_impedance(l
 
 
 def test_one_foot_shows_a_few_volts():
-    # The trade's 'a few volts at most' is 8 V here. A cord that showed 4 V on a foot would show
-    # 70 V only from about 10 m.
+    # 6.8 V here. Of the same cord a foot and a few metres are tied to each other: one that showed
+    # 4 V on a foot would show 70 V only from about 10 m.
     volts, _ = shown("digital-10M", FOOT)
-    assert 2 < volts < 10
+    assert 2 < volts < 7
 
 
 def test_fifty_feet_show_most_of_the_unloaded_voltage():
