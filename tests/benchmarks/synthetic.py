@@ -28,6 +28,7 @@ from unlanded.study.supply import Supply
 KIT = tuple(INSTRUMENTS[k] for k in ("digital-10M", "low-impedance", "moving-coil", "coil-tester",
                                      "two-pole", "proximity"))
 SUSPECT, SECOND = "spare", "other"
+PERMITTIVITY = (4.8, 3.5, 6.5)  # of the covers: likely, low and high
 
 
 @dataclass(frozen=True)
@@ -38,23 +39,26 @@ class Wrong:
     ----------
     gain : of every instrument
     capacitance : factor on all capacitances of the run
+    permittivity : the covers' true one over the top of its range, where it is not within it
     misread : one reading, at random, shows a value that has nothing to do with the run
     """
 
     gain: float = 1.0
     capacitance: float = 1.0
+    permittivity: float | None = None
     misread: bool = False
 
 
-def sections() -> list[tuple[tuple[str, ...], list[Section]]]:
+def sections(permittivities: tuple[float, ...] = PERMITTIVITY
+             ) -> list[tuple[tuple[str, ...], list[Section]]]:
     """Cables with the covers' permittivity likely, low and high."""
     made = []
     for names in (("line", "neutral", "spare"), ("line", "neutral", "earthed", "spare"),
                   ("line", "spare", "neutral", "earthed", "other")):
-        cores = [Core(0.89e-3, 1.69e-3, e) for e in (4.8, 3.5, 6.5)]
+        cores = [Core(0.89e-3, 1.69e-3, e) for e in permittivities]
         made.append((names, [Section(layouts.laid_up(names, core)) for core in cores]))
     names = ("line", "earthed", "spare")
-    cores = [Core(0.69e-3, 1.39e-3, e) for e in (4.8, 3.5, 6.5)]
+    cores = [Core(0.69e-3, 1.39e-3, e) for e in permittivities]
     made.append((names, [Section(layouts.flat_twin(names, core, earth_radius=0.565e-3))
                          for core in cores]))
     return made
@@ -74,6 +78,14 @@ class Bench:
                            (7e-3,) * len(names)) for s in cables]
                       for names, cables in sections() if set(suspects) <= set(names)]
         self._matrices = [[r.matrix for r in runs] for runs in self._runs]
+        self._true = self._matrices
+        if self.wrong.permittivity is not None:
+            true = (self.wrong.permittivity * max(PERMITTIVITY),) * 3
+            self._true = [[replace(r, section=s, capacitance=None).matrix
+                           for r, s in zip(runs, cables, strict=True)]
+                          for runs, (_, cables) in zip(self._runs, (
+                              x for x in sections(true) if set(suspects) <= set(x[0])),
+                              strict=True)]
 
     def site(self, number: int) -> Site:
         """The investigation of that number."""
@@ -84,7 +96,7 @@ class Bench:
                 for r, c in zip(self._runs[which], self._matrices[which], strict=True)]
         factor = self.wrong.capacitance
         truth = Reduced(*(replace(r, capacitance=c * factor) for r, c in
-                          zip(runs, self._matrices[which], strict=True)), self.suspects)
+                          zip(runs, self._true[which], strict=True)), self.suspects)
         return Site(Reduced(*runs, self.suspects), truth, rng, self.wrong)
 
 

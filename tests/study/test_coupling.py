@@ -9,7 +9,12 @@ import pytest
 
 from example_causes import MATRIX, reduced, run
 from unlanded.physics.section import Section
-from unlanded.study.coupling import GEOMETRY_SPREAD, OPEN_SURROUND, UNDESCRIBED
+from unlanded.study.coupling import (
+    DESCRIPTION_SPREAD,
+    GEOMETRY_SPREAD,
+    OPEN_SURROUND,
+    UNDESCRIBED,
+)
 from unlanded.study.reduced import Reduced
 
 SUPPLY = {"supply": np.zeros(1)}
@@ -31,6 +36,14 @@ def test_geometry_moves_each_capacitance_alone() -> None:
     live, earth = of(reduced(), live_spare=1.0)
     assert live == pytest.approx(2e-9 * np.exp(GEOMETRY_SPREAD.likely), rel=1e-12, abs=0)
     assert earth == pytest.approx(1.5e-9, rel=1e-12, abs=0)
+
+
+def test_what_the_description_has_wrong_moves_all_of_them() -> None:
+    # At a score of 3, one in 400 on this side: exp(0.12 sinh 3 / sinh 1) = exp(1.0230)
+    for score, factor in ((1.0, np.exp(DESCRIPTION_SPREAD.likely)), (3.0, np.exp(1.0230))):
+        live, earth = of(reduced(), description=score)
+        assert live == pytest.approx(2e-9 * factor, rel=2e-4, abs=0)
+        assert earth == pytest.approx(1.5e-9 * factor, rel=2e-4, abs=0)
 
 
 def test_the_permittivitys_limits_lie_at_two_standard_deviations() -> None:

@@ -68,6 +68,18 @@ def test_a_size_and_a_score_along_a_curved_ridge() -> None:
     assert made.value == pytest.approx(want, rel=0.01, abs=0)
 
 
+@pytest.mark.parametrize(("y", "s"), [(0.4, 0.3), (6.0, 0.3), (6.0, 0.01)])
+def test_a_value_with_wider_tails_is_found_far_out(y: float, s: float) -> None:
+    # y = sinh z / sinh 1 + x + e: over z by the trapezoidal rule, over x and e in closed form.
+    made = settled(Problem(lambda _, x: (np.sinh(x[:, 0]) / np.sinh(1) + x[:, 1])[None],
+                           Normal(np.array([y]), s), 2, False, (0,)))
+    z = np.linspace(-6, 6, 20_001)
+    given = stats.norm.pdf(y, np.sinh(z) / np.sinh(1), np.hypot(1, s))
+    want = np.trapezoid(given * stats.norm.pdf(z), z)
+    assert made.value == pytest.approx(want, rel=0.01, abs=0)
+    assert abs(made.value / want - 1) < 4 * made.error
+
+
 def test_readings_that_say_nothing_leave_the_prior() -> None:
     class Nothing:
         def gain(self, volts: Array) -> Array:

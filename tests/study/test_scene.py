@@ -47,8 +47,8 @@ def test_the_tolerance_of_a_burden_is_a_coordinate_of_the_instrument() -> None:
 def test_coordinates_are_those_of_the_run_the_tools_and_the_causes() -> None:
     load = Variant("back-feed through a load", "L", "far")
     scene = Scene(reduced(), (load,), (DIGITAL, DIGITAL))
-    assert scene.coordinates == ("supply", "permittivity", "live spare", "earth spare",
-                                 "instrument digital-10M", "angle spare")
+    assert scene.coordinates == ("supply", "permittivity", "description", "live spare",
+                                 "earth spare", "instrument digital-10M", "angle spare")
     assert scene.sized == "spare"
     assert Scene(reduced(), (PLAIN,), ()).sized == ""
 

@@ -14,7 +14,7 @@ from ..errors import Refused
 from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source
 from ..study.causes import Explanation, Progress, silent
-from ..study.coupling import GEOMETRY_SPREAD, UNDESCRIBED
+from ..study.coupling import DESCRIPTION_SPREAD, GEOMETRY_SPREAD, UNDESCRIBED
 from ..study.finding import (
     ACCEPTED_INSULATION,
     Finding,
@@ -237,8 +237,10 @@ def _method(found: Explanation) -> Iterator[str]:
     yield f"Before any reading: {listed(shares)} (a judgement, which the case can replace)."
     if found.reduced.described:
         yield (f"The capacitances are those computed, with {100 * GEOMETRY_SPREAD.likely:.0f} % "
-               "standard deviation for the geometry beside the permittivity's range, and with "
-               "some to surroundings that the section does not show.")
+               "standard deviation for the geometry beside the permittivity's range, with "
+               f"{100 * DESCRIPTION_SPREAD.likely:.0f} % for what the description has wrong of "
+               "them all (now and then a factor of two or more), and with some to surroundings "
+               "that the section does not show.")
     else:
         yield (f"The section is taken as not known: {show(UNDESCRIBED.low, 'F/m')} to "
                f"{show(UNDESCRIBED.high, 'F/m')} to the live and to the earthed conductors.")

@@ -16,7 +16,7 @@ from typing import TypeAlias
 import numpy as np
 
 from ..errors import Refused
-from .coupling import Real
+from .coupling import STRETCHED, Real
 from .evidence import Draws, Integral, Problem
 from .hypotheses import CAUSES, Cause, prior_shares, variants
 from .likelihood import Likelihood, likelihood
@@ -259,13 +259,13 @@ class _Search:
         while doublings is None or done < doublings:
             progress(1 - 0.75**done)  # how many doublings there will be is not known
             done += 1
-            parts = _error_parts(beam)
-            if math.hypot(*parts) <= stable:
+            parts = [(part, b.integral)
+                     for part, b in zip(_error_parts(beam), beam, strict=True)
+                     if b.integral and not b.integral.exhausted]
+            if math.hypot(*(part for part, _ in parts)) <= stable:
                 return
-            loose = [b.integral for b, part in zip(beam, parts, strict=True)
-                     if part > max(parts) / 3 and b.integral and not b.integral.exhausted]
-            if not loose:
-                return
+            most = max(part for part, _ in parts)
+            loose = [integral for part, integral in parts if part > most / 3]
             for integral in loose:
                 integral.double()
                 progress(1 - 0.75**done)
@@ -289,9 +289,10 @@ class _Search:
         heard = [k for k, r in enumerate(self.readings) if suspects_in(r, names) <= explained]
         scene = self._scene(chosen)
         some = [self.readings[k] for k in heard]
+        wide = tuple(k for k, n in enumerate(scene.coordinates) if n in STRETCHED)
         return Problem(lambda size, score: scene.volts(some, size, score),
                        _Heard(self.readings, heard, self.reduced.top),
-                       len(scene.coordinates), bool(scene.sized))
+                       len(scene.coordinates), bool(scene.sized), wide)
 
 
 class _Heard:

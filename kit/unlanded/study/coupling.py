@@ -1,7 +1,8 @@
 """The capacitances of the conductors that nothing feeds, and how far they may lie from computed.
 
-The covers' permittivity, the geometry and what the section does not show each have a coordinate, a
-normal score of mean 0 and standard deviation 1.
+The covers' permittivity, the geometry, what the section does not show, and what the description
+has wrong for all of them together each have a coordinate, a normal score of mean 0 and standard
+deviation 1. Descriptions are now and then far off, so that scores are stretched outward.
 """
 
 from __future__ import annotations
@@ -17,14 +18,17 @@ from ..reference.records import Source, Value
 from .ends import SCREEN
 from .hypotheses import size_at
 from .run import Run
+from .tails import stretched
 
 Real = NDArray[np.float64]
 Scores = Mapping[str, Real]
 """Normal scores (Q,) by coordinate; a coordinate that is not there is 0."""
 
 _JUDGED = Source("spread of what a case describes", "judgement")
-GEOMETRY_SPREAD = Value(0.15, "", _JUDGED)  # one standard deviation of each capacitance's logarithm
+GEOMETRY_SPREAD = Value(0.15, "", _JUDGED)  # of each capacitance's logarithm, at a score of 1
+DESCRIPTION_SPREAD = Value(0.12, "", _JUDGED)  # of them all together: type of cable, length
 LIMIT_SCORE = Value(2.0, "", _JUDGED)  # standard deviations at which the permittivity's limits lie
+STRETCHED = ("description",)  # coordinates whose scores are stretched outward
 OPEN_SURROUND = Value(5e-12, "F/m", Source("a conductor of a cable in the open to floor, wall and "
                                            "metalwork around it", "judgement"))
 OPEN_SPREAD = Value(0.75, "", _JUDGED)  # one standard deviation of its logarithm
@@ -59,7 +63,7 @@ class Coupling:
         """Names of its unknowns."""
         each = tuple(f"{what} {name}" for name in self.suspects for what in ("live", "earth"))
         screen = (SCREEN,) if SCREEN in self.free else ()
-        return ("permittivity", *screen, *each) if self.described else each
+        return ("permittivity", "description", *screen, *each) if self.described else each
 
     @cached_property
     def columns(self) -> list[int]:
@@ -78,6 +82,8 @@ class Coupling:
         if SCREEN in self.free:
             lies = score_of(scores, SCREEN)  # on earthed metal, or in the open
             c[:, self.free.index(SCREEN), -1] *= np.exp(OPEN_SPREAD.likely * lies)
+        common = stretched(score_of(scores, "description"))
+        c *= np.exp(DESCRIPTION_SPREAD.likely * common)[:, None, None]
         live = np.append(self.live, False)
         for k, name in enumerate(self.free):
             for what, columns in (("live", live), ("earth", ~live)):

@@ -19,6 +19,8 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
+from .tails import FARTHEST, density, pull, relaxed, stretched
+
 Real = NDArray[np.float64]
 Predict = Callable[[Real, Real], Real]
 """Sizes (Q,) and scores (Q, d) to what each of K readings would be (K, Q)."""
@@ -28,9 +30,12 @@ LEAST, MOST = 6, 13  # log2 of the points of each scrambling
 _TAIL = 8.0  # degrees of freedom
 _EVEN = 0.1  # share of sizes drawn evenly, for what the nodes may have missed
 _SOFT = 4.0  # degrees of freedom of the misfits in the search: one that is far off hardly pulls
+_STRICT = 1e4  # and of a search that lets each reading pull
 _STEP = 1e-4
+_LOOSE = 0.6  # curvature that a stretched coordinate is drawn with, at most
 _LEAST_GAIN = 1e-300
 _BELIEF = np.array([1.0, 0.1, 0.0])  # in the readings' curvature, of each part of the mixture
+_OF_NODES = ("size", "score", "root", "height", "soft")
 _PARTS = np.array([0.6, 0.25, 0.15])  # and its share
 
 
@@ -54,12 +59,37 @@ class Problem:
     likelihood : of the readings
     dimensions : d, number of scores
     sized : whether the size matters
+    stretched : scores that stand for values with wider tails; the integral is taken over these
+        values, since the readings answer to them more evenly than to the scores
     """
 
     predict: Predict
     likelihood: Likely
     dimensions: int
     sized: bool
+    stretched: tuple[int, ...] = ()
+
+    def scores(self, at: Real) -> Real:
+        """Normal scores of points (Q, d)."""
+        made = at.copy()
+        made[:, self.stretched] = relaxed(at[:, self.stretched])
+        return made
+
+    def gain(self, size: Real, at: Real) -> Real:
+        """Of each reading (K, Q) at points (Q, d)."""
+        return self.likelihood.gain(self.predict(size, self.scores(at)))
+
+    def density(self, at: Real) -> Real:
+        """Of points (Q, d), before any reading (Q,)."""
+        each = np.exp(-(at**2) / 2) / math.sqrt(2 * math.pi)
+        each[:, self.stretched] = density(at[:, self.stretched])
+        return np.asarray(each.prod(axis=1))
+
+    def pull(self, at: Real) -> Real:
+        """Slope of −ln density over each coordinate, at points (Q, d)."""
+        made = np.ones_like(at)
+        made[:, self.stretched] = pull(at[:, self.stretched])
+        return made
 
 
 @dataclass(frozen=True, eq=False)
@@ -140,22 +170,25 @@ class Integral:
         size, density, k, share = self._cells.at(even)
         middle = self._nodes.middle(k, share)
         part = np.minimum(np.searchsorted(np.cumsum(_PARTS), other), len(_PARTS) - 1)
-        root = self._nodes.root[k]
-        score = _each(root, part, z) + np.where(_BELIEF[part] > 0, 1, 0)[:, None] * middle
-        inverse, scale = self._nodes.inverse[k], self._nodes.scale[k]
+        score = np.where(_BELIEF[part] > 0, 1, 0)[:, None] * middle
+        for p in range(len(_PARTS)):
+            mine = part == p
+            score[mine] += _turned(self._nodes.root[:, p], k[mine], z[mine])
+        scale = self._nodes.scale[k]
         mixed = np.zeros(len(size))
         for p, belief in enumerate(_BELIEF):
             off = score - middle if belief else score
-            back = np.einsum("qij,qj->qi", inverse[:, p], off)
+            back = _turned(self._nodes.inverse[:, p], k, off)
             mixed += _PARTS[p] * _student_density(back) / scale[:, p]
         return size, score, density * mixed
 
     def _weighed(self, size: Real, score: Real, density: Real) -> Draws:
         flat = score.reshape(-1, score.shape[-1])
-        gain = self._problem.likelihood.gain(self._problem.predict(size.ravel(), flat))
-        prior = _normal_density(score)
+        gain = self._problem.gain(size.ravel(), flat)
+        prior = self._problem.density(flat).reshape(size.shape)
         weight = np.prod(gain, axis=0).reshape(size.shape) * prior / density
-        return Draws(size, score, weight, gain.reshape(len(gain), *size.shape))
+        return Draws(size, self._problem.scores(flat).reshape(score.shape), weight,
+                     gain.reshape(len(gain), *size.shape))
 
 
 @dataclass(frozen=True, eq=False)
@@ -189,9 +222,15 @@ class _Nodes:
         blend = share[:, None]
         return np.asarray((1 - blend) * self.score[k] + blend * self.score[after])
 
+    def or_higher(self, other: _Nodes) -> _Nodes:
+        """At each size the one of two modes at which the integral is larger."""
+        better = other.height > self.height
+        both = [np.where(better.reshape(-1, *(1,) * (getattr(self, n).ndim - 1)),
+                         getattr(other, n), getattr(self, n)) for n in _OF_NODES]
+        return _Nodes(*both)
+
     def with_more(self, other: _Nodes) -> _Nodes:
-        both = [np.concatenate([getattr(self, n), getattr(other, n)])
-                for n in ("size", "score", "root", "height", "soft")]
+        both = [np.concatenate([getattr(self, n), getattr(other, n)]) for n in _OF_NODES]
         order = np.argsort(both[0])
         return _Nodes(*(b[order] for b in both))
 
@@ -223,40 +262,62 @@ def _coarse(size: Real, height: Real) -> NDArray[np.intp]:
 
 
 def _laplace(problem: Problem, size: Real, score: Real, steps: int) -> _Nodes:
+    """Of two searches, one that forgives misfits from the start and one only in its second half,
+    what is higher at each size: a reading that is far off may be wrong, or all that is right."""
+    forgiving = _described(problem, size, _climbed(problem, size, score, steps, _SOFT))
+    strict = _climbed(problem, size, score, steps, _STRICT)
+    other = _described(problem, size, _climbed(problem, size, strict, steps, _SOFT))
+    return forgiving.or_higher(other)
+
+
+def _climbed(problem: Problem, size: Real, score: Real, steps: int, soft: float) -> Real:
+    """Scores nearer to the mode (G, d)."""
+    far = np.full(problem.dimensions, FARTHEST)
+    far[list(problem.stretched)] = stretched(FARTHEST)
     for _ in range(steps):
-        misfit, slope, soft = _linear(problem, size, score)
-        curve, push = _normal_equations(misfit, slope, soft, score)
+        misfit, slope = _linear(problem, size, score)
+        curve, push = _normal_equations(misfit, slope, soft, problem.pull(score), score)
         step = np.linalg.solve(curve, push[..., None])[..., 0]
         length = np.linalg.norm(step, axis=1, keepdims=True)
-        score = np.clip(score - step * np.minimum(1.0, 2.0 / np.maximum(length, 1e-12)), -6, 6)
-    misfit, slope, soft = _linear(problem, size, score)
-    curve, _ = _normal_equations(misfit, slope, soft, score)
+        score = np.clip(score - step * np.minimum(1.0, 2.0 / np.maximum(length, 1e-12)), -far, far)
+    return score
+
+
+def _described(problem: Problem, size: Real, score: Real) -> _Nodes:
+    """Nodes with these modes."""
+    misfit, slope = _linear(problem, size, score)
+    own = problem.pull(score)
+    own[:, problem.stretched] = np.minimum(own[:, problem.stretched], _LOOSE)
+    curve, _ = _normal_equations(misfit, slope, _SOFT, own, score)
     plain = np.eye(score.shape[1])
+    plain[problem.stretched, problem.stretched] = _LOOSE
     parts = plain + _BELIEF[:, None, None] * (curve - plain)[:, None]
     root = np.linalg.cholesky(np.linalg.inv(parts))
-    gain = problem.likelihood.gain(problem.predict(size, score))
+    gain = problem.gain(size, score)
     rest = (np.log(np.diagonal(root[:, 0], axis1=1, axis2=2)).sum(axis=1)
-            - (score**2).sum(axis=1) / 2)
+            + np.log(problem.density(score)))
     height = rest + np.log(np.maximum(gain, _LEAST_GAIN)).sum(axis=0)
     forgiven = rest - (_SOFT + 1) / 2 * np.log1p(misfit**2 / _SOFT).sum(axis=1)
     return _Nodes(size, score, root, height, forgiven)
 
 
-def _linear(problem: Problem, size: Real, score: Real) -> tuple[Real, Real, Real]:
-    """Misfits (G, K), their slopes (G, K, d), and the weight of each (G, K)."""
+def _linear(problem: Problem, size: Real, score: Real) -> tuple[Real, Real]:
+    """Misfits (G, K) and their slopes (G, K, d)."""
     g, d = score.shape
     moved = np.concatenate([score[None], score[None] + _STEP * np.eye(d)[:, None]])
-    volts = problem.predict(np.tile(size, d + 1), moved.reshape(-1, d))
+    volts = problem.predict(np.tile(size, d + 1), problem.scores(moved.reshape(-1, d)))
     misfit = problem.likelihood.misfit(volts).reshape(-1, d + 1, g)
     slope = (misfit[:, 1:] - misfit[:, :1]) / _STEP
-    here = misfit[:, 0].T
-    return here, slope.transpose(2, 0, 1), 1 / (1 + here**2 / _SOFT)
+    return misfit[:, 0].T, slope.transpose(2, 0, 1)
 
 
-def _normal_equations(misfit: Real, slope: Real, soft: Real, score: Real) -> tuple[Real, Real]:
-    weighted = slope * soft[..., None]
-    curve = np.eye(score.shape[1]) + np.einsum("gki,gkj->gij", weighted, slope)
-    return curve, score + np.einsum("gki,gk->gi", weighted, misfit)
+def _normal_equations(
+    misfit: Real, slope: Real, soft: float, pull: Real, score: Real
+) -> tuple[Real, Real]:
+    weighted = slope / (1 + misfit**2 / soft)[..., None]
+    own = pull[:, None] * np.eye(score.shape[1])
+    curve = own + np.einsum("gki,gkj->gij", weighted, slope)
+    return curve, pull * score + np.einsum("gki,gk->gi", weighted, misfit)
 
 
 @dataclass(frozen=True, eq=False)
@@ -310,11 +371,8 @@ def _student_density(z: Real) -> Real:
     return np.asarray(np.exp(constant - (_TAIL + d) / 2 * np.log1p((z**2).sum(axis=1) / _TAIL)))
 
 
-def _each(root: Real, part: NDArray[np.intp], z: Real) -> Real:
-    """Scores (q, d) from z by the root of the part that each point belongs to."""
-    return np.asarray(np.einsum("qij,qj->qi", root[np.arange(len(part)), part], z))
-
-
-def _normal_density(score: Real) -> Real:
-    d = score.shape[-1]
-    return np.asarray(np.exp(-(score**2).sum(axis=-1) / 2) / (2 * math.pi) ** (d / 2))
+def _turned(matrix: Real, k: NDArray[np.intp], z: Real) -> Real:
+    """Each z (q, d) by the matrix (G, d, d) of its node k (q,)."""
+    if len(matrix) == 1:
+        return np.asarray(z @ matrix[0].T)
+    return np.asarray(np.einsum("qij,qj->qi", matrix[k], z))
