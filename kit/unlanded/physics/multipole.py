@@ -305,16 +305,15 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     right *= _powers(p / tau, top)[..., None]
     block = (left.swapaxes(-1, -2) @ right.view(float)).view(complex)
     block *= (_powers(tau, top) * listed.weight[:, i])[..., None]
-    whole = np.empty((count, top, n, top, n), dtype=complex)
-    blocks = block.swapaxes(0, 1)
-    whole[:, :, j, :, i] = blocks.conj().swapaxes(-1, -2)
-    whole[:, :, i, :, j] = blocks
-    matrix = whole.reshape(count, top * n, top * n)
-    place = (listed.order - 1) * n + listed.conductor
-    if len(place) < top * n:
-        matrix = matrix.take(place, axis=1).take(place, axis=2)
+    whole = np.empty((count, n, top, n, top), dtype=complex)
+    for k in range(len(i)):
+        whole[:, i[k], :, j[k]] = block[:, k]
+        np.conj(block[:, k].swapaxes(-1, -2), out=whole[:, j[k], :, i[k]])
+    matrix = whole.reshape(count, n * top, n * top)
+    place = listed.conductor * top + listed.order - 1
     g = -listed.spread(np.conj(toward)) / np.sqrt(listed.order)[:, None]
-    return lambda rows, columns, _: matrix[:, rows, columns], g, np.log(np.abs(across) / radius)
+    return (lambda rows, columns, _: matrix.take(place[rows], axis=1).take(place[columns], axis=2),
+            g, np.log(np.abs(across) / radius))
 
 
 def _powers(base: Real | Complex, top: int) -> Any:
