@@ -1,9 +1,19 @@
 from __future__ import annotations
 
+from collections.abc import Callable
+from functools import cache
+
+import pytest
+
+from case_text import SITES
+from unlanded.case.loading import read_case
+from unlanded.report.circuit import circuit_part
 from unlanded.report.figure import Figure
-from unlanded.report.investigation import Investigation
+from unlanded.report.investigation import Investigation, investigate
 from unlanded.report.memo import Caution, Paragraph
 from unlanded.report.operation import (
+    comparison_table,
+    comparisons,
     operation_finding,
     operation_part,
     operation_results,
@@ -52,3 +62,80 @@ def test_results_and_sources(moor: Investigation) -> None:
     sources = {str(s) for _, s in operation_sources(moor)}
     assert any("IEC 61810-1" in s and "from memory" in s for s in sources)
     assert any("IEC 61131-2" in s for s in sources)
+
+
+LAMP = """[run.switching]
+arrangement = "two-way"
+travellers = ["brown", "black"]
+neutral = "blue"
+load = {name = "landing lamp"}
+[run.ends.near]
+green-yellow = "earth"
+[[operation]]
+name = "lamp on the landing"
+kind = "LED lamp"
+load = "landing lamp"
+"""
+RELAY = LAMP.replace('{name = "landing lamp"}', '{name = "landing lamp", resistance = "20 kohm"}'
+                     ).replace('"LED lamp"', '"relay"\nrated_voltage = "230 V"')
+
+
+@pytest.fixture(scope="module")
+def landing() -> Callable[[str], Investigation]:
+    """Tern Quay's cord with its load switched in an arrangement, and nothing read on it."""
+    text = (SITES / "tern-quay.toml").read_text(encoding="utf-8")
+
+    @cache
+    def make(ends: str) -> Investigation:
+        return investigate(read_case(text[:text.index("# What each core meets")] + ends))
+    return make
+
+
+def test_other_arrangements_are_held_against_each_other(
+    landing: Callable[[str], Investigation]
+) -> None:
+    found = landing(LAMP)
+    part = operation_part(found)
+    assert part is not None
+    table = next(b for b in part.blocks if isinstance(b, Table) and b.key == "arrangements-1")
+    assert [row[0].split("\n")[0] for row in table.rows] == [
+        "two-way, brown live (as it is)", "remote contact", "contact at supply", "switched live",
+        "switched neutral", "two-way, black live"]
+    assert table.rows[0][0].endswith("black to blue, far end")
+    assert "Current" not in table.titles  # a lamp's level is one already
+    assert {row[2] for row in table.rows} == {"may glow", "stays dark"}
+    assert "many codes forbid it" in table.note
+    (finding,) = operation_finding(found)
+    assert isinstance(finding, Paragraph)
+    assert finding.text.endswith("other arrangements of the same cable, contact at supply would.")
+    results = operation_results(found)
+    assert results is not None
+    assert [a["as_built"] for a in results[0]["arrangements"]] == [True] + [False] * 5
+    assert results[0]["arrangements"][0]["level_A"] == results[0]["level_A"]
+
+
+def test_a_relay_has_a_voltage_and_a_current(landing: Callable[[str], Investigation]) -> None:
+    found = landing(RELAY)
+    (relay,) = operations(found)
+    others = comparisons(found, relay)
+    table = comparison_table(others, 1)
+    assert table.titles[1:4] == ("Coupled in", "Current", "Load")
+    assert others[0].found.current == pytest.approx(relay.level / 20e3, rel=1e-9, abs=0)
+    assert others[0].found.level == pytest.approx(relay.level, rel=1e-9, abs=0)
+
+
+def test_ends_drawn_by_hand_are_not_compared(moor: Investigation) -> None:
+    assert all(comparisons(moor, one) == () for one in operations(moor))
+    results = operation_results(moor)
+    assert results is not None
+    assert results[0]["arrangements"] == []
+
+
+def test_the_circuit_says_how_the_load_is_switched(
+    landing: Callable[[str], Investigation]
+) -> None:
+    text = next(b.text for b in circuit_part(landing(LAMP)).blocks
+                if isinstance(b, Paragraph) and b.text.startswith("A run of"))
+    assert text.endswith(
+        "The landing lamp is switched in the arrangement two-way (travellers brown and black, "
+        "neutral blue), drawn with its contacts open, and brown live.")

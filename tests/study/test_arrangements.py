@@ -7,11 +7,15 @@ import math
 import numpy as np
 import pytest
 
+from unlanded.errors import Refused
 from unlanded.physics.burden import Burden
 from unlanded.physics.screen import own_screens
 from unlanded.physics.section import Conductor, Plane, Section
 from unlanded.study.arrangements import (
     Arrangement,
+    Cores,
+    Word,
+    arranged,
     contact_at_supply,
     remote_contact,
     spares_earthed,
@@ -89,3 +93,30 @@ def test_earthing_the_spare_takes_its_part_away() -> None:
 def test_a_core_in_a_screen_of_its_own() -> None:
     plain = remote_contact("a", "b", load=Burden(LOAD))
     assert level(plain) > 100 * level(plain, own_screens(MATRIX, [0]))
+
+
+@pytest.mark.parametrize(("word", "drawn"), [
+    ("remote contact", remote_contact("a", "b", load=Burden(LOAD))),
+    ("contact at supply", contact_at_supply("a", "c", load=Burden(LOAD))),
+    ("switched live", switched_in_line("a", "b", "c", load=Burden(LOAD))),
+    ("switched neutral", switched_in_neutral("a", "b", load=Burden(LOAD))),
+    ("two-way", two_way(("a", "b"), "c", load=Burden(LOAD)))])
+def test_an_arrangement_by_its_name(word: Word, drawn: Arrangement) -> None:
+    assert arranged(word, Cores("a", "b", "c"), load=Burden(LOAD)) == drawn
+
+
+def test_the_neutral_may_come_another_way() -> None:
+    # Core c is spare and floats, as it does beside a remote contact; the load is at the other end.
+    away = level(two_way(("a", "b"), None, load=Burden(LOAD)))
+    assert away == pytest.approx(level(remote_contact("a", "b", load=Burden(LOAD))), rel=1e-4,
+                                 abs=0)
+
+
+@pytest.mark.parametrize(("word", "cores", "says"), [
+    ("contact at supply", Cores("a", "b"), "needs cores for live and neutral"),
+    ("two-way", Cores("a", neutral="c"), "needs cores for live and switched"),
+    ("remote contact", Cores("a"), "needs cores for live and switched; given"),
+])
+def test_a_part_that_is_missing_is_refused(word: Word, cores: Cores, says: str) -> None:
+    with pytest.raises(Refused, match=says):
+        arranged(word, cores, load=Burden(LOAD))

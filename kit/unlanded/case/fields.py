@@ -290,6 +290,7 @@ Point = Annotated[str, _one_of("a point", _points)]
 SupplyWord = Annotated[
     str, _one_of("a word of the supply", lambda v: (*v.phases, "N", "earth", "open"))
 ]
+SupplyLine = Annotated[str, _one_of("a line of the supply", lambda v: v.phases)]
 Shown = Annotated[str, BeforeValidator(_shown)]
 InstrumentKey = Annotated[str, _one_of("an instrument", lambda v: v.instruments)]
 

@@ -9,7 +9,7 @@ import math
 from collections.abc import Iterator
 from typing import Annotated, Any, Generic, Self, TypeVar
 
-from pydantic import BeforeValidator, Field, StrictBool, model_validator
+from pydantic import BeforeValidator, Field, PrivateAttr, StrictBool, model_validator
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.loads import THRESHOLDS, Threshold, threshold
@@ -173,8 +173,7 @@ class SpreadTable(Table):
         if self.to_earth and not (run.screen and run.screen.earthed == "none"):
             yield Mistake("spread.to_earth", "is of a screen that is earthed at no end, and there "
                           "is none", "", 'it goes with earthed = "none" of [run.surround]')
-        labels = [t.load.name for end in (run.ends.near, run.ends.far)
-                  for t in end.values() if t.load is not None]
+        labels = [label for label, _ in run.loads]
         for label in self.loads:
             if label not in labels:
                 yield Mistake(f'spread.loads."{label}"', "is not a load of this case", label,
@@ -188,16 +187,21 @@ def _known_kind(given: Any) -> Threshold:
         raise told_here(refusal) from None
 
 
+_POINTS = {"from": 'for example from = "2@near"', "to": 'for example to = "N"'}
+
+
 class OperationTable(Table):
     """`[[operation]]`: a load that stray coupling must not keep on, with its contacts open.
 
-    Its thresholds are those of its kind unless the data sheet's own are given.
+    It is where `load` says, the name of a load at the run's ends, or between two points. Its
+    thresholds are those of its kind unless the data sheet's own are given.
     """
 
     name: Title = Field(examples=["interlock relay"])
     kind: Annotated[Threshold, BeforeValidator(_known_kind)] = Field(examples=["relay"])
-    a: Point = Field(alias="from", examples=["2@near"])
-    b: Point = Field(alias="to", examples=["N"])
+    load: Line | None = None
+    a: Point | None = Field(None, alias="from", examples=["2@near"])
+    b: Point | None = Field(None, alias="to", examples=["N"])
     rated_voltage: Voltage | None = None
     off_voltage: Voltage | None = None
     on_voltage: Voltage | None = None
@@ -205,6 +209,24 @@ class OperationTable(Table):
     on_current: Current | None = None
     conducts_from: Voltage = 50.0
     series_capacitance: Capacitance | None = None
+    _pair: Pair = PrivateAttr(Pair(""))
+
+    @model_validator(mode="after")
+    def _is_somewhere(self) -> Self:
+        points = {"from": self.a, "to": self.b}
+        if self.load is not None:
+            if given := [key for key, point in points.items() if point is not None]:
+                raise Refused(given[0], "is given twice: load says where it is")
+            return self
+        if missing := [Mistake(key, "is missing", "", f"{_POINTS[key]}, or load = its name")
+                       for key, point in points.items() if point is None]:
+            raise Refused.all_of(missing)
+        self.put_on(Pair(str(self.a), str(self.b)))
+        return self
+
+    def put_on(self, pair: Pair) -> None:
+        """Says on which pair its load is."""
+        self._pair = pair
 
     @model_validator(mode="after")
     def _makes_a_load(self) -> Self:
@@ -223,7 +245,7 @@ class OperationTable(Table):
         """The record that the study uses."""
         lamp = self.kind.measure == "lamp current"
         return Watched(
-            self.name, Pair(self.a, self.b), self.kind, self.rated_voltage,
+            self.name, self._pair, self.kind, self.rated_voltage,
             self.off_current if lamp else self.off_voltage,
             self.on_current if lamp else self.on_voltage, self.conducts_from,
             math.inf if self.series_capacitance is None else self.series_capacitance)

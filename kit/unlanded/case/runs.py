@@ -7,6 +7,7 @@ from typing import Literal
 
 from ..errors import Mistake
 from ..physics.network import EARTH
+from ..study.comparison import Switched
 from ..study.ends import SCREEN, Bonded, Driven, Joined, Open, Through
 from ..study.ends import Termination as RunTermination
 from ..study.run import Run, Screen
@@ -28,8 +29,8 @@ def run_of(content: CaseFile, permittivity: Limit = "likely") -> Run:
         section=section,
         length=content.run.length,
         supply=supply,
-        near=_end(content.run, "near", supply.frequency),
-        far=_end(content.run, "far", supply.frequency),
+        near=_end(content.run, "near", supply),
+        far=_end(content.run, "far", supply),
         resistance=tuple(by_name[name] for name in section.names),
         screen=Screen(screen.resistance, screen.to_earth) if screen else None,
     )
@@ -61,8 +62,18 @@ def _supply(written: SupplyTable) -> Supply:
                   written.inductance, written.harmonics)
 
 
-def _end(run: RunTable, end: End, frequency: float) -> dict[str, RunTermination]:
-    made = {name: _termination(t, frequency) for name, t in getattr(run.ends, end).items()}
+def switched_of(run: RunTable, supply: Supply) -> Switched | None:
+    """The load that `[run.switching]` describes, if any."""
+    if run.switching is None:
+        return None
+    return run.switching.made(frequency=supply.frequency, line=supply.lines[0])
+
+
+def _end(run: RunTable, end: End, supply: Supply) -> dict[str, RunTermination]:
+    made = {name: _termination(t, supply.frequency)
+            for name, t in getattr(run.ends, end).items()}
+    if switched := switched_of(run, supply):
+        made |= getattr(switched.arrangement, end)
     if run.screen and run.screen.earthed in ("both", end):
         made[SCREEN] = Bonded(EARTH)
     return made

@@ -10,11 +10,12 @@ from collections.abc import Iterator
 from dataclasses import replace
 from typing import Annotated, Literal, Self
 
-from pydantic import BeforeValidator, Field, field_validator, model_validator
+from pydantic import BeforeValidator, Field, ValidationInfo, field_validator, model_validator
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.instruments import INSTRUMENTS, Instrument, Kind, Responds, custom_instrument
 from ..study.ends import SCREEN
+from ..study.readings import Pair
 from .behind import DeviceTable, LogTable, Standing
 from .cable import AnyCable, InConduit
 from .causes import Actions, CausesTable
@@ -46,6 +47,7 @@ from .fields import (
 from .inputs import LoadedTable, OperationTable, SizingTable, SpreadTable
 from .memo import MemoTable
 from .surround import AnySurround, ScreenRound
+from .switching import Switching
 from .terminations import Ends
 
 
@@ -60,13 +62,28 @@ class SupplyTable(Table):
     harmonics: dict[Order, Share] = Field(default_factory=dict, examples=['{3 = "5 %"}'])
 
 
+_NO_ENDS = Ends.model_construct()
+
+
 class RunTable(Table):
     """`[run]`: the cable, what surrounds it, how long it is, and its two ends."""
 
     length: Length = Field(examples=["85 m"])
     cable: AnyCable = Field(examples=['{layout = "laid up", …}'])
     surround: AnySurround | None = None
-    ends: Ends = Field(examples=['{near = {brown = "L", blue = "N"}}'])
+    switching: Switching | None = None
+    ends: Ends = Field(default_factory=lambda: _NO_ENDS, validate_default=True,
+                       examples=['{near = {brown = "L", blue = "N"}}'])
+
+    @field_validator("ends")
+    @classmethod
+    def _ends_are_told(cls, ends: Ends, info: ValidationInfo) -> Ends:
+        if "near" in ends.model_fields_set or info.data.get("switching", True) is not None:
+            return ends
+        if ends is _NO_ENDS:
+            raise Refused("", "is missing", hint='for example ends = {near = {brown = "L", blue = '
+                                                 '"N"}}, or describe [run.switching]')
+        raise Refused("near", "is missing", hint='for example near = {brown = "L", blue = "N"}')
 
     @property
     def screen(self) -> ScreenRound | None:
@@ -78,6 +95,28 @@ class RunTable(Table):
         if self.screen and SCREEN in self.cable.names:
             raise Refused("surround", "is a screen, and goes by that name itself", given=SCREEN,
                           hint="give the core of that name another")
+        return self
+
+    @property
+    def loads(self) -> tuple[tuple[str, Pair], ...]:
+        """Every load at the ends: its name, and the pair that it is on."""
+        found = [(t.load.name, Pair(f"{core}@{end}", f"{t.to}@{end}" if t.to in self.cable.names
+                                    else str(t.to)))
+                 for end, ends in (("near", self.ends.near), ("far", self.ends.far))
+                 for core, t in ends.items() if t.load is not None]
+        if self.switching is not None:
+            found.append((self.switching.load.name,
+                          self.switching.made(frequency=1.0, line="").arrangement.load))
+        return tuple(found)
+
+    @model_validator(mode="after")
+    def _ends_once(self) -> Self:
+        cores = self.switching.cores.names if self.switching else ()
+        found = [Mistake(f'ends.{end}."{name}"', "is given by [run.switching] already", name)
+                 for end, ends in (("near", self.ends.near), ("far", self.ends.far))
+                 for name in ends if name in cores]
+        if found:
+            raise Refused.all_of(found)
         return self
 
     @model_validator(mode="after")
@@ -205,6 +244,30 @@ class CaseFile(Table):
         if found := tuple(self.spread.mistakes(self.run)):
             raise Refused.all_of(found)
         return self
+
+    @model_validator(mode="after")
+    def _loads_are_known(self) -> Self:
+        found = [m for count, entry in enumerate(self.operation, 1) if entry.load is not None
+                 for m in self._placed(entry, f"operation[{count}].load")]
+        if found:
+            raise Refused.all_of(found)
+        return self
+
+    def _placed(self, entry: OperationTable, place: str) -> Iterator[Mistake]:
+        """Gives the entry the pair of its load; what is wrong where it cannot be."""
+        name = str(entry.load)
+        pairs = [pair for label, pair in self.run.loads if label == name]
+        bare = self.run.switching is not None and self.run.switching.load.bare
+        if len(pairs) != 1:
+            labels = [label for label, _ in self.run.loads]
+            yield Mistake(place, "is the name of more than one load" if pairs else
+                          "is not a load of this run", name,
+                          nearest(name, labels) if labels and not pairs else "")
+        elif bare and entry.kind.measure == "voltage" and self.run.loads[-1][0] == name:
+            yield Mistake(place, "is given by its name alone: only a lamp is taken without an "
+                          "impedance", name, "give its power, or its impedance")
+        else:
+            entry.put_on(pairs[0])
 
     @model_validator(mode="after")
     def _behind_a_device(self) -> Self:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from typing import Any, Self
+from typing import Any, ClassVar, Self
 
 from pydantic import Field, model_validator
 
@@ -30,6 +30,7 @@ _IMPEDANCE = {"resistance", "inductance", "capacitance", "front_resistance"}
 class Load(Table):
     """What closes two conductors at an end: an impedance, or a nameplate's power."""
 
+    _may_be_bare: ClassVar[bool] = False
     name: Line = "load"
     resistance: Resistance | None = None
     inductance: Inductance = 0.0
@@ -46,7 +47,7 @@ class Load(Table):
         nameplate, impedance = given & {"power", "apparent_power"}, given & _IMPEDANCE
         if not nameplate and (alone := given & {"voltage", "power_factor"}):
             raise Refused(min(alone), "goes with power or apparent_power, and neither is given")
-        if not nameplate and not impedance - {"front_resistance"}:
+        if not (nameplate or impedance - {"front_resistance"} or self._may_be_bare):
             raise Refused("", "says nothing: give an impedance, or power, or apparent_power",
                           hint='for example resistance = "390 ohm"')
         if not nameplate:
@@ -110,7 +111,8 @@ class Termination(Table):
 class Ends(Table):
     """`[run.ends]`: each end by conductor; a conductor that is not named is open there."""
 
-    near: dict[KnownCore, Termination] = Field(examples=['{brown = "L", blue = "N"}'])
+    near: dict[KnownCore, Termination] = Field(
+        default_factory=dict, examples=['{brown = "L", blue = "N"}'])
     far: dict[KnownCore, Termination] = Field(default_factory=dict)
 
     @model_validator(mode="after")

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
+from ..case.switching import Switching
 from ..physics.section import Conductor, Pipe, Plane
 from ..reference.records import Source
 from ..reference.screens import SCREEN_RESISTANCE, SCREEN_TO_EARTH
@@ -35,7 +36,8 @@ def circuit_part(investigation: Investigation) -> Part:
     """The run as computed: ends, capacitances, the section to scale."""
     run, case = investigation.run, investigation.case.content
     length = show_length(run.length, customary=investigation.customary)
-    text = f"A run of {length}, {_surround(run)}. Supply: {_supply_words(run.supply)}."
+    text = (f"A run of {length}, {_surround(run)}. Supply: {_supply_words(run.supply)}."
+            f"{_switching_words(case.run.switching)}")
     notes = [Paragraph(" ".join(p.split())) for p in case.notes.split("\n\n") if p.strip()]
     matrix: list[Block] = [capacitance_table(investigation)] if len(run.names) <= MATRIX else [
         Paragraph("The matrix of capacitances is in capacitance.csv.")]
@@ -153,6 +155,19 @@ def termination_words(end: Termination) -> str:
             return f"{end.label} to {point_words(end.to)}"
         case Open():
             return "open"
+
+
+def _switching_words(switching: Switching | None) -> str:
+    """How the load is switched, as a sentence after another; "" where the case does not say."""
+    if switching is None:
+        return ""
+    cores = switching.cores
+    parts = ([f"travellers {listed(switching.travellers)}"] if switching.travellers else
+             [f"{part} {name}" for part in ("live", "switched") if (name := getattr(cores, part))])
+    parts += [f"neutral {cores.neutral}"] if cores.neutral else []
+    drawn = f", and {cores.live} live" if switching.travellers else ""
+    return (f" The {switching.load.name} is switched in the arrangement {switching.arrangement} "
+            f"({', '.join(parts)}), drawn with its contacts open{drawn}.")
 
 
 def _open_words(run: Run) -> str:

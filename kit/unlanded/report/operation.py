@@ -10,7 +10,9 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from ..case.runs import switched_of
 from ..reference.records import Source
+from ..study.comparison import NOTES, Compared, compare
 from ..study.operation import Operation, Watched, level_on, operation
 from ..study.run import Run
 from ..study.sizing import Met, by_length
@@ -45,6 +47,16 @@ def operations(investigation: Investigation) -> tuple[Operation, ...]:
                  for entry in investigation.case.content.operation)
 
 
+@lru_cache(maxsize=8)
+def comparisons(investigation: Investigation, found: Operation) -> tuple[Compared, ...]:
+    """The load in other arrangements of its contacts; nothing where the case names none for it."""
+    built = switched_of(investigation.case.content.run, investigation.run.supply)
+    if built is None or built.arrangement.load != found.watched.pair:
+        return ()
+    entry = next(e for e in investigation.case.content.operation if e.name == found.watched.name)
+    return compare(investigation.uncertain, entry.watched(), built)
+
+
 def operation_finding(investigation: Investigation) -> list[Block]:
     """What each load does, in a sentence."""
     said = []
@@ -58,6 +70,9 @@ def operation_finding(investigation: Investigation) -> list[Block]:
         if found.margin < 0 and cure and cure.bleeder:
             said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
                         f"{show(cure.watts, 'W')} while on, would let go of it.")
+        off = [c.words for c in comparisons(investigation, found) if c.found.margin >= 0]
+        if found.margin < 0 and off:
+            said.append(f"Of other arrangements of the same cable, {listed(off, 'or')} would.")
     return [Paragraph(" ".join(said))] if said else []
 
 
@@ -73,6 +88,8 @@ def operation_part(investigation: Investigation) -> Part | None:
         states_table(found, customary=investigation.customary)]
     for k, one in enumerate(found, 1):
         blocks += [replace(_figure(investigation, one), key=f"operation-{k}"), cures_table(one, k)]
+        if others := comparisons(investigation, one):
+            blocks.append(comparison_table(others, k, customary=investigation.customary))
     blocks.append(Caution("Before a cure is fitted", _CAUTION))
     return Part("False operation", tuple(blocks))
 
@@ -86,7 +103,15 @@ def operation_results(investigation: Investigation) -> list[Mapping[str, Any]] |
          "margin": o.margin, "chances_off_between_on": o.chances,
          "longest_run_m": o.longest.stretches, "longest_run_covered_m": o.longest_covered.stretches,
          "cures": [{"name": c.name, "level": c.level, "state": c.state, "works": c.works,
-                    "power_W": c.watts} for c in o.cures]}
+                    "power_W": c.watts} for c in o.cures],
+         "arrangements": [
+             {"name": c.words, "as_built": c.as_built, "pair": [c.found.watched.pair.a,
+                                                                c.found.watched.pair.b],
+              f"level_{o.watched.unit}": c.found.level, f"range_{o.watched.unit}": [c.found.low,
+                                                                                    c.found.high],
+              "current_A": c.found.current, "state": c.found.state,
+              "longest_run_m": c.found.longest.stretches}
+             for c in comparisons(investigation, o)]}
         for o in operations(investigation)
     ] or None
 
@@ -107,17 +132,12 @@ def _notes(found: tuple[Operation, ...]) -> str:
 
 def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Table:
     """What each load does, by what margin, and for how long a run it is sure to be off."""
-    def length(met: Met) -> str:
-        return met.words(lambda x: show_length(x, customary=customary))
-
     def row(o: Operation) -> tuple[str, ...]:
         w = o.watched
         off, on = w.limits
-        return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}",
-                f"{show(o.level, w.unit)}\n({show(o.low, w.unit)} … {show(o.high, w.unit)})",
+        return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}", _level(o),
                 show(off, w.unit), show(on, w.unit), o.state, percent(o.margin),
-                " / ".join(map(percent, o.chances)),
-                f"{length(o.longest)}\n({length(o.longest_covered)})")
+                " / ".join(map(percent, o.chances)), _lengths_off(o, customary))
     return Table(
         "operation", "Loads with their contacts open.",
         (Column("Load"), Column("Coupled in", "", "right"), Column("Sure off at", "", "right"),
@@ -127,6 +147,42 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
         f"In brackets: what {percent(COVERAGE)} of the draws allow. Margin: how far under the "
         "voltage at which it is sure to be off, as a share of it. Off / either / on: shares of "
         "the draws.")
+
+
+def _level(o: Operation) -> str:
+    unit = o.watched.unit
+    return f"{show(o.level, unit)}\n({show(o.low, unit)} … {show(o.high, unit)})"
+
+
+def _lengths_off(o: Operation, customary: bool) -> str:
+    def length(met: Met) -> str:
+        return met.words(lambda x: show_length(x, customary=customary))
+    return f"{length(o.longest)}\n({length(o.longest_covered)})"
+
+
+def comparison_table(
+    others: tuple[Compared, ...], number: int, *, customary: bool = False
+) -> Table:
+    """Every arrangement that the cable has cores for: what the load then does."""
+    def row(c: Compared) -> tuple[str, ...]:
+        o = c.found
+        own = " (as it is)" if c.as_built else ""
+        current = (show(o.current, "A"),) if watched.unit == "V" else ()
+        return (f"{c.words}{own}\n{pair_words(o.watched.pair.a, o.watched.pair.b)}", _level(o),
+                *current, o.state, _lengths_off(o, customary))
+
+    watched = others[0].found.watched
+    current = (Column("Current", "", "right"),) if watched.unit == "V" else ()
+    mind = " ".join(f"{word[:1].upper()}{word[1:]}: {note}." for word, note in NOTES.items()
+                    if word in {c.switched.word for c in others})
+    return Table(
+        f"arrangements-{number}", f"The {watched.name} in other arrangements of its contacts: the "
+        "same cable, length and load, contacts open.",
+        (Column("Arrangement, load"), Column("Coupled in", "", "right"), *current, Column("Load"),
+         Column("Sure off for runs", "", "right")),
+        tuple(map(row, others)),
+        "Cores keep their parts, a spare one is taken for a part that is new, and what is not "
+        f"needed is open. In brackets: what {percent(COVERAGE)} of the draws allow. {mind}")
 
 
 def cures_table(found: Operation, number: int) -> Table:

@@ -137,8 +137,13 @@ class Operation:
     cures: tuple[Cure, ...]
 
 
-def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Operation:
-    """The state of a load, its margin, the longest run, and the cures; raises `Refused`."""
+def operation(
+    uncertain: UncertainRun, watched: Watched, *, seed: int = 1, cured: bool = True
+) -> Operation:
+    """The state of a load, its margin, the longest run, and the cures; raises `Refused`.
+
+    Without cures where they are not asked for: `cured` False.
+    """
     run = uncertain.run
     watched = by_current(run, watched)
     off, on = watched.limits
@@ -151,7 +156,7 @@ def operation(uncertain: UncertainRun, watched: Watched, *, seed: int = 1) -> Op
     return Operation(
         watched, level, float(low[0]), float(high[0]), level * _admittance(run, watched),
         watched.state(level), (off - level) / off, chances, longest, covered,
-        tuple(_ranked(_cures(uncertain.draws(CURED, seed=seed), watched))))
+        tuple(_ranked(_cures(uncertain.draws(CURED, seed=seed), watched))) if cured else ())
 
 
 def level_on(batch: RunBatch, watched: Watched, admittance: ArrayLike = 0.0) -> Real:
