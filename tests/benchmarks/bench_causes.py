@@ -14,15 +14,16 @@ from collections.abc import Callable, Iterable
 from concurrent.futures import ProcessPoolExecutor
 from dataclasses import dataclass
 from functools import cache, partial
+from itertools import pairwise
 from pathlib import Path
 
 import numpy as np
 
 sys.path.insert(0, str(Path(__file__).parent))
-from synthetic import KIT, SECOND, SUSPECT, Bench, Wrong, usual_kit
+from synthetic import KIT, SECOND, SUSPECT, Bench, Site, Wrong, usual_kit
 
-from unlanded.study.causes import explain, quantiles
-from unlanded.study.finding import LEAKS, finding
+from unlanded.study.causes import Explanation, explain, quantiles
+from unlanded.study.claim import Claim, claim
 from unlanded.study.hypotheses import CAUSES
 from unlanded.study.next_reading import Candidate, next_readings, usual_candidates
 from unlanded.study.readings import Pair
@@ -33,6 +34,7 @@ WRONGS = {
     "every instrument 3 % low": Wrong(gain=0.97),
     "capacitances 1.7 times those computed": Wrong(capacitance=1.7),
     "capacitances 0.5 times those computed": Wrong(capacitance=0.5),
+    "covers' permittivity 1.5 times the top of its range": Wrong(permittivity=1.5),
     "one value misread": Wrong(misread=True),
 }
 ENOUGH, MOST = 0.95, 8
@@ -41,14 +43,18 @@ STABLE = 0.02
 
 @dataclass
 class Verdict:
-    """One investigation: shares of the causes, the true one, and what was covered at 90 %."""
+    """On one suspect: shares of the causes, the true one, and what was covered at 90 %.
+
+    `claim` is what the finding says, and `holds` whether that is so.
+    """
 
     shares: list[float]
     true: int
     coupling: bool
     size: bool | None
     error: float
-    left_open: bool  # a leakage that the finding itself says the readings cannot exclude
+    claim: Claim
+    holds: bool
 
 
 @cache
@@ -56,34 +62,33 @@ def bench(wrong: Wrong | None = None) -> Bench:
     return Bench(wrong)
 
 
-def judged(number: int, wrong: Wrong) -> Verdict:
+def judged(number: int, wrong: Wrong) -> list[Verdict]:
     """Two to six readings, explained."""
     site = bench(_key(wrong)).site(number)
     readings = site.readings(usual_kit(np.random.default_rng([11, number])))
-    found = explain(site.reduced, readings, stable=STABLE)
-    odds = found.odds(SUSPECT)
-    live, _, weight = found.capacitances(SUSPECT, site.cause)
-    sizes, size_weight = found.sizes(SUSPECT, site.cause)
-    sized = site.cause not in ("capacitive coupling", "solid connection", "none of these")
-    return Verdict([odds[c] for c in CAUSES], CAUSES.index(site.cause),
-                   _covers(live, weight, site.coupling),
-                   _covers(sizes, size_weight, site.size) if sized else None, found.error,
-                   site.cause in LEAKS and site.size >= finding(found, SUSPECT).leak_limit)
+    return [_verdict(explain(site.reduced, readings, stable=STABLE), site, SUSPECT)]
 
 
-def judged_both(number: int) -> list[tuple[float, bool]]:
-    """Two suspects, two to four readings on each: share of the likeliest cause, and if right."""
+def judged_both(number: int) -> list[Verdict]:
+    """Two suspects, two or three readings on each."""
     site = two_suspects().site(number)
     digital, low, extra = KIT[0], KIT[1], KIT[number % len(KIT)]
     wanted = [Candidate(tool, Pair(f"{name}@far"))
               for name in site.reduced.suspects for tool in (digital, low, extra)[: 2 + number % 2]]
     found = explain(site.reduced, site.readings(wanted), stable=0.05)
-    out = []
-    for name, variant in site.variants.items():
-        odds = found.odds(name)
-        best = found.likeliest(name)
-        out.append((odds[best], best == variant.cause))
-    return out
+    return [_verdict(found, site, name) for name in site.variants]
+
+
+def _verdict(found: Explanation, site: Site, suspect: str) -> Verdict:
+    odds, true = found.odds(suspect), site.variants[suspect].cause
+    live, _, weight = found.capacitances(suspect, true)
+    sizes, size_weight = found.sizes(suspect, true)
+    sized = true not in ("capacitive coupling", "solid connection", "none of these")
+    said = claim(found, suspect)
+    return Verdict([odds[c] for c in CAUSES], CAUSES.index(true),
+                   _covers(live, weight, site.coupling[suspect]),
+                   _covers(sizes, size_weight, site.size[suspect]) if sized else None,
+                   found.error, said, said.holds(true, site.size[suspect]))
 
 
 @cache
@@ -95,9 +100,9 @@ def _key(wrong: Wrong) -> Wrong | None:
     return None if wrong == Wrong() else wrong
 
 
-
-
 def _covers(values: np.ndarray, weights: np.ndarray, truth: float) -> bool:
+    if not len(values):
+        return False
     low, high = quantiles(values, weights, (0.05, 0.95))
     return bool(low <= truth <= high)
 
@@ -123,7 +128,7 @@ def readings_needed(number: int) -> tuple[int, int, bool, bool]:
                 chosen = Candidate(KIT[1], Pair(f"{SUSPECT}@{end}"))
             readings.append(site.reading(chosen))
         count = len(readings) if odds[best] >= ENOUGH else MOST + 1
-        out.append((count, best == site.cause))
+        out.append((count, best == site.variants[SUSPECT].cause))
     return out[0][0], out[1][0], out[0][1], out[1][1]
 
 
@@ -132,35 +137,34 @@ def spread(work: Callable[[int], object], count: int) -> list:
         return list(pool.map(work, range(count), chunksize=20))
 
 
-def report_calibration(verdicts: Iterable[Verdict], name: str) -> None:
-    verdicts = list(verdicts)
+def report_calibration(made: Iterable[list[Verdict]], name: str) -> None:
+    verdicts = [v for several in made for v in several]
     shares = np.array([v.shares for v in verdicts])
     true = np.array([v.true for v in verdicts])
     best = shares.argmax(axis=1)
     top, right = shares.max(axis=1), best == true
-    print(f"\n{name}: {len(verdicts)} investigations")
+    print(f"\n{name}: {len(verdicts)} conductors")
     print(f"  likeliest cause right {right.mean():.1%}, stated on average {top.mean():.1%}")
-    print(f"  expected calibration error of the likeliest cause, 10 bins: {_ece(top, right):.4f}; "
-          f"of all statements: {_ece(shares.ravel(), (np.eye(len(CAUSES))[true] > 0).ravel()):.4f}")
     every, held = shares.ravel(), (np.eye(len(CAUSES))[true] > 0).ravel()
+    print(f"  expected calibration error of the likeliest cause, 10 bins: {_ece(top, right)}; "
+          f"of all statements: {_ece(every, held)}")
     about = (every >= 0.85) & (every < 0.95)
     print(f"  stated 85 to 95 % (mean {every[about].mean():.1%}): right {held[about].mean():.1%} "
           f"of {about.sum()}")
     sure = top >= 0.9
-    print(f"  90 % or more for a wrong cause: {(sure & ~right).sum()} of {len(verdicts)} "
-          f"({(sure & ~right).mean():.2%}); of the {sure.sum()} such verdicts "
-          f"{(~right[sure]).mean():.2%} are wrong, where they state {1 - top[sure].mean():.2%}")
-    open_too = np.array([v.left_open for v in verdicts]) & (best == 0)
-    print(f"  of these not left open by the finding's own words (capacitive coupling, but a "
-          f"leakage above so many ohms not excluded): {(sure & ~right & ~open_too).sum()} of "
-          f"{len(verdicts)} ({(sure & ~right & ~open_too).mean():.2%})")
+    print(f"  bare odds of 90 % or more {sure.mean():.1%} of the time, for a wrong cause "
+          f"{(sure & ~right).mean():.2%}; they state {(1 - top)[sure].sum() / len(top):.2%}")
+    _report_claims(verdicts)
     sizes = [v.size for v in verdicts if v.size is not None]
-    print("  90 % ranges hold the coupling capacitance in "
-          f"{np.mean([v.coupling for v in verdicts]):.1%}, the size of the cause in "
+    covered = np.array([v.coupling for v in verdicts])
+    print(f"  90 % ranges hold the coupling capacitance in {covered.mean():.1%} "
+          f"({covered[true == 0].mean():.1%} where it is the cause), the size of the cause in "
           f"{np.mean(sizes):.1%}")
     none = CAUSES.index("none of these")
-    print(f"  share given to none of these, on average {shares[:, none].mean():.1%}; "
-          f"median error of the odds by quadrature {np.median([v.error for v in verdicts]):.2%}")
+    error = np.array([v.error for v in verdicts])
+    print(f"  share given to none of these, on average {shares[:, none].mean():.1%}; error of the "
+          f"odds by quadrature, median {np.median(error):.2%}, over 5 % in "
+          f"{(error > 0.05).mean():.1%}")
     for k, cause in enumerate(CAUSES):
         mine = true == k
         if mine.any():
@@ -168,17 +172,40 @@ def report_calibration(verdicts: Iterable[Verdict], name: str) -> None:
                   f"{(best[mine] == k).mean():.0%}, mean share {shares[mine, k].mean():.2f}")
 
 
-def report_both(pairs: list[list[tuple[float, bool]]]) -> None:
-    stated, right = (np.array(x) for x in zip(*(p for pair in pairs for p in pair), strict=True))
-    print(f"\nTwo suspects together: {len(pairs)} investigations")
-    print(f"  likeliest cause right {right.mean():.1%}, stated on average {stated.mean():.1%}; "
-          f"expected calibration error {_ece(stated, right):.4f}")
+def _report_claims(verdicts: list[Verdict]) -> None:
+    """Findings as worded: how often sure, how often wrong, and what they state."""
+    count = np.array([len(v.claim.causes) for v in verdicts])
+    resting = np.array([bool(v.claim.rests_on) for v in verdicts])
+    stated, holds = (np.array(x) for x in zip(*((v.claim.share, v.holds) for v in verdicts),
+                                              strict=True))
+    none = np.array([v.claim.causes[0] == "none of these" for v in verdicts])
+    print("  findings as worded (stated: what their own shares leave):")
+    for what, mine in (
+        ("name one cause, on more than one reading", (count == 1) & ~resting),
+        ("name one cause, one reading carries it", (count == 1) & resting),
+        ("leave two open, on more than one reading", (count == 2) & ~resting),
+        ("leave two open, one reading carries it", (count == 2) & resting),
+        ("leave more open", count > 2),
+    ):
+        print(f"    {what:42s} {mine.mean():6.1%}; wrong {(mine & ~holds).sum():3d} "
+              f"({(mine & ~holds).mean():.2%}, of these none of these "
+              f"{(mine & ~holds & none).sum()}), stated {(1 - stated)[mine].sum() / len(mine):.2%}")
+    edges = (0.95, 0.97, 0.985, 0.995, 1.001)
+    print("    right by the share that is stated: " + ", ".join(
+        f"{stated[m].mean():.1%} stated {holds[m].mean():.1%} right of {m.sum()}"
+        for low, high in pairwise(edges) if (m := (stated >= low) & (stated < high)).any()))
 
 
-def _ece(stated: np.ndarray, right: np.ndarray) -> float:
+def _ece(stated: np.ndarray, right: np.ndarray) -> str:
+    """Expected calibration error, and what it would be by chance if all shares were honest."""
     bins = np.minimum((stated * 10).astype(int), 9)
-    return float(sum(abs(stated[bins == b].mean() - right[bins == b].mean()) * (bins == b).mean()
-                     for b in range(10) if (bins == b).any()))
+    error = chance = 0.0
+    for b in np.unique(bins):
+        mine = bins == b
+        error += abs(stated[mine].mean() - right[mine].mean()) * mine.mean()
+        scatter = (stated[mine] * (1 - stated[mine])).sum() ** 0.5 / mine.sum()
+        chance += scatter * (2 / np.pi) ** 0.5 * mine.mean()
+    return f"{error:.4f} (by chance {chance:.4f})"
 
 
 def report_next(counts: list[tuple[int, int, bool, bool]]) -> None:
@@ -218,7 +245,7 @@ def main() -> None:
         if part in ("calibration" if wrong == Wrong() else "wrong", "all"):
             report_calibration(spread(partial(judged, wrong=wrong), count), name)
     if part in ("two", "all"):
-        report_both(spread(judged_both, count // 5))
+        report_calibration(spread(judged_both, count), "two suspects together")
     if part in ("next", "all"):
         report_next(spread(readings_needed, count))
 

@@ -112,8 +112,9 @@ class Site:
         score = rng.standard_normal((1, len(scene.coordinates)))
         size = rng.random(1)
         self.scores = scene.scores(score)
-        self.size = float(scene.size(SUSPECT, size, self.scores)[0])
-        self.coupling = float(truth.capacitances(self.scores, SUSPECT)[0][0])
+        self.size = {n: float(scene.size(n, size, self.scores)[0]) for n in truth.suspects}
+        self.coupling = {n: float(truth.capacitances(self.scores, n)[0][0])
+                         for n in truth.suspects}
         self._solved = Solved(scene, size, self.scores)
 
     def _variant(self) -> Variant:

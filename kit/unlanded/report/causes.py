@@ -14,6 +14,7 @@ from ..errors import Refused
 from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source
 from ..study.causes import Explanation, Progress, silent
+from ..study.claim import RESTS, SURE
 from ..study.coupling import DESCRIPTION_SPREAD, GEOMETRY_SPREAD, UNDESCRIBED
 from ..study.finding import (
     ACCEPTED_INSULATION,
@@ -250,6 +251,11 @@ def _method(found: Explanation) -> Iterator[str]:
     yield (f"Instruments err within their statements; {100 * WIDE_SHARE.likely:.0f} % of readings "
            f"err four times as far, and {100 * MISREAD_SHARE.likely:.0f} % are taken to tell "
            "nothing, so that one misread value does not decide.")
+    yield ("How sure a finding is as worded is the chance that the true cause is the one that it "
+           "names, or one of those, or a leakage that it says cannot be excluded. It names one "
+           f"cause alone from {100 * SURE:.0f} %, and otherwise as many as that takes; where one "
+           f"reading alone takes it over {100 * RESTS:.0f} %, it says which. Ranges are those "
+           "that 90 % lies in.")
     yield "All readings explain one state of the run; its unknowns are shared by all conductors."
 
 
@@ -294,7 +300,9 @@ def causes_results(investigation: Investigation) -> dict[str, Any] | None:
         "suspects": [{
             "conductor": f.suspect, "shares": found.odds(f.suspect), "cause": f.cause,
             "coupling_F": f.coupling, "size": f.size, "leakage_not_excluded_above_ohm":
-            f.leak_limit, "coupled_current_A": f.current, "finding": headline(found, f),
+            f.claim.leak_limit, "coupled_current_A": f.current, "finding": headline(found, f),
+            "claimed": f.claim.causes, "sure_as_worded": f.claim.share,
+            "rests_on_readings": [k + 1 for k in f.claim.rests_on],
         } for f in findings(found)],
         "next": [{"instrument": p.candidate.instrument.key,
                   "pair": [p.candidate.pair.a, p.candidate.pair.b],

@@ -15,19 +15,17 @@ from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source, Value
 from ..units import show, show_length
 from .causes import Explanation, quantiles
+from .claim import LEAKS, Claim, claim
 from .coupling import Real
 from .hypotheses import LEAKAGE, Cause
 from .observation import NOTHING
 from .readings import Pair
 from .scene import Solved, rms
 
-DECIDED = 0.8  # share of a cause from which the finding names it alone
+LEADING = 0.75  # share of a cause from which it leads among those that are open
 SUSPECT_READING = 0.5  # chance of a misread from which a reading counts as one that does not fit
-NOT_EXCLUDED = 10.0  # to 1: odds below which the readings do not exclude a size
 ACCEPTED_INSULATION = Value(1e6, "Ω", Source("IEC 60364-6", "from memory",
                                              "insulation resistance, to 500 V"))
-LEAKS: tuple[Cause, Cause] = ("leakage to a live neighbour", "leakage to earth")
-_BINS = 32
 
 Range = tuple[float, float, float]
 """Values that 5, 50 and 95 % of the posterior lie below."""
@@ -44,8 +42,7 @@ class Finding:
     second, second_share : the next one
     size : of the likeliest cause, [ohm] or [V]; None where it has none
     coupling : capacitance to the live conductors under it [F]; None where nothing is known of it
-    leak_limit : leakage above which the readings cannot exclude it beside the capacitive coupling
-        [ohm]; NaN where they exclude all of it
+    claim : what the finding's first sentence claims, and how sure that is
     leak_odds : of capacitive coupling over leakage below 1 MΩ
     current : that capacitive coupling drives through a bond from the conductor to earth [A]
     misfits : indices of readings that fit nothing
@@ -59,16 +56,11 @@ class Finding:
     second_share: float
     size: Range | None
     coupling: Range | None
-    leak_limit: float
+    claim: Claim
     leak_odds: float
     current: Range
     misfits: tuple[int, ...]
     alike: bool
-
-    @property
-    def decided(self) -> bool:
-        """Whether the likeliest cause is named alone."""
-        return self.share >= DECIDED
 
     @property
     def felt(self) -> bool:
@@ -89,7 +81,7 @@ def finding(found: Explanation, suspect: str) -> Finding:
         suspect, cause, odds[cause], second, odds[second],
         credible(sizes, size_weights) if sized else None,
         None if cause == "none of these" else credible(live, weights),
-        _leak_limit(found, suspect), _leak_odds(found, suspect), coupled_current(found, suspect),
+        claim(found, suspect), _leak_odds(found, suspect), coupled_current(found, suspect),
         misfits, _alike(found, suspect, cause, second))
 
 
@@ -130,21 +122,6 @@ def _leak_odds(found: Explanation, suspect: str) -> float:
     return good / poor if poor > 0 else math.inf
 
 
-def _leak_limit(found: Explanation, suspect: str) -> float:
-    """The least resistance from which on no leakage is ten times less likely than none."""
-    plain = found.odds(suspect)["capacitive coupling"] / found.shares["capacitive coupling"]
-    edges = np.geomspace(LEAKAGE.low, LEAKAGE.high, _BINS + 1)
-    limits = []
-    for cause in LEAKS:
-        sizes, weights = found.sizes(suspect, cause)
-        held = np.histogram(sizes, edges, weights=weights)[0] * _BINS
-        open_to = NOT_EXCLUDED * held >= plain * found.shares[cause]
-        first = _BINS - int(np.argmin(np.append(open_to[::-1], False)))
-        limits.append(edges[first] if first < _BINS else math.inf)
-    least = min(limits)
-    return float(least) if math.isfinite(least) else math.nan
-
-
 def sentences(
     found: Explanation, made: Finding, *, customary: bool = False
 ) -> Iterator[str]:
@@ -153,7 +130,7 @@ def sentences(
     Lengths are in feet if `customary`.
     """
     yield headline(found, made)
-    if made.coupling is not None and made.decided:
+    if made.coupling is not None and made.claim.decided:
         yield f"The capacitance to the live conductors comes out at {span(made.coupling, 'F')}."
     if made.cause != "none of these":
         for k in made.misfits:
@@ -169,17 +146,46 @@ def headline(found: Explanation, made: Finding) -> str:
     of = f"on “{made.suspect}”"
     if not found.readings:
         return f"No reading has been taken {of}: the odds are those of the trade beforehand."
-    if not made.decided:
-        return (f"The readings {of} cannot tell {made.cause} ({_percent(made.share)}) from "
-                f"{made.second} ({_percent(made.second_share)}): {_why(made)}.")
+    if len(made.claim.causes) > 1:
+        return _several(found, made, of)
     if made.cause == "none of these":
         return (f"No cause here explains the readings {of} ({odds_words(_ratio(made))} over "
-                f"{made.second}): the run is not as described, or more than one thing is wrong.")
+                f"{made.second}): the run is not as described, or more than one thing is wrong; "
+                f"{_sure(made.claim)}.")
     if made.cause == "capacitive coupling":
         return (f"The readings {of} are what capacitive coupling on this run predicts "
-                f"({_over(made)}); {_open(made)}.")
+                f"({_over(made)}); {_open(made.claim)}; {_sure(made.claim)}.")
     return (f"The readings {of} point to {made.cause}{_sized(made)} "
-            f"({odds_words(_ratio(made))} over {made.second}).")
+            f"({odds_words(_ratio(made))} over {made.second}); {_sure(made.claim)}.")
+
+
+def _several(found: Explanation, made: Finding, of: str) -> str:
+    odds = found.odds(made.suspect)
+    first, *rest = [f"{c} ({_percent(odds[c])})" for c in made.claim.causes]
+    why = f": {_why(made)}" if len(rest) == 1 else ""
+    if made.share >= LEADING:
+        said = f"point to {first} without ruling out {_listed(rest)}{why}"
+    elif why:
+        said = f"cannot tell {first} from {rest[0]}{why}"
+    else:
+        said = f"leave open {_listed([first, *rest])}"
+    limit = f" or leakage above {show(made.claim.leak_limit, 'Ω', 2)}"
+    leak = limit if made.claim.open and not set(LEAKS) <= set(made.claim.causes) else ""
+    return f"The readings {of} {said}; one of these{leak}, {_sure(made.claim)}."
+
+
+def _sure(claim: Claim) -> str:
+    """How sure the sentence is, and which readings alone make it so."""
+    percent = math.floor(100 * claim.share)
+    said = f"{'over 99' if percent >= 99 else percent} % sure as worded"
+    numbers = _listed([str(k + 1) for k in claim.rests_on])
+    if len(claim.rests_on) > 1:
+        return f"{said}, but each of readings {numbers} alone carries that: take them again"
+    return f"{said}, but reading {numbers} alone carries that: take it again" if numbers else said
+
+
+def _listed(words: Sequence[str]) -> str:
+    return " and ".join(filter(None, [", ".join(words[:-1]), *words[-1:]]))
 
 
 def _why(made: Finding) -> str:
@@ -204,10 +210,10 @@ def _ratio(made: Finding) -> float:
     return made.share / made.second_share if made.second_share > 0 else math.inf
 
 
-def _open(made: Finding) -> str:
-    if math.isnan(made.leak_limit):
+def _open(claim: Claim) -> str:
+    if math.isinf(claim.leak_limit):
         return f"leakage up to {show(LEAKAGE.high, 'Ω')} is excluded by these instruments"
-    return (f"leakage above {show(made.leak_limit, 'Ω', 1)} cannot be excluded by these "
+    return (f"leakage above {show(claim.leak_limit, 'Ω', 2)} cannot be excluded by these "
             "instruments")
 
 
