@@ -8,7 +8,7 @@ from unlanded.case.loading import read_case
 from unlanded.errors import Refused
 
 SITES = Path(__file__).resolve().parent.parent / "workbook" / "sites"
-NAMES = ("tern-quay", "alder-mill", "heron-house", "larkmoor")
+NAMES = ("tern-quay", "alder-mill", "heron-house", "larkmoor", "chalk-hill")
 
 # Two covered conductors, 5 mm apart; metal 2 mm and cover 4 mm across.
 PAIR = """title = "pair"

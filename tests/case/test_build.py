@@ -54,7 +54,8 @@ def test_every_demo_site_solves_at_every_limit(name: str) -> None:
     case = load_case(SITES / f"{name}.toml")
     for limit in LIMITS:
         run = build_run(case, limit)
-        assert_allclose(run.matrix, capacitance_matrix(run.section), rtol=1e-12)
+        cores = len(run.section.names)
+        assert_allclose(run.matrix[:cores, :cores], capacitance_matrix(run.section), rtol=1e-12)
         size = case.content.supply.voltage
         for point in run.points:
             assert math.isfinite(abs(run.voltage(point)))

@@ -121,7 +121,7 @@ def test_memo_refuses_what_the_case_does_not_have(desk: Desk) -> None:
 @pytest.mark.usefixtures("sites")
 def test_cases_beside() -> None:
     assert [p.name for p in cases_beside()] == [
-        "alder-mill.toml", "heron-house.toml", "larkmoor.toml", "tern-quay.toml"]
+        "alder-mill.toml", "chalk-hill.toml", "heron-house.toml", "larkmoor.toml", "tern-quay.toml"]
 
 
 @pytest.mark.usefixtures("sites")

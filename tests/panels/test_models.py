@@ -70,7 +70,8 @@ class TestRun:
         assert first == pytest.approx(0.3048e12 * model.run.matrix[0, 0], rel=1e-3, abs=0)
         assert "pF/ft" in model.text()
 
-    @pytest.mark.parametrize("name", ["tern-quay", "alder-mill", "heron-house", "larkmoor"])
+    @pytest.mark.parametrize("name", [
+        "tern-quay", "alder-mill", "heron-house", "larkmoor", "chalk-hill"])
     def test_every_step_of_the_spacing_is_a_section_that_can_be(
         self, sites: Path, name: str
     ) -> None:

@@ -20,9 +20,9 @@ from unlanded.panels.run import RunPanel
 
 FITTING = [
     *((kind, site) for kind in (RunPanel, ReadingPanel)
-      for site in ("tern-quay", "alder-mill", "heron-house", "larkmoor")),
+      for site in ("tern-quay", "alder-mill", "heron-house", "larkmoor", "chalk-hill")),
     (CausesPanel, "tern-quay"), (MarginPanel, "heron-house"), (MarginPanel, "alder-mill"),
-    (OperationPanel, "larkmoor"), (MemoPanel, "tern-quay"),
+    (OperationPanel, "larkmoor"), (OperationPanel, "chalk-hill"), (MemoPanel, "tern-quay"),
 ]
 
 
