@@ -7,7 +7,7 @@ import math
 import numpy as np
 import pytest
 
-from case_text import PAIR, changed, refusals, site
+from case_text import PAIR, changed, refusals
 from unlanded.case.loading import read_case
 from unlanded.study.spread import limits
 
@@ -54,16 +54,12 @@ def test_a_family_of_scipy_is_about_the_cases_own_value() -> None:
     ('coverage = 1.0', "50 % to below 100 %"),
     ('thickness = "10 %"', "is not a dimension that this cable gives"),
     ('gap = "10 %"', "is not a dimension that this cable gives"),
+    ('bore = "10 %"', "is not a dimension that this cable gives"),
     ('loads = {"coil" = "10 %"}', "is not a load of this case"),
 ])
 def test_spread_is_refused(line: str, message: str) -> None:
     found = refusals(PAIR + f"[spread]\n{line}\n")
     assert any(message in sentence for sentence in found), found
-
-
-def test_dimensions_do_not_vary_in_a_conduit() -> None:
-    found = refusals(site("heron-house") + '\n[spread]\nthickness = "10 %"\n')
-    assert any("cannot vary in a conduit" in sentence for sentence in found), found
 
 
 OPERATION = """[[operation]]

@@ -9,6 +9,7 @@ from case_text import PAIR, SITES, changed, refusals
 from unlanded.case.build import build_run
 from unlanded.case.loading import load_case, read_case
 from unlanded.case.uncertainty import uncertain_run
+from unlanded.errors import Refused
 from unlanded.physics.capacitance import capacitance_matrix
 from unlanded.study.spread import limits, quasi_random
 
@@ -129,3 +130,46 @@ def test_what_a_floating_screen_has_to_earth_is_not_known_unless_said() -> None:
 def test_a_spread_of_a_screen_that_does_not_float_is_refused(text: str) -> None:
     (said,) = refusals(text + '[spread]\nto_earth = "20 %"\n')
     assert "spread.to_earth: is of a screen that is earthed at no end, and there is none." in said
+
+
+def test_sizes_vary_in_a_conduit() -> None:
+    text = load_case(SITES / "heron-house.toml").text
+    spread = '\n[spread]\nthickness = "10 %"\nbore = {low = "20 mm", high = "22 mm"}\n'
+    assert names(text + spread) == ["permittivity of the covers", "thickness of the covers",
+                                    "bore of the conduit", "how the singles lie"]
+    # With the arrangement known each draw is the case itself, its sizes written in.
+    found = uncertain_run(read_case(text + spread + "arrangement = false\n"))
+    assert [i.name for i in found.inputs][-1] == "bore of the conduit"
+    assert found.section is not None
+    drawn = found.section.matrices(np.array([[4.8, 0.8e-3, 21e-3], [4.8, 0.86e-3, 20.4e-3]]))
+    written = [text, changed(text, ('bore = "21 mm"', 'bore = "20.4 mm"'), (
+        'type = "H07V"\nconductor', 'insulation = "PVC"\nthickness = "0.86 mm"\nconductor'))]
+    for matrix, case in zip(drawn, written, strict=True):
+        exact = build_run(read_case(case)).matrix
+        assert np.all(np.abs(matrix - exact) <= 6e-3 * np.sqrt(np.outer(*[np.diag(exact)] * 2)))
+
+
+def test_sizes_that_do_not_go_in_are_refused() -> None:
+    text = load_case(SITES / "heron-house.toml").text
+    found = uncertain_run(read_case(text + '\n[spread]\nbore = {low = "8 mm", high = "21 mm"}\n'))
+    with pytest.raises(Refused, match="5 singles do not go into a conduit of"):
+        found.draws(64)
+
+
+def test_the_bore_of_a_pipe_varies() -> None:
+    pipe = changed(CORD, ('kind = "plane"', 'kind = "pipe"\nbore = "40 mm"'))
+    found = uncertain_run(read_case(pipe + '[spread]\nbore = "5 %"\n'))
+    assert [i.name for i in found.inputs] == ["permittivity of the covers", "bore"]
+    assert found.section is not None
+    (matrix,) = found.section.matrices(np.array([[4.8, 39e-3]]))
+    exact = build_run(read_case(changed(pipe, ('"40 mm"', '"39 mm"')))).matrix
+    assert np.all(np.abs(matrix / exact - 1) < 6e-3)
+
+
+def test_over_a_plane_a_conduit_is_built_anew() -> None:
+    text = changed(load_case(SITES / "heron-house.toml").text, (
+        'wall = "metal"', 'wall = "plastic"'))
+    plane = '\n[run.surround]\nkind = "plane"\ngap = "2 mm"\n'
+    assert names(text + plane) == ["permittivity of the covers"]
+    assert names(text + plane + '[spread]\nbore = "5 %"\ngap = "10 %"\n') == [
+        "permittivity of the covers", "bore", "gap to the earthed surround"]

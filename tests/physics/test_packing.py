@@ -92,6 +92,30 @@ def test_the_same_seed_gives_the_same_arrangements():
     assert len(np.unique(first[:, 0])) > 30  # and within one seed they differ
 
 
+def test_an_arrangement_does_not_depend_on_which_others_there_are():
+    outer, which = np.array([1.4, 2.0, 1.4, 3.0]), np.array([9, 2, 9])
+    alone = packed_positions(outer, pipe_radius=5.5, count=40, seed=11, which=which)
+    whole = packed_positions(outer, pipe_radius=5.5, count=40, seed=11)
+    assert (alone == whole[which]).all()
+
+
+def test_each_arrangement_may_have_its_own_sizes():
+    # The same numbers fall the same way: of twice the size, twice as far from the middle.
+    outer, pipe = np.array([[1.0] * 5, [2.0] * 5, [1.1] * 5]), np.array([6.0, 12.0, 5.9])
+    z = packed_positions(outer, pipe_radius=pipe, count=9, seed=2, which=np.array([4, 4, 4]))
+    assert_allclose(z[1], 2 * z[0], rtol=1e-9)
+    assert (z[2] != z[0]).any()
+    for centres, radii, inside in zip(z[..., 0] + 1j * z[..., 1], outer, pipe, strict=True):
+        reach = radii[:, None] + radii
+        np.fill_diagonal(reach, 0.0)
+        assert (abs(centres[:, None] - centres) >= reach * (1 - 1e-8)).all()
+        assert (abs(centres) + radii <= inside * (1 + 1e-8)).all()
+        assert all(pushes(k, centres, radii, inside) for k in range(5))
+    with pytest.raises(Refused, match=r"under 10 m across; given 12 m"):
+        packed_positions(np.array([[1.0], [6.0]]), pipe_radius=np.array([5.0, 5.0]), count=1,
+                         seed=1, which=np.array([0, 0]))
+
+
 def test_packed_is_the_first_arrangement_in_the_order_of_the_names():
     cores = [Core(0.7 * MM, 1.4 * MM, 5.0), Core(1.0 * MM, 2.0 * MM, 4.0),
              Core(0.7 * MM, 1.4 * MM, 5.0)]

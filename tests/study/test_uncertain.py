@@ -15,7 +15,13 @@ from unlanded.study.ends import Driven
 from unlanded.study.run import Run
 from unlanded.study.spread import Input, quasi_random, triangular, uniform, within
 from unlanded.study.supply import Supply
-from unlanded.study.uncertain import UncertainRun, covers_spread, sections_spread
+from unlanded.study.uncertain import (
+    Conduit,
+    Thickness,
+    UncertainRun,
+    covers_spread,
+    sections_spread,
+)
 
 CORE = Core(0.8e-3, 1.6e-3, 4.8)
 CORD = Section(laid_up("abc", CORE), Plane(-0.006))
@@ -51,7 +57,7 @@ def test_packings_are_those_that_the_section_builder_makes() -> None:
     cores = [CORE] * 4
     pipe = Pipe(7e-3)
     section = Section(packed("abcd", cores, pipe_radius=7e-3, seed=1), pipe)
-    spread = covers_spread(section, {}, conduit_radius=7e-3)
+    spread = covers_spread(section, {}, conduit=Conduit(7e-3))
     matrices = spread.matrices(np.linspace(0.05, 0.95, 6)[:, None])
     assert [i.name for i in spread.inputs] == ["how the singles lie"]
     for matrix in matrices:
@@ -60,6 +66,40 @@ def test_packings_are_those_that_the_section_builder_makes() -> None:
         # All cores are alike: whatever they touch, the self-capacitances are of one size.
         assert np.diag(matrix).max() < 2.5 * np.diag(matrix).min()
     assert np.ptp(matrices[:, 0, 1]) > 0.1 * abs(matrices[:, 0, 1]).mean()
+
+
+def test_sizes_in_a_conduit_are_those_of_sections_packed_anew() -> None:
+    # Each draw against a section of its own, solved by itself: "d" keeps its cover.
+    radius, likely = 7e-3, CORE.cover_radius - CORE.radius
+    metal = Pipe(radius)
+    section = Section(packed("abcd", [CORE] * 4, pipe_radius=radius, seed=5), metal)
+    spread = covers_spread(section, {}, conduit=Conduit(
+        radius, arrangements=1, seed=5, bore=within(2 * radius, 0.1),
+        thickness=Thickness(likely, within(likely, 0.2), "abc")))
+    assert [i.name for i in spread.inputs] == ["thickness of the covers", "bore of the conduit"]
+    values = quasi_random(spread.inputs, 8)
+    for (thick, bore), matrix in zip(values, spread.matrices(values), strict=True):
+        core = Core(CORE.radius, CORE.radius + thick, CORE.cover_permittivity)
+        made = packed("abcd", [core] * 3 + [CORE], pipe_radius=bore / 2, seed=5)
+        exact = capacitance_matrix(Section(made, Pipe(bore / 2)), 1e-4)
+        assert np.all(np.abs(matrix - exact) <= 6e-3 * np.sqrt(np.outer(*[np.diag(exact)] * 2)))
+
+
+def test_at_the_likely_sizes_the_packings_are_the_same() -> None:
+    likely = CORE.cover_radius - CORE.radius
+    section = Section(packed("abcd", [CORE] * 4, pipe_radius=7e-3, seed=1), Pipe(7e-3))
+    plain = covers_spread(section, {}, conduit=Conduit(7e-3))
+    sized = covers_spread(section, {}, conduit=Conduit(
+        7e-3, bore=within(14e-3, 0.1), thickness=Thickness(likely, within(likely, 0.2), "abcd")))
+    which = np.linspace(0.05, 0.95, 6)
+    same = np.column_stack([np.full(6, likely), np.full(6, 14e-3), which])
+    np.testing.assert_allclose(sized.matrices(same), plain.matrices(which[:, None]), rtol=1e-9)
+    # What scales as a whole has the capacitances per metre of the section that it was.
+    core = Core(1.1 * CORE.radius, 1.1 * CORE.cover_radius, CORE.cover_permittivity)
+    larger = Section(packed("abcd", [core] * 4, pipe_radius=7.7e-3, seed=1), Pipe(7.7e-3))
+    scaled = covers_spread(larger, {}, conduit=Conduit(7.7e-3))
+    np.testing.assert_allclose(scaled.matrices(which[:, None]), plain.matrices(which[:, None]),
+                               rtol=1e-6)
 
 
 def test_the_same_draw_is_solved_once() -> None:

@@ -127,7 +127,13 @@ class Uncertain(Table, Generic[Q]):
         return made
 
 
-_GEOMETRY = ("thickness", "spacing", "gap")
+_GEOMETRY = ("thickness", "spacing", "bore", "gap")
+
+
+def home_of(run: Any, key: str) -> str | None:
+    """The table of `[run]` that gives a dimension: its cable, or else its surround."""
+    return next((home for home in ("cable", "surround")
+                 if getattr(getattr(run, home), key, None) is not None), None)
 
 
 class SpreadTable(Table):
@@ -144,6 +150,7 @@ class SpreadTable(Table):
     permittivity: Uncertain[Permittivity] | None = None
     thickness: Uncertain[Width] | None = None
     spacing: Uncertain[Width] | None = None
+    bore: Uncertain[Width] | None = None
     gap: Uncertain[Gap] | None = None
     to_earth: Uncertain[LinearCapacitance] | None = None
     loads: dict[Line, Tolerance] = Field(default_factory=dict)
@@ -163,13 +170,9 @@ class SpreadTable(Table):
     def mistakes(self, run: Any) -> Iterator[Mistake]:
         """What does not fit the cable and its surround."""
         for key in self.geometry:
-            home = run.surround if key == "gap" else run.cable
-            if getattr(home, key, None) is None:
+            if home_of(run, key) is None:
                 yield Mistake(f"spread.{key}", "is not a dimension that this cable gives",
                               run.cable.layout)
-            elif run.cable.layout == "in conduit":
-                yield Mistake(f"spread.{key}", "cannot vary in a conduit: the singles would lie "
-                              "otherwise for each value")
         if self.to_earth and not (run.screen and run.screen.earthed == "none"):
             yield Mistake("spread.to_earth", "is of a screen that is earthed at no end, and there "
                           "is none", "", 'it goes with earthed = "none" of [run.surround]')

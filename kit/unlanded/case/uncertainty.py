@@ -8,17 +8,20 @@ from dataclasses import replace
 import numpy as np
 from numpy.typing import NDArray
 
-from ..physics.section import Plane, Section
+from ..physics.section import Section
 from ..reference.screens import SCREEN_TO_EARTH
 from ..study.run import Run
 from ..study.spread import Distribution, Input, triangular, within
 from ..study.uncertain import (
+    Conduit,
     SectionSpread,
+    Thickness,
     UncertainRun,
     covers_spread,
     sections_spread,
 )
-from .inputs import SpreadTable
+from .cable import InConduit
+from .inputs import SpreadTable, home_of
 from .loading import Case
 from .runs import run_of
 from .schema import CaseFile, RunTable
@@ -78,14 +81,29 @@ class _Scaled:
 
 def _section(content: CaseFile, section: Section) -> SectionSpread | None:
     groups = dict(_covers(content, section))
-    cable = content.run.cable
-    if content.spread.geometry:
+    conduit = _conduit(content)
+    if content.spread.geometry and conduit is None:
         return _built(content, groups)
-    # Over a plane the singles would lie at another height for each packing.
-    radius = (cable.bore / 2 if cable.layout == "in conduit" and content.spread.arrangement
-              and not isinstance(section.surround, Plane) else None)
-    return (covers_spread(section, groups, conduit_radius=radius) if groups or radius is not None
-            else None)
+    return covers_spread(section, groups, conduit=conduit) if groups or conduit else None
+
+
+def _conduit(content: CaseFile) -> Conduit | None:
+    """What varies of a conduit that is the surround itself, or that nothing else surrounds.
+
+    Over a plane, or in a pipe, the singles would lie at another height for each packing.
+    """
+    cable, spread = content.run.cable, content.spread
+    if not isinstance(cable, InConduit) or content.run.surround is not None:
+        return None
+    if not (spread.arrangement or spread.geometry):
+        return None
+    arrangements = {} if spread.arrangement else {"arrangements": 1, "seed": cable.seed}
+    return Conduit(
+        cable.bore / 2, **arrangements,
+        bore=None if spread.bore is None else spread.bore.over(cable.bore),
+        thickness=None if spread.thickness is None else Thickness(
+            cable.cover, spread.thickness.over(cable.cover),
+            [name for name in cable.cores if name not in cable.unlike]))
 
 
 def _covers(content: CaseFile, section: Section) -> Iterator[tuple[str, Group]]:
@@ -125,17 +143,17 @@ def _built(content: CaseFile, groups: dict[str, Group]) -> SectionSpread:
     return sections_spread(inputs, section)
 
 
-_WORDS = {"thickness": "thickness of the covers", "spacing": "spacing", "gap": "gap to the earthed "
-          "surround"}
+_WORDS = {"thickness": "thickness of the covers", "spacing": "spacing", "bore": "bore",
+          "gap": "gap to the earthed surround"}
 
 
 def _value(run: RunTable, key: str) -> float:
-    return float(getattr(run.surround if key == "gap" else run.cable, key))
+    return float(getattr(getattr(run, str(home_of(run, key))), key))
 
 
 def _changed(run: RunTable, sizes: dict[str, float]) -> RunTable:
-    own = {k: float(v) for k, v in sizes.items() if k != "gap"}
-    update: dict[str, object] = {"cable": run.cable.model_copy(update=own)}
-    if "gap" in sizes and run.surround is not None:
-        update["surround"] = run.surround.model_copy(update={"gap": float(sizes["gap"])})
-    return run.model_copy(update=update)
+    tables: dict[str, dict[str, float]] = {}
+    for key, size in sizes.items():
+        tables.setdefault(str(home_of(run, key)), {})[key] = float(size)
+    return run.model_copy(update={
+        home: getattr(run, home).model_copy(update=own) for home, own in tables.items()})

@@ -113,9 +113,67 @@ def _basis(x: Real, nodes: int) -> Real:
     return out
 
 
+@dataclass(frozen=True, eq=False)
+class Thickness:
+    """Thickness of the covers of `names` [m], one for all: `likely` in the section, its spread."""
+
+    likely: float
+    distribution: Distribution
+    names: Sequence[str]
+
+
+@dataclass(frozen=True, eq=False)
+class Conduit:
+    """Singles that lie in a conduit about the origin, and what varies of it.
+
+    Parameters
+    ----------
+    radius : inside [m]
+    arrangements : how many random packings draws are taken from; of 1 alone, how they lie is known
+    seed : of the packings
+    bore : inner diameter [m]
+    thickness : of covers
+
+    What is None is known. One packing is told by its order and chances of dropping: for other sizes
+    the singles fall in the same order, and lie as they then come to rest.
+    """
+
+    radius: float
+    arrangements: int = ARRANGEMENTS
+    seed: int = 1
+    bore: Distribution | None = None
+    thickness: Thickness | None = None
+
+    @property
+    def inputs(self) -> Iterator[Input]:
+        """What varies of it, in the order of the columns that `lying` takes."""
+        if self.thickness is not None:
+            yield Input("thickness of the covers", self.thickness.distribution)
+        if self.bore is not None:
+            yield Input("bore of the conduit", self.bore)
+        if self.arrangements > 1:
+            yield Input("how the singles lie", uniform(0.0, 1.0))
+
+    def lying(self, batch: Geometry, section: Section, values: Real) -> Geometry:
+        """The batch of B times the section, for values of the inputs (B, d)."""
+        columns = iter(values.T)
+        cover, radius = batch.cover.copy(), np.full(len(values), self.radius)
+        if self.thickness is not None:
+            group = [section.index(n) for n in self.thickness.names]
+            cover[:, group] += (next(columns) - self.thickness.likely)[:, None]
+        if self.bore is not None:
+            radius = next(columns) / 2
+        share = next(columns) if self.arrangements > 1 else np.zeros(len(values))
+        which = np.minimum((share * self.arrangements).astype(int), self.arrangements - 1)
+        place = packed_positions(cover, pipe_radius=radius, count=self.arrangements,
+                                 seed=self.seed, which=which)
+        return replace(batch, centre=place[..., 0] + 1j * place[..., 1], cover=cover,
+                       pipe_radius=radius if batch.wall == "pipe" else batch.pipe_radius)
+
+
 def covers_spread(
     section: Section, permittivity: Mapping[str, tuple[Distribution, Sequence[str]]], *,
-    conduit_radius: float | None = None, seed: int = 1
+    conduit: Conduit | None = None
 ) -> SectionSpread:
     """A section whose covers' permittivity varies, and, for singles in a conduit, how they lie.
 
@@ -123,34 +181,20 @@ def covers_spread(
     ----------
     permittivity : by what a reader calls it, its distribution and the conductors that share it:
         the same material has the same permittivity in all of them
-    conduit_radius : inside, about the origin [m]; None keeps the conductors where they are
-    seed : of the random packings
+    conduit : None keeps the conductors where they are
     """
     inputs = [Input(name, distribution) for name, (distribution, _) in permittivity.items()]
     groups = [[section.index(n) for n in names] for _, names in permittivity.values()]
     base = Geometry.of([section])
-    places = None if conduit_radius is None else _packings(section, conduit_radius, seed)
-    if places is not None:
-        inputs.append(Input("how the singles lie", uniform(0.0, 1.0)))
+    lie = tuple(conduit.inputs) if conduit else ()
 
     def geometry(values: Real) -> Geometry:
-        count = len(values)
-        ratio = np.repeat(base.ratio, count, axis=0)
+        whole = base.take(np.zeros(len(values), dtype=np.intp))
         for k, group in enumerate(groups):
-            ratio[:, group] = values[:, k, None] / base.filler[0]
-        centre = np.repeat(base.centre, count, axis=0)
-        if places is not None:
-            centre = places[np.minimum((values[:, -1] * len(places)).astype(int), len(places) - 1)]
-        whole = base.take(np.zeros(count, dtype=np.intp))
-        return replace(whole, centre=centre, ratio=ratio)
+            whole.ratio[:, group] = values[:, k, None] / base.filler[0]
+        return conduit.lying(whole, section, values[:, len(groups):]) if conduit else whole
 
-    return SectionSpread(tuple(inputs), geometry, smooth=places is None)
-
-
-def _packings(section: Section, radius: float, seed: int) -> NDArray[np.complex128]:
-    outer = np.array([c.outer for c in section.conductors])
-    place = packed_positions(outer, pipe_radius=radius, count=ARRANGEMENTS, seed=seed)
-    return np.asarray(place[..., 0] + 1j * place[..., 1])
+    return SectionSpread((*inputs, *lie), geometry, smooth=conduit is None)
 
 
 def sections_spread(inputs: Sequence[Input], section: Callable[[Real], Section]) -> SectionSpread:
