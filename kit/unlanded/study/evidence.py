@@ -222,12 +222,11 @@ class _Nodes:
         blend = share[:, None]
         return np.asarray((1 - blend) * self.score[k] + blend * self.score[after])
 
-    def or_higher(self, other: _Nodes) -> _Nodes:
-        """At each size the one of two modes at which the integral is larger."""
-        better = other.height > self.height
-        both = [np.where(better.reshape(-1, *(1,) * (getattr(self, n).ndim - 1)),
-                         getattr(other, n), getattr(self, n)) for n in _OF_NODES]
-        return _Nodes(*both)
+    def higher_half(self) -> _Nodes:
+        """Of nodes whose second half has the sizes of the first again, the higher at each."""
+        one, two = np.split(np.arange(len(self.size)), 2)
+        better = np.where(self.height[two] > self.height[one], two, one)
+        return _Nodes(*(getattr(self, n)[better] for n in _OF_NODES))
 
     def with_more(self, other: _Nodes) -> _Nodes:
         both = [np.concatenate([getattr(self, n), getattr(other, n)]) for n in _OF_NODES]
@@ -237,18 +236,18 @@ class _Nodes:
 
 def _closed_in(problem: Problem) -> _Nodes:
     """Nodes that are dense where the integral is large or its mode moves."""
-    d = problem.dimensions
     if not problem.sized:
-        return _laplace(problem, np.array([0.5]), np.zeros((1, d)), 8)
+        return _laplace(problem, np.array([0.5]), 8)
     size = (np.arange(20) + 0.5) / 20
-    nodes = _laplace(problem, np.concatenate([[0.0], size, [1.0]]), np.zeros((22, d)), 5)
+    nodes = _laplace(problem, np.concatenate([[0.0], size, [1.0]]), 5)
     for _ in range(16):
         wanted = np.union1d(_coarse(nodes.size, nodes.height), _coarse(nodes.size, nodes.soft))
         if not len(wanted):
             break
         middle = (nodes.size[wanted] + nodes.size[wanted + 1]) / 2
         start = (nodes.score[wanted] + nodes.score[wanted + 1]) / 2
-        nodes = nodes.with_more(_laplace(problem, middle, start, 2))
+        more = _climbed(problem, middle, start, 2, _SOFT)
+        nodes = nodes.with_more(_described(problem, middle, more))
     return nodes
 
 
@@ -261,16 +260,21 @@ def _coarse(size: Real, height: Real) -> NDArray[np.intp]:
     return np.asarray(wanted[np.argsort(mass[wanted])[-6:]])
 
 
-def _laplace(problem: Problem, size: Real, score: Real, steps: int) -> _Nodes:
-    """Of two searches, one that forgives misfits from the start and one only in its second half,
-    what is higher at each size: a reading that is far off may be wrong, or all that is right."""
-    forgiving = _described(problem, size, _climbed(problem, size, score, steps, _SOFT))
-    strict = _climbed(problem, size, score, steps, _STRICT)
-    other = _described(problem, size, _climbed(problem, size, strict, steps, _SOFT))
-    return forgiving.or_higher(other)
+def _laplace(problem: Problem, size: Real, steps: int) -> _Nodes:
+    """Nodes at these sizes, searched from the middle of the prior.
+
+    Of two searches, one that forgives misfits from the start and one only at its end, the higher:
+    a reading that is far off may be wrong, or the unknowns may.
+    """
+    twice, start = np.tile(size, 2), np.zeros((2 * len(size), problem.dimensions))
+    forgiving = np.repeat([_SOFT, _STRICT], len(size))[:, None]
+    score = _climbed(problem, twice, start, steps, forgiving)
+    return _described(problem, twice, _climbed(problem, twice, score, 2, _SOFT)).higher_half()
 
 
-def _climbed(problem: Problem, size: Real, score: Real, steps: int, soft: float) -> Real:
+def _climbed(
+    problem: Problem, size: Real, score: Real, steps: int, soft: float | Real
+) -> Real:
     """Scores nearer to the mode (G, d)."""
     far = np.full(problem.dimensions, FARTHEST)
     far[list(problem.stretched)] = stretched(FARTHEST)
@@ -312,7 +316,7 @@ def _linear(problem: Problem, size: Real, score: Real) -> tuple[Real, Real]:
 
 
 def _normal_equations(
-    misfit: Real, slope: Real, soft: float, pull: Real, score: Real
+    misfit: Real, slope: Real, soft: float | Real, pull: Real, score: Real
 ) -> tuple[Real, Real]:
     weighted = slope / (1 + misfit**2 / soft)[..., None]
     own = pull[:, None] * np.eye(score.shape[1])
