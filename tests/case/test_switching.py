@@ -147,7 +147,7 @@ def test_an_operation_refers_to_a_load_by_name() -> None:
     ('load = "motor"', 'load = "motor"\nfrom = "black@far"',
      "operation[1].from: is given twice: load says where it is."),
     ('load = "motor"\n', 'from = "black@far"\n', "operation[1].to: is missing. (for example to"),
-    (MOTOR, 'load = {name = "motor"}', "operation[1].load: is given by its name alone: only a"),
+    (MOTOR, 'load = {name = "motor"}', "operation[1].kind: has an impedance, and the load there"),
     (EARTHED, EARTHED + f'[run.ends.far]\ngreen-yellow = {{{MOTOR}, to = "N"}}\n',
      "operation[1].load: is the name of more than one load; given motor."),
 ])  # fmt: skip
@@ -164,6 +164,14 @@ def test_a_lamp_needs_its_name_alone() -> None:
     assert built is not None
     assert built.load == Burden()
     assert abs(run_of(content).port("black@far", "blue@far").voltage) > 50
+
+
+def test_the_power_of_an_led_lamp_is_no_impedance() -> None:
+    lamp = RELAY.replace('kind = "relay"\nrated_voltage = "230 V"', 'kind = "LED lamp"')
+    watt = switched(TWO_WAY.replace('resistance = "2 kohm"', 'power = "5 W", voltage = "230 V"'))
+    for where in ('load = "motor"', 'from = "black@far"\nto = "blue@far"'):
+        (said,) = refusals(watt + lamp.replace('load = "motor"', where))
+        assert "operation[1].kind: draws nothing until its chips conduct: its power is no" in said
 
 
 def test_a_load_by_its_name_has_a_spread() -> None:

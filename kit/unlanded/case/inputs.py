@@ -176,7 +176,7 @@ class SpreadTable(Table):
         if self.to_earth and not (run.screen and run.screen.earthed == "none"):
             yield Mistake("spread.to_earth", "is of a screen that is earthed at no end, and there "
                           "is none", "", 'it goes with earthed = "none" of [run.surround]')
-        labels = [label for label, _ in run.loads]
+        labels = [load.name for load, _ in run.loads]
         for label in self.loads:
             if label not in labels:
                 yield Mistake(f'spread.loads."{label}"', "is not a load of this case", label,

@@ -48,7 +48,7 @@ from .inputs import LoadedTable, OperationTable, SizingTable, SpreadTable
 from .memo import MemoTable
 from .surround import AnySurround, ScreenRound
 from .switching import Switching
-from .terminations import Ends
+from .terminations import Ends, Load
 
 
 class SupplyTable(Table):
@@ -98,14 +98,14 @@ class RunTable(Table):
         return self
 
     @property
-    def loads(self) -> tuple[tuple[str, Pair], ...]:
-        """Every load at the ends: its name, and the pair that it is on."""
-        found = [(t.load.name, Pair(f"{core}@{end}", f"{t.to}@{end}" if t.to in self.cable.names
-                                    else str(t.to)))
+    def loads(self) -> tuple[tuple[Load, Pair], ...]:
+        """Every load at the ends, and the pair that it is on."""
+        found = [(t.load, Pair(f"{core}@{end}", f"{t.to}@{end}" if t.to in self.cable.names
+                              else str(t.to)))
                  for end, ends in (("near", self.ends.near), ("far", self.ends.far))
                  for core, t in ends.items() if t.load is not None]
         if self.switching is not None:
-            found.append((self.switching.load.name,
+            found.append((self.switching.load,
                           self.switching.made(frequency=1.0, line="").arrangement.load))
         return tuple(found)
 
@@ -247,27 +247,39 @@ class CaseFile(Table):
 
     @model_validator(mode="after")
     def _loads_are_known(self) -> Self:
-        found = [m for count, entry in enumerate(self.operation, 1) if entry.load is not None
-                 for m in self._placed(entry, f"operation[{count}].load")]
+        found = [m for count, entry in enumerate(self.operation, 1)
+                 for m in (*self._placed(entry, f"operation[{count}].load"),
+                           *self._unlike(entry, f"operation[{count}].kind"))]
         if found:
             raise Refused.all_of(found)
         return self
 
     def _placed(self, entry: OperationTable, place: str) -> Iterator[Mistake]:
-        """Gives the entry the pair of its load; what is wrong where it cannot be."""
-        name = str(entry.load)
-        pairs = [pair for label, pair in self.run.loads if label == name]
-        bare = self.run.switching is not None and self.run.switching.load.bare
-        if len(pairs) != 1:
-            labels = [label for label, _ in self.run.loads]
-            yield Mistake(place, "is the name of more than one load" if pairs else
-                          "is not a load of this run", name,
-                          nearest(name, labels) if labels and not pairs else "")
-        elif bare and entry.kind.measure == "voltage" and self.run.loads[-1][0] == name:
-            yield Mistake(place, "is given by its name alone: only a lamp is taken without an "
-                          "impedance", name, "give its power, or its impedance")
-        else:
+        """Gives the entry the pair of the load that it names; what is wrong where it cannot."""
+        if entry.load is None:
+            return
+        pairs = [pair for load, pair in self.run.loads if load.name == entry.load]
+        if len(pairs) == 1:
             entry.put_on(pairs[0])
+        elif pairs:
+            yield Mistake(place, "is the name of more than one load", entry.load)
+        else:
+            labels = [load.name for load, _ in self.run.loads]
+            yield Mistake(place, "is not a load of this run", entry.load,
+                          nearest(entry.load, labels) if labels else "")
+
+    def _unlike(self, entry: OperationTable, place: str) -> Iterator[Mistake]:
+        """What a load is described as that its kind cannot be."""
+        lamp = entry.kind.measure == "lamp current"
+        for load, pair in self.run.loads:
+            if pair != entry.watched().pair:
+                continue
+            if lamp and load.voltage is not None:
+                yield Mistake(place, "draws nothing until its chips conduct: its power is no "
+                              "impedance", entry.kind.key, "leave the power out of the load")
+            elif load.bare and not lamp:
+                yield Mistake(place, "has an impedance, and the load there has only a name",
+                              entry.kind.key, "give its power, or its impedance")
 
     @model_validator(mode="after")
     def _behind_a_device(self) -> Self:

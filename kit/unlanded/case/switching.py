@@ -21,11 +21,6 @@ class SwitchedLoad(Load):
 
     _may_be_bare: ClassVar[bool] = True
 
-    @property
-    def bare(self) -> bool:
-        """Whether nothing but its name is given."""
-        return self.model_fields_set <= {"name"}
-
 
 class Switching(Table):
     """`[run.switching]`: the arrangement of a load's contacts, which are drawn open.

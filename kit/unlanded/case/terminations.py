@@ -62,6 +62,11 @@ class Load(Table):
             raise Refused("power_factor", "must be above 0 where power is given")
         return self
 
+    @property
+    def bare(self) -> bool:
+        """Whether nothing but its name is given."""
+        return self.model_fields_set <= {"name"}
+
     def burden(self, *, frequency: float) -> Burden:
         """The load as a burden; a nameplate's power is a resistance and inductance in series."""
         if self.voltage is None:
