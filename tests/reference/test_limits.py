@@ -69,6 +69,19 @@ def test_body_impedance_falls_with_voltage_and_stays_in_order():
     assert (at.low, at.likely, at.high) == (775, 1225, 1900)
 
 
+def test_body_impedance_against_the_older_edition():
+    # IEC 479-1:1994, table 1 (seen), 5, 50 and 95 % of people. The row of 25 V has stayed; above it
+    # the later edition is lower for 5 and 50 %, which is the cautious side.
+    older = {25: (1750, 3250, 6100), 50: (1450, 2625, 4375), 75: (1250, 2200, 3500),
+             100: (1200, 1875, 3200), 125: (1125, 1625, 2875), 700: (750, 1100, 1550)}
+    first = limits.BODY_IMPEDANCE[25.0]
+    assert (first.low, first.likely, first.high) == older.pop(25)
+    for voltage, (low, likely, _) in older.items():
+        value = limits.BODY_IMPEDANCE[float(voltage)]
+        assert 0.7 * low < value.low < low
+        assert 0.7 * likely < value.likely < likely
+
+
 @pytest.mark.parametrize(
     ("rated", "permanent", "milliamperes"),
     # IEC 61140 (seen), each side of every corner.

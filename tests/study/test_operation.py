@@ -47,7 +47,7 @@ def watched(off: float, on: float, kind: str = "contactor", rated: float = 240.0
                                              (1.0, 1175.6)])
 def test_longest_run_of_a_coil(cos: float, metres: float) -> None:
     # Xc = Z [sin φ + √(1/m² − cos² φ)], m 0.25, 4.5 VA at 110 V; cos φ = 0 is the trade's formula,
-    # published as 910 m.
+    # published as 910 m, worked with π = 3.142.
     z = 110**2 / 4.5
     x = z * (math.sqrt(1 - cos**2) + math.sqrt(1 / 0.25**2 - cos**2))
     assert round(1 / (2 * math.pi * 50 * C * x), 1) == metres
@@ -59,7 +59,7 @@ def test_longest_run_of_a_coil(cos: float, metres: float) -> None:
         formula = longest_control_cable(hold_power=4.5, drop_out=0.25, voltage=110, frequency=50,
                                         capacitance=C)
         assert longest == pytest.approx(formula, rel=1e-3, abs=0)
-        assert abs(longest - 910) <= 1.0
+        assert abs(longest * math.pi / 3.142 - 910) <= 0.5
 
 
 def test_at_240_volts_the_run_is_short() -> None:

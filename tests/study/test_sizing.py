@@ -148,6 +148,18 @@ def test_published_advice_on_the_conveyor() -> None:
         assert abs(value - printed) <= 0.05
 
 
+def test_dummy_resistor_of_a_controllers_manual() -> None:
+    # A published case (a programmable controller's manual, outputs that leak): 3 mA into a load of
+    # 6 kΩ at 100 V that lets go at 1.5 mA. Printed: under 6 kΩ, 1.7 W, a 5 W resistor.
+    load = np.array([6e3 + 0j])
+    leaking = Ports(3e-3 * load, load, np.ones(1, dtype=complex))
+    found = bleeder(by_resistance(leaking), 1.5e-3 * 6e3, live_voltage=100.0)
+    assert found is not None
+    assert found.largest == pytest.approx(6e3, rel=1e-6, abs=0)
+    assert abs(100**2 / found.largest - 1.7) <= 0.05
+    assert found.power_rating == 5.0
+
+
 def test_bleeder_that_does_not_exist_or_is_not_needed() -> None:
     stiff = Ports(np.array([230 + 0j]), np.array([0.01 + 0j]), np.ones(1, dtype=complex))
     assert bleeder(by_resistance(stiff), 10.0, live_voltage=230.0) is None

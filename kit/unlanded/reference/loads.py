@@ -55,7 +55,8 @@ class Threshold:
 _HOLDS = ("will drop out", "may stay operated", "stays operated")
 _INPUT = ("will go off", "may stay on", "stays on")
 _LAMP = ("stays dark", "may glow", "glows")
-_CONTACTOR = Source("IEC 60947-4-1", "from memory", "drop-out between 20 and 75 % of rated, AC")
+_CONTACTOR = Source("IEC 60947-4-1", "from memory",
+                    "8.2.1.2, drop-out between 20 and 75 % of rated, AC", 2018)
 _PICK_UP = Source("IEC 60947-4-1 and IEC 60947-5-1", "seen", "operation from 85 % of rated")
 _RELAY = Source("IEC 61810-1", "from memory", "release not below 15 % of rated, AC")
 _INPUTS = Source("IEC 61131-2", "from memory", "operating ranges of AC inputs", 2017)
