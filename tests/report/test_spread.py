@@ -1,5 +1,7 @@
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from unlanded.report.investigation import Investigation
 from unlanded.report.memo import Paragraph
 from unlanded.report.spread import main_row, spread_finding, spread_part, spread_results
@@ -28,6 +30,19 @@ def test_inputs_stand_with_their_limits(moor: Investigation) -> None:
     assert rows["length of the run"] == ("380 m", "420 m")
     assert rows["supply voltage"] == ("218 V", "244 V")
     assert rows["impedance of input card"] == ("−10 %", "+10 %")
+
+
+def test_what_a_floating_screen_has_to_earth_is_in_farads_a_metre(
+    screened: Callable[[str], Investigation]
+) -> None:
+    part = spread_part(screened("none"))
+    assert part is not None
+    table = next(b for b in part.blocks if isinstance(b, Table))
+    rows = {row[0]: row[1:] for row in table.rows}
+    low, high = rows["capacitance of the screen to earth"]
+    assert low.startswith("10")
+    assert low.endswith(" pF/m")
+    assert high == "200 pF/m"
 
 
 def test_singles_at_random_have_no_limits_to_print(house: Investigation) -> None:

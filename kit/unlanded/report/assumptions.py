@@ -61,7 +61,7 @@ def _screen(investigation: Investigation) -> Iterator[str]:
            "spread evenly round it.")
     if written.earthed == "none":
         given = "to_earth" in written.model_fields_set
-        yield (f"The outside of the screen has {show(run.screen.to_earth, 'F')}/m to earth"
+        yield (f"The outside of the screen has {show(run.screen.to_earth, 'F/m')} to earth"
                f"{'' if given else ', which depends on what the cable lies on: a judgement'}. "
                "The screen touches no earthed metal on its way.")
     elif written.earthed != "both":

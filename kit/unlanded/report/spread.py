@@ -129,6 +129,8 @@ def _unit(name: str, volts: float) -> tuple[str, float]:
     """Unit in which an input is shown, and what a value of 1 is in it."""
     if name.startswith("permittivity"):
         return "", 1.0
+    if name.startswith("capacitance"):
+        return "F/m", 1.0
     if name == "supply voltage":
         return "V", volts
     return ("%", 1.0) if name.startswith("impedance") else ("m", 1.0)
