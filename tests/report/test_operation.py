@@ -139,3 +139,15 @@ def test_the_circuit_says_how_the_load_is_switched(
     assert text.endswith(
         "The landing lamp is switched in the arrangement two-way (travellers brown and black, "
         "neutral blue), drawn with its contacts open, and brown live.")
+
+
+def test_a_load_that_stays_live_is_no_advice(landing: Callable[[str], Investigation]) -> None:
+    # With no core earthed the switched one follows the live one: little is left for a coil between.
+    found = landing(RELAY.replace("20 kohm", "300 kohm").replace(
+        '[run.ends.near]\ngreen-yellow = "earth"\n', ""))
+    others = {c.switched.word: c for c in comparisons(found, operations(found)[0])}
+    assert others["two-way"].found.margin < 0 < others["switched neutral"].found.margin
+    (finding,) = operation_finding(found)
+    assert isinstance(finding, Paragraph)
+    assert "switched neutral" not in finding.text
+    assert "other arrangements of the same cable, contact at supply would." in finding.text

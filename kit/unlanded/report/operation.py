@@ -70,7 +70,9 @@ def operation_finding(investigation: Investigation) -> list[Block]:
         if found.margin < 0 and cure and cure.bleeder:
             said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
                         f"{show(cure.watts, 'W')} while on, would let go of it.")
-        off = [c.words for c in comparisons(investigation, found) if c.found.margin >= 0]
+        # Not the neutral's: a load that stays live is no advice.
+        off = [c.words for c in comparisons(investigation, found)
+               if c.found.high <= w.limits[0] and c.switched.word != "switched neutral"]
         if found.margin < 0 and off:
             said.append(f"Of other arrangements of the same cable, {listed(off, 'or')} would.")
     return [Paragraph(" ".join(said))] if said else []
