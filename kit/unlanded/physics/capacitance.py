@@ -22,7 +22,7 @@ TOLERANCE = 5e-4
 # An element below this share of its conductors' self-capacitances (under 1 fF/m in any cable) is
 # held to the absolute error of an element of that size.
 FLOOR = 1e-6
-MOST_MULTIPOLES = 400  # of one conductor
+MOST_MULTIPOLES = 500  # of one conductor: from 512 the binomials leave the range of a float
 _CHUNK = 500_000  # matrix elements assembled at a time, to stay in the processor's cache
 # Cut at these shares of its orders the series lacks so much, and in full it lacks about such a
 # part of that at most: fitted to three thousand trials on random sections, in which the largest
