@@ -25,7 +25,7 @@ from pathlib import Path
 import numpy as np
 
 from unlanded.case.build import case_instruments
-from unlanded.case.loading import load_case
+from unlanded.case.loading import load_case, read_case
 from unlanded.case.uncertainty import uncertain_run
 from unlanded.physics.capacitance import multipole_numbers
 from unlanded.study.banded import spread_sheet
@@ -52,9 +52,12 @@ def timed(work: Callable[[], object]) -> tuple[float, float]:
     return time.perf_counter() - start[0], time.process_time() - start[1]
 
 
-def conduit() -> UncertainRun:
-    """Arrangement, permittivity and length of the conduit vary."""
-    plain = uncertain_run(load_case(SITES / "heron-house.toml"))
+SIZES = '\n[spread]\nthickness = "10 %"\nbore = "5 %"\n'
+
+
+def conduit(more: str = "") -> UncertainRun:
+    """Arrangement, permittivity and length of the conduit vary, and what `more` says."""
+    plain = uncertain_run(read_case((SITES / "heron-house.toml").read_text("utf-8") + more))
     return UncertainRun(plain.run, plain.section, within(plain.run.length, 0.1))
 
 
@@ -115,6 +118,9 @@ def main(draws: int = 10_240) -> None:
     print(f"{made:,} draws, five singles in a conduit, {len(sheet.rows)} readings: "
           f"{ours[0]:.2f} s (processor {ours[1]:.2f} s); bare LAPACK {peer[0]:.2f} s "
           f"({peer[1]:.2f} s); ratio {ours[0] / peer[0]:.2f} ({ours[1] / peer[1]:.2f})")
+    sized = conduit(SIZES)
+    longer = timed(lambda: spread_sheet(sheet, sized, stable=1e-9, batch=BATCH, most=draws))
+    print(f"with covers and bore varying too: {longer[0]:.2f} s (processor {longer[1]:.2f} s)")
     for name in ("tern-quay", "alder-mill", "larkmoor", "heron-house"):
         case = load_case(SITES / f"{name}.toml")
         run = uncertain_run(case)

@@ -115,7 +115,7 @@ def _basis(x: Real, nodes: int) -> Real:
 
 @dataclass(frozen=True, eq=False)
 class Thickness:
-    """Thickness of the covers of `names` [m], one for all: `likely` in the section, its spread."""
+    """Thickness of the covers of `names` [m], one for all; in the section it is `likely`."""
 
     likely: float
     distribution: Distribution
