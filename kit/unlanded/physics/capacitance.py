@@ -163,11 +163,11 @@ def multipole_numbers(geometry: Geometry, tolerance: float) -> Index:
     need[:, own, own] = 0.0
     most = need.max(axis=2)
     if geometry.wall != "none":
-        wall, air = 0.0, geometry.centre.imag - b
+        air = geometry.centre.imag - b
         if geometry.wall == "pipe":
             radius = geometry.pipe_radius[:, None]
-            wall, air = -1 / radius, radius - np.abs(geometry.centre) - b
-        most = np.maximum(most, _orders(a, b, bend + wall, air, slack, 1.5 * ratio))
+            bend, air = bend - 1 / radius, radius - np.abs(geometry.centre) - b
+        most = np.maximum(most, _orders(a, b, bend, air, slack, 1.5 * ratio))
     # Error falls by e² per a/c orders: 3.15 a/c orders are 5e-4.
     scale = math.log(tolerance) / math.log(TOLERANCE)
     # The more conductors and the farther they stand apart, the better the farthest are screened

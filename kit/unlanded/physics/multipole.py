@@ -164,7 +164,7 @@ def assemble(
         diagonal[:, :stop] += 1.0
         _factorise(matrix)
     else:
-        diagonal[:, :stop] += np.repeat(np.where(listed.of(weak), -1.0, 1.0), 2, axis=-1)
+        diagonal[:, :stop] += np.repeat(listed.of(np.where(weak, -1.0, 1.0)), 2, axis=-1)
     return System(matrix, coarse, n, definite, listed)
 
 
