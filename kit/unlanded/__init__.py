@@ -46,6 +46,7 @@ _CONTENTS = {
     "Joined": "study.ends",
     "Through": "study.ends",
     "Run": "study.run",
+    "Screen": "study.run",
     "Pair": "study.readings",
     "reading_sheet": "study.readings",
     # residual-current devices and their margin
