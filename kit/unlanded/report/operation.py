@@ -158,7 +158,11 @@ def _level(o: Operation) -> str:
 
 def _lengths_off(o: Operation, customary: bool) -> str:
     def length(met: Met) -> str:
-        return met.words(lambda x: show_length(x, customary=customary))
+        def shown(x: float) -> str:
+            return show_length(x, customary=customary)
+        if met.nowhere:
+            return f"none from {shown(met.low)}"
+        return f"all to {shown(met.high)}" if met.everywhere else met.words(shown)
     return f"{length(o.longest)}\n({length(o.longest_covered)})"
 
 
