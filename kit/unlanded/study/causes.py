@@ -17,9 +17,10 @@ import numpy as np
 
 from ..errors import Refused
 from .coupling import STRETCHED, Real
-from .evidence import Draws, Integral, Problem
+from .evidence import Draws, Integral
 from .hypotheses import CAUSES, Cause, prior_shares, variants
 from .likelihood import Likelihood, likelihood
+from .modes import Problem
 from .observation import Observation
 from .reduced import Reduced
 from .scene import MANY, Group, Scene, groups, suspects_in

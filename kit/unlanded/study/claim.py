@@ -17,7 +17,7 @@ from .coupling import Real
 from .hypotheses import LEAKAGE, Cause
 
 SURE = 0.95  # chance from which a claim is made; the causes that it names are as few as that takes
-RESTS = 0.5  # chance of it without one reading, below which it rests on that reading
+RESTS = 0.7  # chance of it without one reading, below which it rests on that reading
 NOT_EXCLUDED = 10.0  # to 1: odds below which the readings do not exclude a size
 LEAKS: tuple[Cause, Cause] = ("leakage to a live neighbour", "leakage to earth")
 _BINS = 32
