@@ -20,7 +20,7 @@ from unlanded.panels.margin_model import MarginModel
 from unlanded.panels.memo_model import MemoModel
 from unlanded.panels.operation_model import OperationModel
 from unlanded.panels.readings_model import ReadingModel
-from unlanded.panels.run_model import NOTHING, PIPE, SCREEN, SURFACE, RunModel
+from unlanded.panels.run_model import EARTHED, NOTHING, PIPE, SCREEN, SURFACE, RunModel
 from unlanded.physics.burden import Burden
 from unlanded.report.investigation import investigate
 from unlanded.study.readings import Pair
@@ -99,6 +99,34 @@ class TestRun:
             model.read_case()
             assert model.surround == choice
             assert (model.run.section.surround is None) == (choice == NOTHING)
+
+    def test_screen_is_earthed_where_it_is_chosen(self, sites: Path) -> None:
+        site = sites / "chalk-hill.toml"
+        site.write_text(site.read_text(encoding="utf-8").partition("[[readings]]")[0],
+                        encoding="utf-8")
+        model = RunModel(Desk(site))
+        assert model.earthed == "no end"
+        assert abs(model.run.voltage("screen@far")) > 10.0
+        for choice, key in EARTHED.items():
+            model.set_earthed(choice)
+            model.read_case()
+            assert model.earthed == choice
+            assert f'earthed = "{key}"' in model.desk.case.text
+        model.set_earthed("both ends")
+        model.read_case()
+        assert model.run.node("screen@far") == model.run.node("earth")
+
+    def test_screen_that_has_a_reading_is_not_earthed(self, sites: Path) -> None:
+        model = RunModel(Desk(sites / "chalk-hill.toml"))
+        with pytest.raises(Refused, match="readings"):
+            model.set_earthed("the near end")
+        assert model.earthed == "no end"
+
+    def test_a_cable_without_a_screen_has_none_to_earth(self, quay: Desk) -> None:
+        model = RunModel(quay)
+        assert model.earthed is None
+        with pytest.raises(Refused):
+            model.set_earthed("no end")
 
     def test_answer_where_every_conductor_is_held(self, quay: Desk) -> None:
         model = RunModel(quay)
@@ -289,6 +317,19 @@ class TestOperation:
             model.set_resistor("100 ohm")
         ((_, entry),) = model.offers()
         assert pump.add_to_memo(entry)
+
+    def test_other_arrangements_where_the_case_names_its_own(self, sites: Path, pump: Desk) -> None:
+        model = OperationModel(Desk(sites / "chalk-hill.toml"))
+        assert model.others() is None
+        model.judge()
+        table = model.others()
+        assert table is not None
+        states = {row[0].split("\n")[0]: row[2] for row in table.rows}
+        assert states["two-way, 1 live (as it is)"] == "may glow"
+        assert states["contact at supply"] == "stays dark"
+        plain = OperationModel(pump)
+        plain.judge()
+        assert plain.others() is None
 
     def test_case_that_watches_no_load(self, quay: Desk) -> None:
         with pytest.raises(Refused, match="watches no load"):

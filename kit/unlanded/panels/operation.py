@@ -30,7 +30,7 @@ class OperationPanel(Panel):
         self.run_length = QuantityBox(LENGTH, model.run.length, model.set_length,
                                       customary=self.desk.customary)
         self.resistor = QuantityBox(RESISTOR, model.resistor, model.set_resistor)
-        self.answer, self.states, self.cures = w.HTML(), w.HTML(), w.HTML()
+        self.answer, self.states, self.cures, self.others = (w.HTML() for _ in range(4))
         model.judge()
         self.along, self.beside = LiveFigure(model.along()), LiveFigure(model.beside())
         self.work = Work(lambda _: None)
@@ -39,7 +39,8 @@ class OperationPanel(Panel):
         model.observe(lambda _: self.guarded(self._draw_beside), "resistor")
         self._draw_judged(None)
         return [self.load, w.HBox([self.run_length, self.resistor], layout={"flex_flow": "wrap"}),
-                self.answer, side_by_side(self.along, self.beside), self.states, self.cures]
+                self.answer, side_by_side(self.along, self.beside), self.states, self.cures,
+                self.others]
 
     def renew(self) -> None:
         """Show the case as it is now."""
@@ -81,6 +82,8 @@ class OperationPanel(Panel):
         self.answer.value = said(model.answer())
         for table, made in ((self.states, model.states()), (self.cures, model.cures())):
             table.value = table_html(made) if made else said("Working out …")
+        others = model.others()
+        self.others.value = table_html(others) if others else ""
         self._draw_beside()
 
     def _draw_beside(self) -> None:

@@ -13,9 +13,17 @@ from ..case.uncertainty import uncertain_run
 from ..errors import Refused
 from ..report.beside import RESISTANCES, Real, band_beside, beside_figure
 from ..report.figure import Figure
-from ..report.operation import cures_table, length_of_load, level_band, states_table
+from ..report.operation import (
+    comparison_table,
+    cures_table,
+    length_of_load,
+    level_band,
+    rearranged_load,
+    states_table,
+)
 from ..report.tables import Table
 from ..study.batch import RunBatch
+from ..study.comparison import Compared
 from ..study.operation import Operation, Watched, by_current, level_on, operation
 from ..study.run import Run
 from ..study.uncertain import UncertainRun
@@ -30,10 +38,14 @@ BLEEDER = 22e3  # ohm: the handle begins here where no resistor is suggested
 
 @dataclass(frozen=True, eq=False)
 class Judged:
-    """A load judged over all that is not known: its state and cures, and the curves' bands."""
+    """A load judged over all that is not known: its state and cures, and the curves' bands.
+
+    `others` is the load in other arrangements of its contacts, where the case names its own.
+    """
 
     of: object
     found: Operation
+    others: tuple[Compared, ...]
     length: tuple[Real, Real]
     beside: tuple[Real, Real]
 
@@ -110,7 +122,8 @@ class OperationModel(traitlets.HasTraits):
         key = (self.uncertain, self.load)
         if self._judged is None or self._judged.of != key:
             watched, uncertain = self.watched, self.uncertain
-            self._judged = Judged(key, operation(uncertain, watched),
+            found = operation(uncertain, watched)
+            self._judged = Judged(key, found, rearranged_load(self.desk.case, uncertain, found),
                                   level_band(uncertain, watched), band_beside(uncertain, watched))
         return self._judged
 
@@ -140,6 +153,12 @@ class OperationModel(traitlets.HasTraits):
     def cures(self) -> Table | None:
         """What would let go of the load; None where that is still to be worked out."""
         return cures_table(self.judged.found, 1) if self.judged else None
+
+    def others(self) -> Table | None:
+        """The load in other arrangements; None where there are none, or still to be worked out."""
+        if not (self.judged and self.judged.others):
+            return None
+        return comparison_table(self.judged.others, 1, customary=self.desk.customary)
 
     def answer(self) -> str:
         """The load in one sentence."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 import ipywidgets as w
@@ -13,7 +13,9 @@ from .look import said, table_html
 from .panel import Panel
 from .quantity import Quantity
 from .quantity_box import QuantityBox
-from .run_model import LENGTH, NOTHING, PIPE, SCREEN, SURFACE, RunModel, Spacing
+from .run_model import EARTHED, LENGTH, NOTHING, PIPE, SCREEN, SURFACE, RunModel, Spacing
+
+_WIDE = {"style": {"description_width": "10.5em"}, "layout": {"width": "35.4em"}}
 
 
 class RunPanel(Panel):
@@ -26,18 +28,18 @@ class RunPanel(Panel):
         self.run_length = QuantityBox(LENGTH, model.run.length, model.set_length,
                                       customary=customary)
         self.surround = w.Dropdown(description="Earthed surround",
-                                   options=[NOTHING, SURFACE, PIPE, SCREEN],
-                                   style={"description_width": "10.5em"},
-                                   layout={"width": "35.4em"})
+                                   options=[NOTHING, SURFACE, PIPE, SCREEN], **_WIDE)
+        self.earthed = w.Dropdown(description="Screen earthed at", options=list(EARTHED), **_WIDE)
         self.spacing = QuantityBox(Quantity("Spacing", "m", 1e-3, 1.0), 0.01, model.set_spacing,
                                    customary=customary)
         self._fit()
         self.answer, self.matrix, self.near = w.HTML(), w.HTML(), w.HTML()
         self.section = LiveFigure(model.section(), height=400)
         model.observe(lambda _: self.guarded(self._draw), "run")
-        self.surround.observe(self._chosen, "value")
+        self.surround.observe(self._choosing(model.set_surround), "value")
+        self.earthed.observe(self._choosing(model.set_earthed), "value")
         self._draw()
-        controls = w.HBox([self.run_length, w.VBox([self.surround, self.spacing])],
+        controls = w.HBox([self.run_length, w.VBox([self.surround, self.earthed, self.spacing])],
                           layout={"flex_flow": "wrap"})
         return [controls, self.answer, w.HBox([self.section.view, self.matrix],
                                               layout={"flex_flow": "wrap"}), self.near]
@@ -68,20 +70,24 @@ class RunPanel(Panel):
 
     def _fit(self) -> None:
         """Show the controls that this case has, with ranges of its own size."""
-        surround, spacing = self.model.surround, self.model.spacing
+        spacing = self.model.spacing
         self._quiet = True
-        self.surround.layout.display = "none" if surround is None else ""
-        if surround is not None:
-            self.surround.value = surround
+        for box, choice in ((self.surround, self.model.surround),
+                            (self.earthed, self.model.earthed)):
+            box.layout.display = "none" if choice is None else ""
+            if choice is not None:
+                box.value = choice
         self._quiet = False
         self.spacing.layout.display = "none" if spacing is None else ""
         if isinstance(spacing, Spacing):
             self.spacing.fit(spacing.quantity, spacing.value, customary=self.desk.customary)
 
-    def _chosen(self, change: dict[str, str]) -> None:
-        if not self._quiet:
-            self.guarded(lambda: self.model.set_surround(change["new"]))
-            self._fit()
+    def _choosing(self, accept: Callable[[str], None]) -> Callable[[dict[str, str]], None]:
+        def chosen(change: dict[str, str]) -> None:
+            if not self._quiet:
+                self.guarded(lambda: accept(change["new"]))
+                self._fit()
+        return chosen
 
     def _draw(self) -> None:
         self.section.update(self.model.section())

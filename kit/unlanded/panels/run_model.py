@@ -23,6 +23,7 @@ LENGTH = Quantity("Run length", "m", 1.0, 1000.0)
 DETAIL = 60  # points across the live field: fewer than on paper, for a sixth of the time
 NOTHING, SURFACE, PIPE, SCREEN = "nothing within reach", "a surface below", "a pipe", "a screen"
 _SURROUNDS = {"plane": SURFACE, "pipe": PIPE, "screen": SCREEN}
+EARTHED = {"both ends": "both", "the near end": "near", "the far end": "far", "no end": "none"}
 
 
 @dataclass(frozen=True)
@@ -84,6 +85,14 @@ class RunModel(traitlets.HasTraits):
             return None
         return _SURROUNDS[content.surround.kind] if content.surround else NOTHING
 
+    @property
+    def earthed(self) -> str | None:
+        """Where the cable's screen is earthed, as a choice; None where it has none."""
+        surround = self.desk.case.content.run.surround
+        if surround is None or surround.kind != "screen":
+            return None
+        return next(choice for choice, key in EARTHED.items() if key == surround.earthed)
+
     def set_length(self, text: str) -> None:
         """Change the run's length in the case; refused as the case file would be."""
         self.desk.change({"run.length": text})
@@ -104,6 +113,10 @@ class RunModel(traitlets.HasTraits):
             SCREEN: {"kind": "screen", "gap": self._written(0.1 * across)},
         }
         self.desk.change({"run.surround": tables[choice]})
+
+    def set_earthed(self, choice: str) -> None:
+        """Earth the cable's screen elsewhere in the case; refused as the case file would be."""
+        self.desk.change({"run.surround.earthed": EARTHED[choice]})
 
     def section(self, *, detail: int = DETAIL) -> Figure:
         """The section to scale with the unloaded potential at the far end."""

@@ -10,6 +10,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from ..case.loading import Case
 from ..case.runs import switched_of
 from ..reference.records import Source
 from ..study.comparison import NOTES, Compared, compare
@@ -50,11 +51,16 @@ def operations(investigation: Investigation) -> tuple[Operation, ...]:
 @lru_cache(maxsize=8)
 def comparisons(investigation: Investigation, found: Operation) -> tuple[Compared, ...]:
     """The load in other arrangements of its contacts; nothing where the case names none for it."""
-    built = switched_of(investigation.case.content.run, investigation.run.supply)
+    return rearranged_load(investigation.case, investigation.uncertain, found)
+
+
+def rearranged_load(case: Case, uncertain: UncertainRun, found: Operation) -> tuple[Compared, ...]:
+    """As `comparisons`, for a run that has been changed since it was investigated."""
+    built = switched_of(case.content.run, uncertain.run.supply)
     if built is None or built.arrangement.load != found.watched.pair:
         return ()
-    entry = next(e for e in investigation.case.content.operation if e.name == found.watched.name)
-    return compare(investigation.uncertain, entry.watched(), built)
+    entry = next(e for e in case.content.operation if e.name == found.watched.name)
+    return compare(uncertain, entry.watched(), built)
 
 
 def operation_finding(investigation: Investigation) -> list[Block]:
