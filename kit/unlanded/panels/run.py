@@ -27,7 +27,7 @@ class RunPanel(Panel):
         model, customary = self.model, self.desk.customary
         self.run_length = QuantityBox(LENGTH, model.run.length, model.set_length,
                                       customary=customary)
-        self.surround = w.Dropdown(description="Earthed surround",
+        self.surround = w.Dropdown(description="Surround",
                                    options=[NOTHING, SURFACE, PIPE, SCREEN], **_WIDE)
         self.earthed = w.Dropdown(description="Screen earthed at", options=list(EARTHED), **_WIDE)
         self.spacing = QuantityBox(Quantity("Spacing", "m", 1e-3, 1.0), 0.01, model.set_spacing,
