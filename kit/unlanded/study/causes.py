@@ -266,7 +266,7 @@ class _Search:
             if math.hypot(*(part for part, _ in parts)) <= stable:
                 return
             most = max(part for part, _ in parts)
-            loose = [integral for part, integral in parts if part > most / 3]
+            loose = [integral for part, integral in parts if part > most / 2]
             for integral in loose:
                 integral.double()
                 progress(1 - 0.75**done)
