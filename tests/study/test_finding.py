@@ -126,6 +126,14 @@ def test_lengths_are_in_feet_where_asked() -> None:
     assert " ft of this run" in danger(found, one, customary=True)
 
 
+def test_a_claim_without_leakages_says_none() -> None:
+    shares = dict.fromkeys(("leakage to a live neighbour", "leakage to earth"), 0.0)
+    found = explain(reduced(), [seen("two-pole", "not lit")], shares=shares)
+    text = headline(found, finding(found, "spare"))
+    assert "one of these, " in text
+    assert "leakage" not in text
+
+
 def test_findings_are_of_every_suspect() -> None:
     found, _ = made()
     assert [f.suspect for f in findings(found)] == ["spare"]

@@ -49,5 +49,5 @@ def test_nodes_close_in_on_the_sizes_that_matter() -> None:
     nodes = closed_in(Problem(lambda u, _: u[None], Normal(np.array([0.387]), 1e-3), 1, True))
     assert (np.diff(nodes.size) > 0).all()
     best = nodes.size[np.argmax(nodes.height)]
-    assert best == pytest.approx(0.387, rel=1e-3, abs=0)
+    assert abs(best - 0.387) < 1e-3  # one standard deviation
     assert np.diff(nodes.size).min() < 1e-3

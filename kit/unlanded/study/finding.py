@@ -169,9 +169,14 @@ def _several(found: Explanation, made: Finding, of: str) -> str:
         said = f"cannot tell {first} from {rest[0]}{why}"
     else:
         said = f"leave open {_listed([first, *rest])}"
-    limit = f" or leakage above {show(made.claim.leak_limit, 'Ω', 2)}"
-    leak = limit if made.claim.open and not set(LEAKS) <= set(made.claim.causes) else ""
-    return f"The readings {of} {said}; one of these{leak}, {_sure(made.claim)}."
+    return f"The readings {of} {said}; one of these{_or_leakage(made.claim)}, {_sure(made.claim)}."
+
+
+def _or_leakage(claim: Claim) -> str:
+    """What goes with capacitive coupling and is not among the causes."""
+    if not claim.open or set(LEAKS) <= set(claim.causes):
+        return ""
+    return f" or leakage above {show(claim.leak_limit, 'Ω', 2)}"
 
 
 def _sure(claim: Claim) -> str:
