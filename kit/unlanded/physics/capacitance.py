@@ -15,7 +15,7 @@ import numpy as np
 
 from ..errors import Refused
 from .constants import EPSILON_0
-from .multipole import Geometry, Index, Real, System, assemble
+from .multipole import Geometry, Index, Real, System, assemble, diagonal
 from .section import Section
 
 TOLERANCE = 5e-4
@@ -29,6 +29,7 @@ _CHUNK = 500_000  # matrix elements assembled at a time, to stay in the processo
 # error accepted at 0.05 % was 0.042 %.
 _CUTS = {0.75: 0.65, 0.9: 1.6}
 _ROUNDS = 8
+_CONTACT = 1e-12  # of a radius: closer is counted as that close
 
 
 @dataclass(frozen=True)
@@ -159,8 +160,7 @@ def multipole_numbers(geometry: Geometry, tolerance: float) -> Index:
     stiff = np.maximum(cusp[one], cusp[other]) * np.maximum(ratio[one], ratio[other])
     need = _orders(a[one], b[one], bend[one] + bend[other], apart - touching,
                    slack[one] + slack[other], stiff)
-    own = np.arange(a.shape[1])
-    need[:, own, own] = 0.0
+    diagonal(need)[...] = 0.0
     most = need.max(axis=2)
     if geometry.wall != "none":
         air = geometry.centre.imag - b
@@ -174,15 +174,14 @@ def multipole_numbers(geometry: Geometry, tolerance: float) -> Index:
     # from each other: the smaller the smallest element, the more orders to the same share of it.
     far = np.maximum((apart / touching).max(axis=(1, 2)), 1.0)
     screened = 0.75 * (far - 1) if geometry.wall == "none" else 1.5 * (far - 1) ** 1.5
-    crowd = np.minimum(0.9 + screened, min(0.5 * len(own) - 0.1, 2.75))
+    crowd = np.minimum(0.9 + screened, min(0.5 * a.shape[1] - 0.1, 2.75))
     return np.asarray(np.ceil(4 + most * scale * crowd[:, None]), dtype=np.intp)
 
 
 def _orders(a: Real, b: Real, bend: Real, air: Real, slack: Real, cusp: Real) -> Real:
     """With the bends 1/a of both metals added up, and `slack` that of the covers' gap."""
-    air = np.maximum(air, 0.0)
-    with np.errstate(divide="ignore"):
-        tight = 3.15 * a * np.sqrt(0.5 * bend / (air + slack))
+    air = np.maximum(air, _CONTACT * b)
+    tight = 3.15 * a * np.sqrt(0.5 * bend / (air + slack))
     return np.asarray(tight + cusp / (1 + 4 * cusp * air / b))
 
 
@@ -192,11 +191,12 @@ def _listed(terms: Index) -> tuple[Index, Index, tuple[int, ...]]:
     They are listed by the share order / terms, so that a cut is a number of them.
     """
     conductor = np.repeat(np.arange(len(terms)), terms)
-    order = np.concatenate([np.arange(1, m + 1) for m in terms])
+    before = np.cumsum(terms) - terms
+    order = np.arange(1, len(conductor) + 1) - before[conductor]
     share = order / terms[conductor]
-    rank = np.lexsort((conductor, order, share))
-    cuts = np.searchsorted(share[rank], list(_CUTS), side="right")
-    return conductor[rank], order[rank], tuple(int(k) for k in cuts)
+    rank = share.argsort(kind="stable")
+    cuts = share[rank].searchsorted(list(_CUTS), side="right")
+    return conductor[rank], order[rank], tuple(cuts.tolist())
 
 
 def _grounded(inverse: Real, geometry: Geometry) -> Real:

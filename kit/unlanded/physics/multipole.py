@@ -88,6 +88,11 @@ class Geometry:
                         self.ratio[which], self.filler[which], self.wall, self.pipe_radius[which])
 
 
+def diagonal(matrices: NDArray[Any]) -> NDArray[Any]:
+    """The diagonals (B, n) of matrices (B, n, n) that lie whole in memory, to be written to."""
+    return matrices.reshape(len(matrices), -1)[:, :: matrices.shape[-1] + 1]
+
+
 def reflection(geometry: Geometry, orders: int) -> Real:
     """ρ_n of each conductor for n = 1..orders, shape (B, n, orders); −1 for bare metal.
 
@@ -159,12 +164,11 @@ def assemble(
     g, p0 = _fill(matrix[:, :stop, :stop].view(complex), geometry, listed, definite)
     matrix[:, 0:stop:2, stop:], matrix[:, 1:stop:2, stop:] = g.real, g.imag
     matrix[:, stop:, stop:] = p0
-    diagonal = matrix.reshape(len(matrix), -1)[:, :: stop + n + 1]
     if definite:
-        diagonal[:, :stop] += 1.0
+        diagonal(matrix)[:, :stop] += 1.0
         _factorise(matrix)
     else:
-        diagonal[:, :stop] += np.repeat(listed.of(np.where(weak, -1.0, 1.0)), 2, axis=-1)
+        diagonal(matrix)[:, :stop] += np.repeat(listed.of(np.where(weak, -1.0, 1.0)), 2, axis=-1)
     return System(matrix, coarse, n, definite, listed)
 
 
@@ -259,13 +263,13 @@ def _fill(
 def _direct(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Real]:
     """Conductors upon each other: blocks of conj(S), conj(g) (B, N, n), P₀ (B, n, n)."""
     z, b = geometry.centre, geometry.cover
-    own = np.arange(z.shape[-1])
     apart = z[:, :, None] - z[:, None, :]
-    apart[:, own, own] = np.inf
+    own = diagonal(apart)
+    own[...] = np.inf
     spread = listed.spread(-np.conj(b[:, :, None] / apart))
-    apart[:, own, own] = b
+    own[...] = b
     p0 = -np.log(np.abs(apart))
-    p0[:, own, own] += np.log(b / geometry.metal) / geometry.ratio
+    diagonal(p0)[...] += np.log(b / geometry.metal) / geometry.ratio
     if geometry.wall == "none":
         # Only differences of potential count at zero total charge: any unit of length will do,
         # and one larger than the section keeps the matrix positive definite.
