@@ -58,15 +58,17 @@ class Refused(ValueError):
 
 
 def nearest(word: str, known: Iterable[str]) -> str:
-    """A hint that names the nearest known word, or lists the known ones when none is near.
+    """A hint that names the nearest known word, or lists those there are; nothing without any.
 
     >>> nearest("lenght", ["length", "supply"])
     'did you mean "length"?'
     """
-    known = list(known)
+    known = [k for k in known if k]
     near = get_close_matches(word.lower(), [k.lower() for k in known], n=1, cutoff=0.6)
     if near:
         return f'did you mean "{next(k for k in known if k.lower() == near[0])}"?'
+    if not known:
+        return ""
     if len(known) > 12:
         return f"known: {', '.join(known[:12])} and {len(known) - 12} more"
     return f"known: {', '.join(known)}"

@@ -56,6 +56,11 @@ def test_a_family_of_scipy_is_about_the_cases_own_value() -> None:
     ('gap = "10 %"', "is not a dimension that this cable gives"),
     ('bore = "10 %"', "is not a dimension that this cable gives"),
     ('loads = {"coil" = "10 %"}', "is not a load of this case"),
+    ('length = "0 %"', "spread.length: must be above 0 and below 100 %; given 0 %."),
+    ('length = "100 %"', "spread.length: must be above 0 and below 100 %; given 100 %."),
+    ('loads = {"coil" = 1}', "must be above 0 and below 100 %; given 100 %."),
+    ('length = {distribution = "norm", loc = 1, scale = 0.5}', "must stay above 0; given -"),
+    ('length = {distribution = "norm", shapes = {a = 1}}', "does not take these shapes"),
 ])
 def test_spread_is_refused(line: str, message: str) -> None:
     found = refusals(PAIR + f"[spread]\n{line}\n")
@@ -90,10 +95,41 @@ def test_a_load_with_its_kind_and_with_its_own_thresholds() -> None:
     (('"b@near"', '"c@near"'), "is not a point of this case"),
     (('"230 V"\n', '"230 V"\noff_current = "1 mA"\n'), "does not apply to the kind contactor"),
     (('"230 V"\n', '"230 V"\noff_voltage = "200 V"\n'), "sure to be off at less than"),
+    (('to = "N"', 'to = "b@near"'), "operation[1].to: must be another point than from; given b@"),
 ])
 def test_a_load_is_refused(change: tuple[str, str], message: str) -> None:
     found = refusals(LOAD + changed(OPERATION, change))
     assert any(message in sentence for sentence in found), found
+
+
+def test_a_load_is_refused_where_its_points_are_one() -> None:
+    (said,) = refusals(LOAD + changed(OPERATION, ('"b@near"', '"a@near"'), ('"N"', '"L"')))
+    assert said == ("c.toml line 30, operation[1].to: is the same point as from, as the ends are "
+                    "described: nothing can be between them; given L.")
+
+
+def test_a_lamps_series_capacitor_is_one() -> None:
+    lamp = changed(OPERATION, ('"contactor"', '"LED lamp"'))
+    assert refusals(LOAD + lamp + 'series_capacitance = "1 pF"\n') == []
+    (said,) = refusals(LOAD + lamp + 'series_capacitance = "0 F"\n')
+    assert "operation[1].series_capacitance: must be above 0 F. (leave it out where" in said
+
+
+def test_loads_that_are_watched_have_names_of_their_own() -> None:
+    assert refusals(LOAD + OPERATION + changed(OPERATION, ('"coil"', '"the same coil"'))) == []
+    (said,) = refusals(LOAD + OPERATION + OPERATION)
+    assert "operation[2].name: is used twice; given coil." in said
+
+
+def test_a_load_without_impedance_is_no_relay_whichever_way_it_is_written() -> None:
+    bare = changed(LOAD, ('b = {load = {name = "coil", resistance = "40 kohm"}, to = "N"}', "")) + (
+        '[run.switching]\narrangement = "switched live"\nlive = "a"\nswitched = "b"\n'
+        'load = {name = "coil"}\n')
+    bare = changed(bare, ('[run.ends.near]\na = "L"\n', ""))
+    for a, b in (("b@far", "N"), ("N", "b@far")):
+        (said,) = refusals(bare + changed(OPERATION, ('"b@near"', f'"{a}"'), ('to = "N"',
+                                                                             f'to = "{b}"')))
+        assert "operation[1].kind: has an impedance, and the load there has only a name" in said
 
 
 def test_loaded_neighbours() -> None:

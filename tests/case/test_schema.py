@@ -103,8 +103,8 @@ def test_an_own_instrument_takes_no_key_of_the_kit() -> None:
     (('from = "black@far"', 'from = "blak@far"'), 'did you mean "black@far"?'),
     (('to = "earth"', 'to = "black@far"'), "readings[1].to: must be another point than from"),
     (('from = "black@far"', 'from = "green-yellow@near"'),
-     "readings[1].to: is the same point as from, as the ends are described: there is nothing to "
-     "read between them; given earth."),
+     "readings[1].to: is the same point as from, as the ends are described: nothing can be "
+     "between them; given earth."),
     (('instrument = "digital-10M"', 'instrument = "body"'), "shows nothing that can be read;"),
     (('instrument = "digital-10M"', 'instrument = "two-pole"'),
      'readings[1].shows: must be "lit" or "not lit" for kind indicator; given 107.9 V.'),

@@ -85,6 +85,18 @@ def test_readings_can_be_taken_on_the_screen() -> None:
     assert "readings[1].from: is not a point of this case; given screen@far." in said
 
 
+def test_a_reading_on_a_screen_says_what_a_screen_is() -> None:
+    reading = ('[[readings]]\ninstrument = "digital-10M"\nfrom = "screen@far"\nto = "earth"\n'
+               'shows = "37.2 V"\n')
+    (said,) = refusals(QUAY + reading)
+    assert 'given screen@far. (a run has a screen with kind = "screen" of [run.surround])' in said
+    text = changed(SCREENED + reading, ('"screen"', '"scren"'))
+    (said,) = refusals(text)  # and nothing on the reading: it may have been meant for a screen
+    assert 'run.surround.kind: must be plane, pipe or screen; given scren. (did you' in said
+    (said,) = refusals(changed(SCREENED + reading, ('"screen@far"', '"screen"')))
+    assert 'is not a point of this case; given screen. (did you mean "screen@' in said
+
+
 def test_a_screen_has_its_name_and_its_ends_to_itself() -> None:
     (said,) = refusals(SCREENED.replace("black", "screen"))
     assert "run.surround: is a screen, and goes by that name itself; given screen." in said

@@ -9,7 +9,6 @@ from case_text import PAIR, SITES, changed, refusals
 from unlanded.case.build import build_run
 from unlanded.case.loading import load_case, read_case
 from unlanded.case.uncertainty import uncertain_run
-from unlanded.errors import Refused
 from unlanded.physics.capacitance import capacitance_matrix
 from unlanded.study.spread import limits, quasi_random
 
@@ -149,13 +148,6 @@ def test_sizes_vary_in_a_conduit() -> None:
         assert np.all(np.abs(matrix - exact) <= 6e-3 * np.sqrt(np.outer(*[np.diag(exact)] * 2)))
 
 
-def test_sizes_that_do_not_go_in_are_refused() -> None:
-    text = load_case(SITES / "heron-house.toml").text
-    found = uncertain_run(read_case(text + '\n[spread]\nbore = {low = "8 mm", high = "21 mm"}\n'))
-    with pytest.raises(Refused, match="5 singles do not go into a conduit of"):
-        found.draws(64)
-
-
 def test_the_bore_of_a_pipe_varies() -> None:
     pipe = changed(CORD, ('kind = "plane"', 'kind = "pipe"\nbore = "40 mm"'))
     found = uncertain_run(read_case(pipe + '[spread]\nbore = "5 %"\n'))
@@ -164,6 +156,43 @@ def test_the_bore_of_a_pipe_varies() -> None:
     (matrix,) = found.section.matrices(np.array([[4.8, 39e-3]]))
     exact = build_run(read_case(changed(pipe, ('"40 mm"', '"39 mm"')))).matrix
     assert np.all(np.abs(matrix / exact - 1) < 6e-3)
+
+
+@pytest.mark.parametrize(("spread", "key"), [
+    ('bore = {low = "8 mm", high = "21 mm"}',
+     "spread.bore: allows sizes that do not fit: in conduit: 5 singles do not go into"),
+    ('bore = "60 %"', "spread.bore: allows sizes that do not fit: in conduit: 5 singles do not go"),
+    ('thickness = {low = "0.5 mm", high = "9 mm"}', "spread.thickness: allows sizes that do not f"),
+    ('thickness = "40 %"\nbore = "50 %"', "spread: allows sizes that do not fit: in conduit: 5 si"),
+])
+def test_sizes_that_do_not_fit_are_told_before_the_draws(spread: str, key: str) -> None:
+    text = (SITES / "heron-house.toml").read_text(encoding="utf-8")
+    assert refusals(f'{text}\n[spread]\nbore = "20 %"\nthickness = "20 %"\n') == []
+    (said,) = refusals(f"{text}\n[spread]\n{spread}\n")
+    assert key in said
+    assert " m inner" not in said  # in millimetres
+
+
+def test_rows_and_pipes_are_held_to_the_sizes_that_they_may_have() -> None:
+    assert refusals(CORD + '[spread]\nspacing = "50 %"\n') == []
+    (said, *_) = refusals(CORD + '[spread]\nspacing = "70 %"\n')
+    assert "spread.spacing: allows sizes that do not fit: " in said
+    pipe = changed(CORD, ('kind = "plane"\ngap = "2 mm"', 'kind = "pipe"\nbore = "60 mm"\ngap ='
+                                                          ' "2 mm"'))
+    assert refusals(pipe + '[spread]\nbore = "10 %"\n') == []
+    (said, *_) = refusals(pipe + '[spread]\nbore = "80 %"\n')
+    assert "spread.bore: allows sizes that do not fit: " in said
+
+
+def test_a_share_of_nothing_is_no_range() -> None:
+    flat = changed(CORD, ('gap = "2 mm"', 'gap = "0 mm"'))
+    assert refusals(flat + '[spread]\ngap = {low = "0 mm", high = "1 mm"}\n') == []
+    (said,) = refusals(flat + '[spread]\ngap = "10 %"\n')
+    assert "spread.gap: is a share of the case's own value, which is 0. (give low and high)" in said
+    site = changed((SITES / "chalk-hill.toml").read_text(encoding="utf-8"),
+                   ('earthed = "none"\n\n', 'earthed = "none"\nto_earth = "0 F/m"\n\n'))
+    (said,) = refusals(site + '\n[spread]\nto_earth = "10 %"\n')
+    assert "spread.to_earth: is a share of the case's own value, which is 0." in said
 
 
 def test_over_a_plane_a_conduit_is_built_anew() -> None:

@@ -171,3 +171,10 @@ def test_none_is_refused():
 def test_a_name_for_every_core(count):
     with pytest.raises(Refused, match=f"in conduit: takes 3 names; given {count}"):
         packed([f"c{k}" for k in range(count)], [Core(0.7, 1.4, 5.0)] * 3, pipe_radius=8.0, seed=1)
+
+
+@pytest.mark.parametrize("pipe", [3e-3, 3e-3 * (1 + 1e-15), 4e-3, 5.9e-3])
+def test_what_leaves_no_room_at_all_is_refused_without_a_stray_number(pipe: float) -> None:
+    # As wide as the conduit: centres of circle and wall are one place.
+    with pytest.raises(Refused, match="3 singles do not go into a conduit"):
+        packed(("a", "b", "c"), [Core(1e-3, 3e-3, 3.0)] * 3, pipe_radius=pipe, seed=1)

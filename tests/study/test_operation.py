@@ -14,7 +14,7 @@ from unlanded.physics.section import Conductor, Pipe, Plane, Section
 from unlanded.reference.loads import longest_control_cable, threshold
 from unlanded.study.arrangements import remote_contact
 from unlanded.study.batch import RunBatch
-from unlanded.study.ends import Bonded
+from unlanded.study.ends import Bonded, Driven, Joined
 from unlanded.study.operation import Cure, Operation, Watched, level_on, operation
 from unlanded.study.readings import Pair
 from unlanded.study.run import Run, Screen
@@ -187,3 +187,26 @@ def test_a_floating_screen_may_be_earthed_as_a_cure(earthed: bool, offered: bool
     for cure in cures:
         assert cure.works
         assert cure.level == pytest.approx(240 * 40 / 140, rel=1e-3, abs=0)
+
+
+def test_a_core_that_the_line_is_joined_to_is_no_spare() -> None:
+    # Earthing it would short the line. Of two cores that nothing feeds the other stays a spare.
+    section = Section((*SECTION.conductors, Conductor("joined", 0.008, 0.01, 1e-3),
+                       Conductor("spare", 0.012, 0.01, 1e-3)), Plane(0))
+    ends = remote_contact("out", "back", load=Burden(50e3))
+    run = Run(section, 100.0, Supply(240.0, 50.0), ends.near, {"out": Joined("joined")},
+              (7e-3,) * 4)
+    assert run.spares == ("spare",)
+    found = operation(UncertainRun(run), watched(0.5, 0.75))
+    assert [c.name for c in found.cures if "spare cores" in c.name] == [
+        "spare cores (spare) bonded to earth at the near end"]
+
+
+def test_a_load_on_the_screen_is_not_offered_the_screen_bonded() -> None:
+    section = Section(SECTION.conductors, Pipe(20e-3, y=0.01))
+    run = Run(section, 100.0, Supply(240.0, 50.0), {"out": Driven("L")}, {}, (7e-3, 7e-3),
+              screen=Screen(15e-3, 50e-12))
+    on_screen = replace(watched(0.5, 0.75), pair=Pair("screen@near", "earth"))
+    found = operation(UncertainRun(run), on_screen)
+    assert found.level > 0
+    assert not [c for c in found.cures if "the screen bonded" in c.name]

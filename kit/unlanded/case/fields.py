@@ -16,6 +16,7 @@ from typing import Annotated, Any, Literal
 from pydantic import BaseModel, BeforeValidator, ConfigDict, ValidationInfo, model_validator
 
 from ..errors import Refused, nearest
+from ..study.ends import SCREEN
 from ..units import show, si
 
 RESERVED = ("earth", "N", "L", "L1", "L2", "L3", "open")
@@ -256,13 +257,21 @@ def _one_of(kind: str, known: Callable[[Vocabulary], tuple[str, ...] | None]) ->
     def check(given: Any, info: ValidationInfo) -> Any:
         words = known(vocabulary(info))
         if words is not None and given not in words:
-            hint = nearest(given if isinstance(given, str) else "", words)
-            if given in vocabulary(info).screen:
-                hint = "what the screen meets is told by earthed of [run.surround]"
-            raise Refused("", f"is not {kind} of this case", given=written(given), hint=hint)
+            raise Refused("", f"is not {kind} of this case", given=written(given),
+                          hint=_known(given if isinstance(given, str) else "", words,
+                                      vocabulary(info)))
         return given
 
     return BeforeValidator(check)
+
+
+def _known(given: str, words: tuple[str, ...], names: Vocabulary) -> str:
+    """The nearest word; of a screen, why it is none."""
+    if given in names.screen and f"{given}@near" not in words:
+        return "what the screen meets is told by earthed of [run.surround]"
+    if given.partition("@")[0] == SCREEN and SCREEN not in (*names.screen, *(names.cores or ())):
+        return 'a run has a screen with kind = "screen" of [run.surround]'
+    return nearest(given, words)
 
 
 def _and(words: tuple[str, ...] | None, more: tuple[str, ...]) -> tuple[str, ...] | None:

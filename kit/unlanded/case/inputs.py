@@ -9,7 +9,14 @@ import math
 from collections.abc import Iterator
 from typing import Annotated, Any, Generic, Self, TypeVar
 
-from pydantic import BeforeValidator, Field, PrivateAttr, StrictBool, model_validator
+from pydantic import (
+    AfterValidator,
+    BeforeValidator,
+    Field,
+    PrivateAttr,
+    StrictBool,
+    model_validator,
+)
 
 from ..errors import Mistake, Refused, nearest
 from ..reference.loads import THRESHOLDS, Threshold, threshold
@@ -55,8 +62,14 @@ def _family(given: Any) -> str:
     return str(given)
 
 
+def _some(share: float) -> float:
+    if not 0 < share < 1:
+        raise Refused("", "must be above 0 and below 100 %", given=f"{100 * share:g} %")
+    return share
+
+
 Number = Annotated[float, BeforeValidator(_number)]
-Tolerance = Annotated[Share, Field(examples=["10 %"])]
+Tolerance = Annotated[Share, AfterValidator(_some), Field(examples=["10 %"])]
 
 
 class Uncertain(Table, Generic[Q]):
@@ -89,16 +102,11 @@ class Uncertain(Table, Generic[Q]):
                 "likely" in given and "low" not in given):
             raise Refused("", "must be a tolerance, low and high (with likely, or without), or a "
                               "distribution", hint='for example {tolerance = "5 %"}')
-        if "low" in given:
-            self._told(lambda: self.over(1.0))
-        return self
-
-    @staticmethod
-    def _told(make: Any) -> None:
         try:
-            make()
+            self.over(1.0)
         except Refused as refusal:
             raise told_here(refusal) from None
+        return self
 
     def over(self, value: float) -> Distribution:
         """Its distribution, about the case's own value where it says no other."""
@@ -167,12 +175,21 @@ class SpreadTable(Table):
         """What varies of the section's dimensions, by key."""
         return {k: v for k in _GEOMETRY if (v := getattr(self, k)) is not None}
 
+    def _of_nothing(self, surround: Any) -> Iterator[Mistake]:
+        for key in ("gap", "to_earth"):
+            given = getattr(self, key)
+            if given and given.low is None and getattr(surround, key, None) == 0:
+                yield Mistake(f"spread.{key}", "is a share of the case's own value, which is 0", "",
+                              "give low and high")
+
     def mistakes(self, run: Any) -> Iterator[Mistake]:
         """What does not fit the cable and its surround."""
         for key in self.geometry:
             if home_of(run, key) is None:
                 yield Mistake(f"spread.{key}", "is not a dimension that this cable gives",
                               run.cable.layout)
+        if run.surround:
+            yield from self._of_nothing(run.surround)
         if self.to_earth and not (run.screen and run.screen.earthed == "none"):
             yield Mistake("spread.to_earth", "is of a screen that is earthed at no end, and there "
                           "is none", "", 'it goes with earthed = "none" of [run.surround]')
@@ -180,7 +197,7 @@ class SpreadTable(Table):
         for label in self.loads:
             if label not in labels:
                 yield Mistake(f'spread.loads."{label}"', "is not a load of this case", label,
-                              nearest(label, labels) if labels else "")
+                              nearest(label, labels))
 
 
 def _known_kind(given: Any) -> Threshold:
@@ -224,6 +241,8 @@ class OperationTable(Table):
         if missing := [Mistake(key, "is missing", "", f"{_POINTS[key]}, or load = its name")
                        for key, point in points.items() if point is None]:
             raise Refused.all_of(missing)
+        if self.a == self.b:
+            raise Refused("to", "must be another point than from", given=self.b)
         self.put_on(Pair(str(self.a), str(self.b)))
         return self
 
@@ -238,6 +257,9 @@ class OperationTable(Table):
             "off_current", "on_current", "conducts_from", "series_capacitance"}
         if found := sorted(wrong & self.model_fields_set):
             raise Refused(found[0], f"does not apply to the kind {self.kind.key}")
+        if self.series_capacitance == 0:
+            raise Refused("series_capacitance", "must be above 0 F", hint="leave it out where "
+                                                                          "there is none")
         try:
             _ = self.watched().limits
         except Refused as refusal:

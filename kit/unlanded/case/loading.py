@@ -10,11 +10,12 @@ from pathlib import Path
 from typing import Any
 
 from ..errors import Mistake, Refused, nearest
+from ..study.spread import limits
 from ..units import show
 from .places import Place, line_numbers
 from .runs import end_mistakes, run_of
 from .schema import CaseFile, RunTable
-from .sections import section_of
+from .sections import dimension, resized, section_of
 from .validation import Found, Index, printable, validate, validate_run
 
 LARGEST = 1024 * 1024
@@ -160,7 +161,7 @@ def _near_file(path: Path) -> str:
         names = [p.name for p in path.parent.glob("*.toml")]
     except OSError:
         return ""
-    hint = nearest(path.name, names) if names else ""
+    hint = nearest(path.name, names)
     return hint if hint.startswith("did you mean") else ""
 
 
@@ -210,6 +211,8 @@ def _read(text: str, name: str) -> tuple[CaseFile | None, list[Mistake]]:
     if run is not None:
         found += _geometry(run)
     if content is not None and not found:
+        found += _sizes(content)
+    if content is not None and not found:
         found += _ends(content)
     found.sort(key=lambda f: index.line(f[0]))
     mistakes = [index.told(f) for f in found]
@@ -224,6 +227,25 @@ def _geometry(run: RunTable) -> list[Found]:
         return [(_where(m, run), replace(m, place="", rule=_prefixed(f"{m.place}: {m.rule}"),
                                          given=_prefixed(m.given)))
                 for m in refusal.mistakes]
+    return []
+
+
+# What leaves the least room of each dimension that may vary: its lower or its upper limit.
+_TIGHTEST = {"thickness": 1, "spacing": 0, "bore": 0, "gap": 1}
+
+
+def _sizes(content: CaseFile) -> list[Found]:
+    """Whether the section can still be made where its dimensions leave the least room."""
+    varied = content.spread.geometry
+    tight = {key: limits(spread.over(dimension(content.run, key)))[_TIGHTEST[key]]
+             for key, spread in varied.items()}
+    try:
+        section_of(resized(content.run, tight))
+    except Refused as refusal:
+        m = refusal.mistakes[0]
+        rule = f"allows sizes that do not fit: {_prefixed(f'{m.place}: {m.rule}')}"
+        place = ("spread", *varied) if len(varied) == 1 else ("spread",)
+        return [(place, Mistake("", rule, _prefixed(m.given)))]
     return []
 
 
@@ -253,8 +275,10 @@ def _ends(content: CaseFile) -> list[Found]:
         (("readings", count, "to"), r) for count, r in enumerate(content.readings)]
     named += [(("memo", "added", count, "to"), added) for count, added in
               enumerate(content.memo.added) if added.b is not None]
-    return [(place, Mistake("", "is the same point as from, as the ends are described: there is "
-                            "nothing to read between them", entry.b))
+    named += [(("operation", count, "to"), o) for count, o in enumerate(content.operation)
+              if o.b is not None]
+    return [(place, Mistake("", "is the same point as from, as the ends are described: "
+                            "nothing can be between them", entry.b))
             for place, entry in named if run.same(entry.a, entry.b)]
 
 

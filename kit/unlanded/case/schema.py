@@ -248,11 +248,17 @@ class CaseFile(Table):
     @model_validator(mode="after")
     def _loads_are_known(self) -> Self:
         found = [m for count, entry in enumerate(self.operation, 1)
-                 for m in (*self._placed(entry, f"operation[{count}].load"),
+                 for m in (*self._named_twice(count),
+                           *self._placed(entry, f"operation[{count}].load"),
                            *self._unlike(entry, f"operation[{count}].kind"))]
         if found:
             raise Refused.all_of(found)
         return self
+
+    def _named_twice(self, count: int) -> Iterator[Mistake]:
+        names = [entry.name for entry in self.operation[:count]]
+        if names[-1] in names[:-1]:
+            yield Mistake(f"operation[{count}].name", "is used twice", names[-1])
 
     def _placed(self, entry: OperationTable, place: str) -> Iterator[Mistake]:
         """Gives the entry the pair of the load that it names; what is wrong where it cannot."""
@@ -266,13 +272,14 @@ class CaseFile(Table):
         else:
             labels = [load.name for load, _ in self.run.loads]
             yield Mistake(place, "is not a load of this run", entry.load,
-                          nearest(entry.load, labels) if labels else "")
+                          nearest(entry.load, labels))
 
     def _unlike(self, entry: OperationTable, place: str) -> Iterator[Mistake]:
         """What a load is described as that its kind cannot be."""
         lamp = entry.kind.measure == "lamp current"
+        on = {entry.watched().pair.a, entry.watched().pair.b}
         for load, pair in self.run.loads:
-            if pair != entry.watched().pair:
+            if {pair.a, pair.b} != on:
                 continue
             if lamp and load.voltage is not None:
                 yield Mistake(place, "draws nothing until its chips conduct: its power is no "
@@ -298,7 +305,7 @@ class CaseFile(Table):
         known = {"leak": [entry.name for entry in self.standing],
                  "load": [entry.name for entry in self.operation]}
         found = [Mistake(f"memo.added[{count + 1}].{key}", "is not in this case", name,
-                         nearest(name, names) if names else "")
+                         nearest(name, names))
                  for count, entry in enumerate(self.memo.added) for key, names in known.items()
                  if (name := getattr(entry, key)) is not None and name not in names]
         if found:

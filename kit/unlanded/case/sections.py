@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from typing import Literal
 
@@ -24,6 +24,7 @@ from .cable import (
     Singles,
     Wire,
 )
+from .inputs import home_of
 from .schema import RunTable
 from .surround import AnySurround, PipeRound, PlaneBelow
 
@@ -35,6 +36,20 @@ def section_of(run: RunTable, permittivity: Limit = "likely") -> Section:
     """The cross-section that `[run]` describes, refused by name where it cannot be."""
     conductors = _conductors(run.cable, permittivity)
     return Section(conductors, _surround(run, conductors), run.cable.filler_permittivity)
+
+
+def dimension(run: RunTable, key: str) -> float:
+    """A dimension of the cable or of its surround, such as "bore" [m]."""
+    return float(getattr(getattr(run, str(home_of(run, key))), key))
+
+
+def resized(run: RunTable, sizes: Mapping[str, float]) -> RunTable:
+    """The run with other dimensions [m], by key."""
+    tables: dict[str, dict[str, float]] = {}
+    for key, size in sizes.items():
+        tables.setdefault(str(home_of(run, key)), {})[key] = float(size)
+    return run.model_copy(update={
+        home: getattr(run, home).model_copy(update=own) for home, own in tables.items()})
 
 
 def resistances(cable: AnyCable) -> dict[str, float]:

@@ -13,13 +13,13 @@ from .fields import (
     Capacitance,
     Inductance,
     KnownCore,
-    Line,
     Power,
     Resistance,
     Return,
     Share,
     SupplyWord,
     Table,
+    Title,
     Voltage,
     told_here,
 )
@@ -31,7 +31,7 @@ class Load(Table):
     """What closes two conductors at an end: an impedance, or a nameplate's power."""
 
     _may_be_bare: ClassVar[bool] = False
-    name: Line = "load"
+    name: Title = "load"
     resistance: Resistance | None = None
     inductance: Inductance = 0.0
     capacitance: Capacitance = 0.0

@@ -21,11 +21,11 @@ from ..study.uncertain import (
     sections_spread,
 )
 from .cable import InConduit
-from .inputs import SpreadTable, home_of
+from .inputs import SpreadTable
 from .loading import Case
 from .runs import run_of
-from .schema import CaseFile, RunTable
-from .sections import section_of
+from .schema import CaseFile
+from .sections import dimension, resized, section_of
 
 Group = tuple[Distribution, tuple[str, ...]]
 
@@ -128,12 +128,12 @@ def _built(content: CaseFile, groups: dict[str, Group]) -> SectionSpread:
     """A section built anew for each draw of its dimensions and its covers' permittivity."""
     dimensions = content.spread.geometry
     inputs = [Input(name, distribution) for name, (distribution, _) in groups.items()]
-    inputs += [Input(_WORDS[key], spread.over(_value(content.run, key)))
+    inputs += [Input(_WORDS[key], spread.over(dimension(content.run, key)))
                for key, spread in dimensions.items()]
 
     def section(values: NDArray[np.float64]) -> Section:
         covers, sizes = values[: len(groups)], values[len(groups):]
-        made = section_of(_changed(content.run, dict(zip(dimensions, sizes, strict=True))))
+        made = section_of(resized(content.run, dict(zip(dimensions, sizes, strict=True))))
         of = {name: float(value) for value, (_, names) in zip(covers, groups.values(), strict=True)
               for name in names}
         return replace(made, conductors=tuple(
@@ -145,15 +145,3 @@ def _built(content: CaseFile, groups: dict[str, Group]) -> SectionSpread:
 
 _WORDS = {"thickness": "thickness of the covers", "spacing": "spacing", "bore": "bore",
           "gap": "gap to the earthed surround"}
-
-
-def _value(run: RunTable, key: str) -> float:
-    return float(getattr(getattr(run, str(home_of(run, key))), key))
-
-
-def _changed(run: RunTable, sizes: dict[str, float]) -> RunTable:
-    tables: dict[str, dict[str, float]] = {}
-    for key, size in sizes.items():
-        tables.setdefault(str(home_of(run, key)), {})[key] = float(size)
-    return run.model_copy(update={
-        home: getattr(run, home).model_copy(update=own) for home, own in tables.items()})

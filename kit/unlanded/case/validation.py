@@ -83,13 +83,15 @@ def validate_run(plain: Mapping[str, Any]) -> RunTable | None:
 def _vocabulary(plain: Mapping[str, Any]) -> Vocabulary:
     phases = _table(plain, "supply").get("phases", 1)
     run = _table(plain, "run")
+    surround = _table(run, "surround")
     own = plain.get("own_instruments", [])
     keys = [i.get("key") for i in own if isinstance(i, dict)] if isinstance(own, list) else []
     return Vocabulary(
         cores=_cores(_table(run, "cable")),
         phases=_PHASES.get(phases, _ANY_PHASE) if isinstance(phases, int) else _ANY_PHASE,
         instruments=(*INSTRUMENTS, *(k for k in keys if isinstance(k, str))),
-        screen=(SCREEN,) if _table(run, "surround").get("kind") == "screen" else (),
+        # A kind that is wrong may have been meant for a screen: what refers to it is no mistake.
+        screen=(SCREEN,) if surround and surround.get("kind") not in ("plane", "pipe") else (),
     )
 
 

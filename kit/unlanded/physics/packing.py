@@ -20,6 +20,7 @@ Index = NDArray[np.intp]
 TRIES = 60
 _REPOSE = np.pi / 6
 _SLACK = 1e-9  # of the radius: contacts are computed, and may seem to overlap in the last digit
+_ONE_PLACE = 1e-12  # m: centres that near are one, which nothing is held between
 
 
 def packed(
@@ -129,17 +130,18 @@ def _rests(centres: NDArray[np.complex128], outer: Real, radius: Real, pipe: Rea
     first, second = np.triu_indices(k + 1, 1)
     p, q, rp, rq = about[:, first], about[:, second], reach[:, first], reach[:, second]
     line = q - p
-    apart = np.maximum(np.abs(line), 1e-300)
+    apart = np.maximum(np.abs(line), _ONE_PLACE)
     along = (apart**2 + rp**2 - rq**2) / (2 * apart)
     height2 = rp**2 - along**2
     across = 1j * np.sqrt(np.maximum(height2, 0.0))
     spots = np.stack([p + line / apart * (along + across), p + line / apart * (along - across)], -1)
     wall = (second == k)[:, None]
-    push_p = (spots - p[..., None]) / rp[..., None]
-    push_q = np.where(wall, q[..., None] - spots, spots - q[..., None]) / rq[..., None]
-    turn = push_p.real * push_q.imag - push_p.imag * push_q.real
-    # The upward reaction must be a sum of the two pushes with no pull in it.
+    # The upward reaction must be a sum of the two pushes with no pull in it. A single as wide as
+    # the conduit has no push from its wall.
     with np.errstate(divide="ignore", invalid="ignore"):
+        push_p = (spots - p[..., None]) / rp[..., None]
+        push_q = np.where(wall, q[..., None] - spots, spots - q[..., None]) / rq[..., None]
+        turn = push_p.real * push_q.imag - push_p.imag * push_q.real
         held = (-push_q.real / turn >= 0) & (push_p.real / turn >= 0)
     held &= (height2 >= 0)[..., None]
     spots, held = spots.reshape(rows, -1), held.reshape(rows, -1)

@@ -11,7 +11,6 @@ from dataclasses import dataclass, replace
 
 from ..physics.burden import Burden
 from .arrangements import NEEDS, WITH_NEUTRAL, Arrangement, Cores, Word, arranged
-from .ends import Joined, Open, Through, word
 from .operation import Operation, Watched, operation
 from .run import Run
 from .uncertain import UncertainRun
@@ -75,7 +74,7 @@ def compare(
 def alternatives(run: Run, built: Switched) -> Iterator[Switched]:
     """The case's own arrangement, then the others that the cable has cores for."""
     yield built
-    spares = iter(_spares(run, built))
+    spares = (n for n in run.spares if n not in built.cores.names)
     switched = built.cores.switched or next(spares, None)
     neutral = built.cores.neutral or next(spares, None)
     own = replace(built.cores, switched=switched, neutral=neutral)
@@ -100,14 +99,6 @@ def _parts(kind: Word, own: Cores, built: Switched) -> Iterator[Cores]:
     yield cores
     if kind == "two-way" and cores.switched is not None:
         yield replace(cores, live=cores.switched, switched=cores.live)
-
-
-def _spares(run: Run, built: Switched) -> list[str]:
-    """Cores that are open at both ends and that nothing is joined to."""
-    met = {word(t) for end in (run.near, run.far) for t in end.values()
-           if isinstance(t, Joined | Through)}
-    return [n for n in run.section.names if n not in (*built.cores.names, *met)
-            and isinstance(run.near[n], Open) and isinstance(run.far[n], Open)]
 
 
 def rearranged(run: Run, built: Switched, other: Switched) -> Run:

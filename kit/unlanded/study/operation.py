@@ -272,9 +272,7 @@ def _capacitor(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
 
 def _spares(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     run = drawn.run
-    spares = [n for n in run.section.names
-              if isinstance(run.near[n], Open) and isinstance(run.far[n], Open)
-              and not {f"{n}@near", f"{n}@far"} & {watched.pair.a, watched.pair.b}]
+    spares = [n for n in run.spares if not _is_on(watched, n)]
     if spares:
         bonded = replace(run, near={**run.near, **dict.fromkeys(spares, Bonded("earth"))})
         yield _cure(f"spare cores ({', '.join(spares)}) bonded to earth at the near end",
@@ -283,11 +281,16 @@ def _spares(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
 
 def _screen(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     run = drawn.run
-    if run.screen and isinstance(run.near[SCREEN], Open) and isinstance(run.far[SCREEN], Open):
+    if (run.screen and isinstance(run.near[SCREEN], Open) and isinstance(run.far[SCREEN], Open)
+            and not _is_on(watched, SCREEN)):
         bonded = replace(run, near={**run.near, SCREEN: Bonded(EARTH)})
         yield _cure("the screen bonded to earth at the near end",
                     _covered(replace(drawn, run=bonded), watched), watched,
                     note="at one end it carries no current, and screens from electric fields alone")
+
+
+def _is_on(watched: Watched, name: str) -> bool:
+    return bool({f"{name}@near", f"{name}@far"} & {watched.pair.a, watched.pair.b})
 
 
 def _own_cable(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:

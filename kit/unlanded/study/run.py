@@ -158,6 +158,14 @@ class Run:
         return (*self.section.names, SCREEN) if self.screen else self.section.names
 
     @property
+    def spares(self) -> tuple[str, ...]:
+        """Cores that are open at both ends, and that nothing is connected to."""
+        met = {word(t) for end in (self.near, self.far) for t in end.values()
+               if isinstance(t, Joined | Through)}
+        return tuple(n for n in self.section.names if n not in met
+                     and isinstance(self.near[n], Open) and isinstance(self.far[n], Open))
+
+    @property
     def resistances(self) -> tuple[float, ...]:
         """Of each conductor (n,) [ohm/m], in the order of `names`."""
         return (*self.resistance, self.screen.resistance) if self.screen else self.resistance
