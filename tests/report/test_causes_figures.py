@@ -42,6 +42,7 @@ def test_every_reading_has_a_mark_for_every_cause_left(found: Explanation) -> No
 
 def test_readings_lie_within_what_the_fitting_cause_predicts(found: Explanation) -> None:
     figure = predicted_figure(found, "black", key="predicted-1")
+    assert figure is not None
     assert figure.points[-1].label == "read"
     for k, reading in enumerate(found.readings):
         band = predicted(found, "black", "capacitive coupling", k)
@@ -49,6 +50,8 @@ def test_readings_lie_within_what_the_fitting_cause_predicts(found: Explanation)
         # From the other reading alone the band is wide; what was read is inside it.
         assert band[0] < reading.value < band[2]
     assert predicted(found, "black", "none of these", 0) is None
+    # Somebody may suspect a conductor that nothing was read on.
+    assert predicted_figure(found, "grey", key="predicted-2") is None
 
 
 def test_next_measurements_are_bars_the_longest_first(quay: Investigation) -> None:

@@ -174,3 +174,11 @@ def test_a_current_that_returns_inside_induces_none_in_the_screen() -> None:
 def test_a_screen_that_nothing_earths_can_be_touched() -> None:
     assert "screen" in {t.point.partition("@")[0] for t in touch_sheet(screened())}
     assert "screen" not in {t.point.partition("@")[0] for t in touch_sheet(screened(far=1))}
+
+
+def test_with_no_line_on_any_core_nothing_is_driven() -> None:
+    # As with the contact at the supply's end: every end is at 0 V, the neutral behind 0 Ω.
+    run = Run(SECTION, 50.0, Supply(230.0, 50.0), {"spare": Bonded("N")}, {}, (7e-3, 7e-3))
+    found = touch_sheet(run)
+    assert sorted(t.point.partition("@")[0] for t in found) == ["live", "spare"]
+    assert [(t.current, t.bonded, t.charge) for t in found] == [(0.0, 0.0, 0.0)] * 2

@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import Any
 
 from ..errors import Mistake, Refused, nearest
+from ..study.reduced import NO_SUSPECT, may_be_suspect
 from ..study.spread import limits
 from ..units import show
 from .places import Place, line_numbers
@@ -277,9 +278,12 @@ def _ends(content: CaseFile) -> list[Found]:
               enumerate(content.memo.added) if added.b is not None]
     named += [(("operation", count, "to"), o) for count, o in enumerate(content.operation)
               if o.b is not None]
-    return [(place, Mistake("", "is the same point as from, as the ends are described: "
-                            "nothing can be between them", entry.b))
-            for place, entry in named if run.same(entry.a, entry.b)]
+    found = [(place, Mistake("", "is the same point as from, as the ends are described: "
+                             "nothing can be between them", entry.b))
+             for place, entry in named if run.same(entry.a, entry.b)]
+    return found + [(("causes", "suspects", count), Mistake("", NO_SUSPECT, name))
+                    for count, name in enumerate(content.causes.suspects)
+                    if not may_be_suspect(run, name)]
 
 
 def _end_place(mistake: Mistake) -> Place:

@@ -41,7 +41,8 @@ class CausesPanel(Panel):
                               tooltip="Work out the odds of the causes again")
         self.working = w.HBox([self.bar, self.halt])
         self.sentences, self.odds_table, self.next_table = w.HTML(), w.HTML(), w.HTML()
-        self.odds, self.predicted, self.tried = LatePicture(), LatePicture(), LatePicture()
+        self.odds, self.tried = LatePicture(), LatePicture()
+        self.predicted = LatePicture("No reading is on this conductor.")
         self.next = LatePicture("No measurement with these instruments would tell the remaining "
                                 "causes apart.")
         self.work = Work(self._tell)

@@ -105,8 +105,8 @@ class CausesModel(traitlets.HasTraits):
         """The share of each cause on the suspect, before and after the readings."""
         return odds_figure(self.work_out(), self.suspect, key="odds")
 
-    def predicted(self) -> Figure:
-        """Each reading against what the causes predict of it."""
+    def predicted(self) -> Figure | None:
+        """Each reading on the suspect against what the causes predict of it; None without one."""
         return predicted_figure(self.work_out(), self.suspect, key="predicted")
 
     def next(self) -> Figure | None:

@@ -175,7 +175,8 @@ def _size_words(found: Explanation, suspect: str, cause: Cause) -> str:
 def _pictures(found: Explanation) -> Iterator[Block]:
     for number, suspect in enumerate(found.reduced.suspects[:PICTURED], 1):
         yield odds_figure(found, suspect, key=f"odds-{number}")
-        yield predicted_figure(found, suspect, key=f"predicted-{number}")
+        if (predicted := predicted_figure(found, suspect, key=f"predicted-{number}")) is not None:
+            yield predicted
         yield told_figure(found, suspect, key=f"told-{number}")
 
 

@@ -84,10 +84,15 @@ def _told_words(
     return f"{listed(said)}." if said else "No other cause is left."
 
 
-def predicted_figure(found: Explanation, suspect: str, *, key: str) -> Figure:
-    """Each reading against what each cause predicts from all the other readings."""
-    causes = shown_causes(found, suspect)
+def predicted_figure(found: Explanation, suspect: str, *, key: str) -> Figure | None:
+    """Each reading on the suspect against what each cause predicts from all the other readings.
+
+    None where no reading is on it.
+    """
     numbered = [(k, r) for k, r in enumerate(found.readings) if suspect in _names(r)]
+    if not numbered:
+        return None
+    causes = shown_causes(found, suspect)
     bands = {c: [b for k, _ in numbered if (b := predicted(found, suspect, c, k))] for c in causes}
     drawn = {c: b for c, b in bands.items() if len(b) == len(numbered)}
     step = 0.7 / (len(drawn) + 1)

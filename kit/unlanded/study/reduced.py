@@ -32,6 +32,7 @@ Complex = NDArray[np.complex128]
 
 SUPPLY_SPREAD = Value(0.03, "", Source("spread of the supply's voltage, one standard deviation",
                                        "judgement"))
+NO_SUSPECT = "is fed or bonded at its ends as described: no cause is looked for on it"
 _BOND = 100.0  # S: 10 mΩ, where one bonded end of a conductor is under suspicion
 
 
@@ -101,8 +102,7 @@ class Reduced:
     def __post_init__(self) -> None:
         for name in self.suspects:
             if name not in self.free:
-                raise Refused(f'conductor "{name}"', "is fed or bonded at its ends as described: "
-                              "no cause is looked for on it")
+                raise Refused(f'conductor "{name}"', NO_SUSPECT)
 
     @cached_property
     def free(self) -> tuple[str, ...]:

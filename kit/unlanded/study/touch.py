@@ -116,9 +116,16 @@ def _touch(run: Run, point: str) -> Touch:
     fed = _fed(run, point)
     current = abs(effect.current)
     return Touch(point, fed, abs(port.voltage), current, current * abs(weight),
-                 abs(port.voltage / port.impedance) if port.impedance else math.inf,
+                 _quotient(abs(port.voltage), abs(port.impedance)),
                  charge, energy,
                  _finding(fed, current, charge))
+
+
+def _quotient(voltage: float, impedance: float) -> float:
+    """Current of a source into a bond; none of one without voltage, such as the neutral."""
+    if not voltage:
+        return 0.0
+    return voltage / impedance if impedance else math.inf
 
 
 def _fed(run: Run, point: str) -> bool:
