@@ -41,7 +41,7 @@ costs = {"far end disconnected" = 5}
     ('after = ["neighbour off"]', 'did you mean "neighbours off"'),
     ('resistor = "0 ohm"', "must be 1 Ω to 1 GΩ"),
     ('[causes]\nsuspects = ["purple"]', "is not a core of this case"),
-    ('[causes]\nsuspects = ["black", "brown"]', r"causes.suspects\[2\]: is fed or bonded at its ends"),
+    ('[causes]\nsuspects = ["black", "brown"]', r"suspects\[2\]: is fed or bonded at its ends"),
     ('[causes]\nshares = {"solid conection" = 0.1}', 'did you mean "solid connection"'),
     ('[causes]\nshares = {"solid connection" = 1.5}', "must be 0 to 1"),
     ('[causes]\nsection = "unknown"', "must be as described or not known"),

@@ -83,6 +83,19 @@ def test_an_arrangement_is_its_ends_drawn_by_hand(switching: str) -> None:
     assert (named.near, named.far) == (drawn.near, drawn.far)
 
 
+@pytest.mark.parametrize("switching", DRAWN)
+def test_the_load_is_on_the_pair_that_it_closes(switching: str) -> None:
+    content = read_case(switched(switching, more=RELAY)).content
+    run = run_of(content)
+    ((a, b, closing),) = run.closed
+    pair = content.operation[0].watched().pair
+    assert {run.node(pair.a), run.node(pair.b)} == {a, b}
+    assert closing.label == "motor"
+    built = switched_of(content.run, run.supply)
+    assert built is not None
+    assert (built.arrangement.load, built.name) == (pair, "motor")
+
+
 def test_ends_may_be_left_out_or_tell_the_far_end_alone() -> None:
     assert refusals(switched(TWO_WAY, "")) == []
     assert refusals(switched(TWO_WAY, '[run.ends.far]\ngreen-yellow = "earth"\n')) == []

@@ -31,7 +31,7 @@ def rectified_current(
     The source is taken as conductance beside capacitance, fitted at `frequency`: between two
     moments of conduction its capacitance is recharged, in conduction the voltage stays. A source
     that is not capacitive has no such dead time: its current is what drives the difference of
-    voltages. A capacitance alone passes 4 f C (√2 V − V₀), the charge pump's formula:
+    voltages, while there is one. A capacitance alone passes 4 f C (√2 V − V₀), the charge pump's formula:
 
     >>> z = 1 / (2j * np.pi * 50 * 10e-9)
     >>> i = rectified_current(voltage=100.0, impedance=z, frequency=50.0, conducts_from=60.0)
@@ -44,8 +44,15 @@ def rectified_current(
     omega = 2 * np.pi * frequency
     c, g = y.imag / omega, np.maximum(y.real, 0.0)
     stiff = c * omega <= 1e-3 * np.abs(y)
-    solid = np.maximum(v * np.sqrt(2) - conducts_from, 0.0) * np.abs(y) * 2 / np.pi
-    return np.where(stiff, solid, _clamped(v, np.where(stiff, 1.0, c), g, omega, conducts_from))
+    return np.where(stiff, _solid(v, conducts_from) * np.abs(y), _clamped(v, np.where(stiff, 1.0, c), g, omega, conducts_from))
+
+
+def _solid(v: Real, level: float) -> Real:
+    """Mean [V] of what a crest's half wave has above the level: it conducts from `dark` on."""
+    crest = np.sqrt(2) * v
+    lit = crest > level
+    dark = np.arcsin(level / np.where(lit, crest, np.inf))
+    return np.where(lit, crest * np.cos(dark) - level * (np.pi / 2 - dark), 0.0) * 2 / np.pi
 
 
 def _clamped(v: Real, c: Real, g: Real, omega: float, level: float) -> Real:
