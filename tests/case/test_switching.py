@@ -11,6 +11,7 @@ from unlanded.case.loading import load_case, read_case
 from unlanded.case.runs import run_of, switched_of
 from unlanded.case.saving import save_case
 from unlanded.physics.burden import Burden
+from unlanded.study.ends import Driven
 from unlanded.study.readings import Pair
 
 QUAY = site("tern-quay")
@@ -107,6 +108,12 @@ def test_the_line_is_the_first_unless_given() -> None:
     assert run_of(content).near["brown"].phase == "L1"  # type: ignore[union-attr]
     other = read_case(changed(three, ('arrangement =', 'line = "L3"\narrangement ='))).content
     assert run_of(other).near["brown"].phase == "L3"  # type: ignore[union-attr]
+    for switching in DRAWN:
+        third = changed(switched(switching), ("phases = 1", "phases = 3"),
+                        ("arrangement =", 'line = "L3"\narrangement ='))
+        near = run_of(read_case(third).content).near.values()
+        fed = {t.phase for t in near if isinstance(t, Driven)}
+        assert fed == (set() if "at supply" in switching else {"L3"})
     (said,) = refusals(changed(three, ('arrangement =', 'line = "L4"\narrangement =')))
     assert "run.switching.line: is not a line of the supply of this case; given L4." in said
 

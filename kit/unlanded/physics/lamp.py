@@ -31,7 +31,8 @@ def rectified_current(
     The source is taken as conductance beside capacitance, fitted at `frequency`: between two
     moments of conduction its capacitance is recharged, in conduction the voltage stays. A source
     that is not capacitive has no such dead time: its current is what drives the difference of
-    voltages, while there is one. A capacitance alone passes 4 f C (√2 V − V₀), the charge pump's formula:
+    voltages, while there is one. A capacitance alone passes 4 f C (√2 V − V₀), the charge pump's
+    formula:
 
     >>> z = 1 / (2j * np.pi * 50 * 10e-9)
     >>> i = rectified_current(voltage=100.0, impedance=z, frequency=50.0, conducts_from=60.0)
@@ -44,7 +45,8 @@ def rectified_current(
     omega = 2 * np.pi * frequency
     c, g = y.imag / omega, np.maximum(y.real, 0.0)
     stiff = c * omega <= 1e-3 * np.abs(y)
-    return np.where(stiff, _solid(v, conducts_from) * np.abs(y), _clamped(v, np.where(stiff, 1.0, c), g, omega, conducts_from))
+    return np.where(stiff, _solid(v, conducts_from) * np.abs(y),
+                    _clamped(v, np.where(stiff, 1.0, c), g, omega, conducts_from))
 
 
 def _solid(v: Real, level: float) -> Real:
