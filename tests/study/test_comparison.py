@@ -13,7 +13,7 @@ from unlanded.physics.section import Conductor, Plane, Section
 from unlanded.reference.loads import threshold
 from unlanded.study.arrangements import Cores
 from unlanded.study.comparison import Switched, alternatives, compare, rearranged
-from unlanded.study.ends import Bonded, Driven, Ends, Joined, Open
+from unlanded.study.ends import Bonded, Driven, Ends, Joined, Open, Through
 from unlanded.study.operation import Watched
 from unlanded.study.run import Run
 from unlanded.study.supply import Supply
@@ -104,6 +104,10 @@ def test_a_neutral_that_comes_another_way_keeps_doing_so() -> None:
     found = words(away, near={"c": Bonded("earth"), "d": Bonded("earth")})
     assert ("switched live", ("a", "b")) in found
     assert "contact at supply" not in [word for word, _ in found]
+    # Nor is a spare core made one where the case's own arrangement has none.
+    assert words(away)[1:] == [
+        ("remote contact", ("a", "b")), ("contact at supply", ("a", "c")),
+        ("switched live", ("a", "b")), ("switched neutral", ("a", "b")), ("two-way", ("b", "a"))]
 
 
 def test_the_other_ends_stay_as_they_are() -> None:
@@ -113,3 +117,14 @@ def test_the_other_ends_stay_as_they_are() -> None:
     assert made.near["d"] == Bonded("earth")
     assert made.near["c"] == made.far["c"] == Open()
     assert made.matrix is run.matrix
+
+
+def test_a_spare_core_gets_its_new_ends() -> None:
+    remote = Switched("remote contact", Cores("a", "b"), Burden(1e3))
+    made = rearranged(run_of(remote), remote, replace(remote, word="switched live",
+                                                      cores=Cores("a", "b", "c")))
+    assert made.near == {"a": Driven("L"), "b": Open(), "c": Bonded("N"), "d": Open()}
+    contact = Switched("contact at supply", Cores("a", neutral="c"), Burden(1e3))
+    made = rearranged(run_of(contact), contact, replace(contact, word="two-way",
+                                                        cores=Cores("a", "b", "c")))
+    assert made.far == {"a": Open(), "b": Through(Burden(1e3), "c"), "c": Open(), "d": Open()}

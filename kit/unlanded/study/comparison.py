@@ -74,7 +74,7 @@ def compare(
 def alternatives(run: Run, built: Switched) -> Iterator[Switched]:
     """The case's own arrangement, then the others that the cable has cores for."""
     yield built
-    spares = (n for n in run.spares if n not in built.cores.names)
+    spares = iter(run.spares)
     switched = built.cores.switched or next(spares, None)
     neutral = built.cores.neutral or next(spares, None)
     own = replace(built.cores, switched=switched, neutral=neutral)
