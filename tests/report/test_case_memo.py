@@ -11,7 +11,7 @@ from unlanded.report import case_memo
 from unlanded.report.case_memo import case_contents
 from unlanded.report.folder import Contents, results_text
 from unlanded.report.investigation import Investigation
-from unlanded.report.memo import Caution, Verbatim
+from unlanded.report.memo import Caution, Paragraph, Verbatim
 
 DAY = datetime.date(2026, 3, 9)
 
@@ -28,6 +28,15 @@ def test_the_order_of_the_parts(contents: Contents) -> None:
     assert headings[:4] == ["Summary", "The circuit", "Caution", "Expected readings"]
     assert headings[-3:] == ["Assumptions", "Sources", "The case"]
     assert len(set(headings)) == len(headings)
+
+
+def test_the_summary_begins_with_what_the_case_asks(
+    moor: Investigation, house: Investigation, quay: Investigation
+) -> None:
+    for site, begun in ((moor, "With its contacts"), (house, "To the current"),
+                        (quay, "With no instrument")):
+        said = [b.text for b in case_memo.summary_part(site).blocks if isinstance(b, Paragraph)]
+        assert said[1].startswith(begun)
 
 
 def test_a_part_that_is_not_asked_for_is_left_out(

@@ -76,6 +76,7 @@ def test_the_summary_has_the_finding_and_the_next_measurement(quay: Investigatio
     assert isinstance(paragraph, Paragraph)
     assert paragraph.text.startswith("The readings on “black” are what capacitive coupling")
     assert "The next measurement that would tell most is" in paragraph.text
+    assert re.search(r"it would tell little \(0\.\d\d bit\)", paragraph.text)
 
 
 def test_results_are_complete_and_add_up(quay: Investigation) -> None:

@@ -95,6 +95,20 @@ def test_alder_mill_shows_what_practice_knows(mill: Investigation) -> None:
     assert "recommended" not in said  # a rule for other devices than this
 
 
+def test_a_run_in_feet_leaks_per_foot(mill: Investigation) -> None:
+    said = " ".join(b.text for b in walk(margin_part(mill)) if isinstance(b, Paragraph))
+    assert "This run leaks 387 nA per foot." in said  # 9.66 µA over 25 ft
+
+
+def test_a_margin_below_nothing_is_said_to_be_exceeded(
+    house: Investigation, mill: Investigation
+) -> None:
+    exceeded, kept = ([b.text for b in margin_finding(site) if isinstance(b, Paragraph)]
+                      for site in (house, mill))
+    assert "(below 0: exceeded)" in exceeded[0]
+    assert "exceeded" not in kept[0]
+
+
 def test_the_summary_names_what_trips(mill: Investigation) -> None:
     block, = margin_finding(mill)
     assert isinstance(block, Paragraph)

@@ -15,8 +15,8 @@ def test_the_demo_log(house: Investigation) -> None:
     assert part is not None
     log = next(b for b in part.blocks if isinstance(b, Part) and b.heading == "The current log")
     said = " ".join(b.text for b in log.blocks if isinstance(b, Paragraph))
-    assert "The log has 1993 rows. 1 could not be read and are left out" in said
-    assert "besides 1 gaps of together 2 h" in said
+    assert "Left out, since they could not be read: 1." in said
+    assert "with nothing for 2 h (gaps: 1)" in said
     assert "Europe/London" in said
     bad = next(b for b in log.blocks if isinstance(b, Bullets))
     assert "row 404" in bad.items[0]

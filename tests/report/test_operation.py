@@ -19,6 +19,7 @@ from unlanded.report.operation import (
     operation_results,
     operation_sources,
     operations,
+    states_table,
 )
 from unlanded.report.tables import Table
 
@@ -31,6 +32,22 @@ def test_the_relay_of_larkmoor_stays_and_is_told(moor: Investigation) -> None:
     assert isinstance(finding, Paragraph)
     assert "the interlock relay may stay operated" in finding.text
     assert "A resistor of" in finding.text
+
+
+def test_a_load_that_only_its_expected_level_lets_go_is_not_said_to(moor: Investigation) -> None:
+    card = operations(moor)[1]
+    assert card.level < card.watched.limits[0] < card.high
+    (finding,) = operation_finding(moor)
+    assert isinstance(finding, Paragraph)
+    assert "the input card may stay on" in finding.text
+    assert f"which {100 * (1 - card.chances[0]):.0f} % of the draws pass" in finding.text
+    assert states_table((card,)).rows[0][4] == "may stay on"
+
+
+def test_a_margin_far_over_is_told_as_a_multiple(moor: Investigation) -> None:
+    relay, card = states_table(operations(moor)).rows
+    # 81.5 V of 34.5 V, 42 V of 44 V.
+    assert (relay[5], card[5]) == ("2.4 × it", "5 %")
 
 
 def test_part_has_states_cures_pictures_and_a_caution(moor: Investigation) -> None:

@@ -45,6 +45,13 @@ def test_ranking_is_by_chance_then_margin(house: Screening) -> None:
         1e3 * house.screened.worst[order[0]], rel=5e-3, abs=0)
 
 
+def test_a_chance_is_told_no_finer_than_the_draws_allow(house: Screening) -> None:
+    # 0.048 % and 0.042 % of 256 draws; the others never reach the band.
+    assert [row[-1] for row in ranking_table(house).rows] == [
+        "0.05 %", "0.04 %", *["none drawn"] * 5]
+    assert "a chance of a trip of 0.05 %" in screen_summary(house)
+
+
 def test_cells_that_begin_like_a_formula_are_neutral_in_the_export(house: Screening) -> None:
     # Such names are refused when a register is read; the export does not rely on that.
     devices = {f"=cmd({name})": device for name, device in house.register.devices.items()}

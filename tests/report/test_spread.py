@@ -22,6 +22,15 @@ def test_the_input_to_pin_down_is_named_everywhere(moor: Investigation) -> None:
     assert f"Pin down the {first} first" in words(part.blocks)
 
 
+def test_what_lies_at_random_is_not_to_be_pinned_down(house: Investigation) -> None:
+    part = spread_part(house)
+    assert part is not None
+    said = words(spread_finding(house)) + words(part.blocks)
+    assert "How the singles lie decides what the digital meter (10 MΩ) shows: nearly all" in said
+    assert "count on the whole range" in said
+    assert "pin down" not in said.lower()
+
+
 def test_inputs_stand_with_their_limits(moor: Investigation) -> None:
     part = spread_part(moor)
     assert part is not None

@@ -43,6 +43,17 @@ def test_distribution_shades_its_interval(tmp_path: Path) -> None:
     draw(figure, tmp_path / "curve.png")
 
 
+def test_a_size_is_never_drawn_below_0() -> None:
+    # The half-normal density is highest at 0, and exp(-1/2) of that at one standard deviation.
+    sample = np.abs(np.random.default_rng(1).normal(0.0, 10.0, 4000))
+    (line,) = distribution_figure(sample, (0.3, 22.4), 6.7, what="the reading", unit="V",
+                                  coverage=0.95).lines
+    assert line.x[0] == 0.0
+    assert line.y[0] > 0.9
+    at = float(np.interp(10.0, line.x, line.y) / line.y[0])
+    assert at == pytest.approx(np.exp(-0.5), rel=0.06, abs=0)
+
+
 def test_level_against_length_with_its_limits(tmp_path: Path) -> None:
     lengths = np.linspace(10, 100, 10)
     figure = level_figure(lengths, lengths, (0.9 * lengths, 1.1 * lengths), name="Relay K1",

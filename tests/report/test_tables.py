@@ -29,6 +29,13 @@ def test_no_cell_is_run_by_a_spreadsheet(cell: str, safe: str) -> None:
     assert neutral(cell) == safe
 
 
+def test_a_number_keeps_its_unit_on_its_line() -> None:
+    table = Table("t", "T.", (Column("Core"), Column("Remark")),
+                  (("spare", "falls on the meter of 3 kΩ"),))
+    assert not any(line.rstrip().endswith(" 3") for line in plain(table, 30).splitlines())
+    assert "3 kΩ" in plain(table, 30)
+
+
 def test_csv_is_read_back_as_it_was(tmp_path: Path) -> None:
     odd = Table("odd", "Odd.", (Column("A, B"), Column("C", "Ω")),
                 (('say "no"', "1,5"), ("two\nlines", "=2+2")))

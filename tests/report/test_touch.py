@@ -4,7 +4,9 @@ from collections.abc import Callable
 
 import pytest
 
-from unlanded.report.investigation import Investigation
+from case_text import SITES
+from unlanded.case.loading import load_case
+from unlanded.report.investigation import Investigation, investigate
 from unlanded.report.memo import Caution, Paragraph
 from unlanded.report.tables import Table
 from unlanded.report.touch import touch_finding, touch_part, touch_results, touch_sources
@@ -27,6 +29,15 @@ def test_what_can_be_felt_is_in_the_summary(moor: Investigation, quay: Investiga
     assert "can be felt" in finding.text
     assert "must be bonded to earth" in finding.text
     assert touch_finding(quay) == []  # 85 m drive less than half a milliampere
+
+
+def test_what_only_some_draws_pass_is_told() -> None:
+    # 480 µA as computed; the screen's capacitance to earth is little known.
+    hill = investigate(load_case(SITES / "chalk-hill.toml"))
+    (finding,) = touch_finding(hill)
+    assert isinstance(finding, Paragraph)
+    assert "480 µA (up to 5" in finding.text
+    assert "may pass 500 µA; as computed below what people feel" in finding.text
 
 
 def test_no_conductor_is_called_free_of_danger(sites: tuple[Investigation, ...]) -> None:

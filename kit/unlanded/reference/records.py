@@ -27,7 +27,9 @@ class Source:
     year: int | None = None
 
     def __str__(self) -> str:
-        year = f":{self.year}" if self.year else ""
+        # A standard's number has its year behind a colon; a paper's title does not.
+        form = ":{}" if self.title[-1:].isdigit() else " ({})"
+        year = form.format(self.year) if self.year else ""
         clause = f", {self.clause}" if self.clause else ""
         mark = {"seen": "", "from memory": " [from memory]",
                 "common practice": " [common practice, no source]",

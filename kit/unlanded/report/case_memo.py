@@ -47,8 +47,12 @@ CAUTION = (
 
 
 def summary_part(investigation: Investigation) -> Part:
-    """What was found, with the numbers: the blocks of each of `FINDINGS`."""
-    return Part("Summary", tuple(b for finding in FINDINGS for b in finding(investigation)))
+    """What was found, with the numbers: the blocks of `FINDINGS`, what the case asks for first."""
+    asked: list[Callable[[Investigation], Sequence[Block]]] = [circuit_finding, operation_finding]
+    if investigation.case.content.standing:  # the case is about the device, then, not a reading
+        asked.append(margin_finding)
+    order = [*asked, *(f for f in FINDINGS if f not in asked)]
+    return Part("Summary", tuple(b for finding in order for b in finding(investigation)))
 
 
 def caution_part(_: Investigation) -> Part:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Iterator, Sequence
 from functools import lru_cache
 from typing import Any
@@ -42,13 +41,16 @@ from .investigation import Investigation
 from .margin_figures import per_cent
 from .memo import Block, Bullets, Caution, Paragraph, Part
 from .tables import Column, Table, plain
-from .words import listed, pair_words, printable
+from .words import filled, listed, pair_words
 
 PICTURED = 2  # suspects with pictures of their own
 SUGGESTED = 5  # measurements in the table
 SAID = 3  # causes whose predictions are told
 NEGLIGIBLE = 1e-4  # share of a cause that is not listed
 WORTH = 0.02  # bit: a measurement that tells less is not suggested
+LITTLE = 0.2  # bit: a measurement that tells less hardly changes the odds
+INSULATION_TEST = ("An insulation test with direct voltage, with the run isolated, would tell a "
+                   "leakage from coupling.")
 
 CAUTION = (
     "Odds are not proof. They hold for the causes that are named here and for a run as it is "
@@ -121,7 +123,8 @@ def causes_finding(investigation: Investigation) -> list[Block]:
     said = [headline(found, f) for f in findings(found)]
     best = next(iter(worth_taking(investigation)), None)
     if best is not None:
-        said.append(f"The next measurement that would tell most is {_next_words(best)}.")
+        said.append(f"The next measurement that would tell most is {_next_words(best)}"
+                    f"{_little(best)}.")
     return [Paragraph(" ".join(said))]
 
 
@@ -188,10 +191,11 @@ def next_blocks(investigation: Investigation) -> Iterator[Block]:
     worth = worth_taking(investigation)
     if not worth:
         yield Paragraph("No measurement with these instruments would tell the remaining causes "
-                        "apart. An insulation test with direct voltage, with the run isolated, "
-                        "would tell a leakage from coupling.")
+                        f"apart. {INSULATION_TEST}")
     else:
-        yield Paragraph(f"Most would be told by {_next_words(worth[0])}.")
+        little = _little(worth[0])
+        yield Paragraph(f"Most would be told by {_next_words(worth[0])}{little}."
+                        f"{f' {INSULATION_TEST}' if little else ''}")
         yield next_table(found, worth)
         yield next_figure(simplest(prospects))
     if barred := sorted({candidate_words(p.candidate) for p in prospects if not p.allowed}):
@@ -230,6 +234,11 @@ def _predicted_words(p: Prospect, cause: Cause) -> str:
     return texts[0] if texts[0] == texts[1] else " to ".join(texts)
 
 
+def _little(p: Prospect) -> str:
+    """What to say of a measurement that is the best and yet no help."""
+    return f", and it would tell little ({p.bits:.2f} bit)" if p.bits < LITTLE else ""
+
+
 def _next_words(p: Prospect) -> str:
     return f"the {candidate_words(p.candidate)}"
 
@@ -255,8 +264,8 @@ def _method(found: Explanation) -> Iterator[str]:
     yield ("How sure a finding is as worded is the chance that the true cause is the one that it "
            "names, or one of those, or a leakage that it says cannot be excluded. It names one "
            f"cause alone from {100 * SURE:.0f} %, and otherwise as many as that takes; where one "
-           f"reading alone takes it over {100 * RESTS:.0f} %, it says which. Ranges are those "
-           "that 90 % lies in.")
+           f"reading alone takes it over {100 * RESTS:.0f} %, it says which. It is not the share "
+           "of one cause alone, which the table of odds has. Ranges are those that 90 % lies in.")
     yield "All readings explain one state of the run; its unknowns are shared by all conductors."
 
 
@@ -272,7 +281,7 @@ def causes_text(investigation: Investigation, width: int) -> str:
         blocks.append(readings_table(found))
     blocks += [odds_table(found, made), *next_blocks(investigation)]
     return "\n\n".join(
-        plain(b, width) if isinstance(b, Table) else textwrap.fill(printable(b.text), width)
+        plain(b, width) if isinstance(b, Table) else filled(b.text, width)
         for b in blocks if isinstance(b, Table | Paragraph))
 
 

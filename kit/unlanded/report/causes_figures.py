@@ -166,7 +166,7 @@ def next_figure(prospects: Sequence[Prospect]) -> Figure:
         key="next", title="The next measurement",
         x=even_axis("Expected information on the causes", "bit", 0.0,
                     max(0.1, *(p.bits for p in best))),
-        y=_rows([cut(candidate_words(p.candidate), 58) for p in best]),
+        y=_rows([cut(candidate_words(p.candidate), 66) for p in best]),
         caption="How much each measurement is expected to reduce what is not known of the causes. "
         "Those that could trip the device, or pass the instrument's range, are left out.",
         alternative=f"Bars: {listed(said)}.",
@@ -191,7 +191,7 @@ def doubtful(found: Explanation) -> tuple[int, ...]:
 
 
 def _short(k: int, r: Observation) -> str:
-    return f"{k + 1}: {cut(f'{r.text}, {r.instrument.name}', 34)}"
+    return f"{k + 1}: {cut(f'{r.text}, {r.instrument.name}', 44)}"
 
 
 def _names(r: Observation) -> set[str]:

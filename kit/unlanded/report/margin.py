@@ -16,7 +16,7 @@ from ..study.inrush import Inrush, run_inrush
 from ..study.residual import Margin, added_pieces, longest_run, most_pieces
 from ..study.standing import without_line
 from ..study.trip import MeasuredTrip, measured_trips
-from ..units import show, show_length
+from ..units import FOOT, show, show_length
 from .investigation import Investigation
 from .margin_figures import added_figure, budget_figure, per_cent, trip_time_figure
 from .margin_log import log_blocks, milliamperes
@@ -132,7 +132,8 @@ def _verdict_words(margin: Margin) -> str:
         to, _ = margin.to(margin.recommended)
         words += (f"; to the recommended share, {show(margin.recommended, 'A')}, it is "
                   f"{show(to, 'A')} as expected")
-    return f"{words}. {_chance_words(margin)}"
+    below = " (below 0: exceeded)" if min(worst, margin.to(margin.recommended)[0]) < 0 else ""
+    return f"{words}{below}. {_chance_words(margin)}"
 
 
 def _chance_words(margin: Margin) -> str:
@@ -182,8 +183,9 @@ def _run_words(investigation: Investigation, margin: Margin) -> Iterator[str]:
     if abs(own) > 0:
         limit = _aim(margin)
         alone = show_length(longest_run(run, limit), customary=customary)
-        yield (f"This run leaks {show(abs(own) / run.length, 'A')} per metre. Alone it would reach "
-               f"{show(limit, 'A')} at {alone}.")
+        unit, size = ("foot", FOOT) if customary else ("metre", 1.0)
+        yield (f"This run leaks {show(abs(own) / run.length * size, 'A')} per {unit}. Alone it "
+               f"would reach {show(limit, 'A')} at {alone}.")
         left = longest_run(run, limit, others=complex(margin.fundamental.mean()) - own)
         if left == 0:
             yield "What else stands behind the device exceeds that already."
@@ -320,8 +322,10 @@ def margin_sources(investigation: Investigation) -> Iterator[tuple[str, Source]]
         return
     for source in margin.device.sources:
         yield "residual-current device", source
-    yield "recommended share of standing current", STANDING_SHARE.source
-    yield "ring wave", ring_wave(margin.device).source
+    if math.isfinite(margin.recommended):
+        yield "recommended share of standing current", STANDING_SHARE.source
+    if margin.device.kind in BREAK_TIME:
+        yield "ring wave", ring_wave(margin.device).source
     for entry in investigation.case.content.standing:
         if entry.equipment is not None:
             yield f"leakage of {entry.name}", entry.equipment.source

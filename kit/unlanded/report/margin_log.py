@@ -15,21 +15,22 @@ from .tables import Column, Table
 
 def log_blocks(found: History, intake: Intake, margin: Margin) -> Iterator[Block]:
     """How the log was read, what it says, its largest steps and its picture."""
-    yield Paragraph(f"The log has {intake.rows} rows. {intake.bad_rows} could not be read and are "
-                    f"left out, {intake.repeated} repeat a time, {intake.disordered} came late.")
+    yield Paragraph(f"The log has {intake.rows} rows. Left out, since they could not be read: "
+                    f"{intake.bad_rows}. Of a time that was there already: {intake.repeated}. Out "
+                    f"of order: {intake.disordered}.")
     if intake.bad:
         yield Bullets(tuple(map(str, intake.bad)))
     low, high = margin.credible
     current = found.log.current
     within = float(((current >= low) & (current <= high)).mean())
-    words = (f"Recorded: {_span(found.recorded)}, besides {found.gaps} gaps of together "
-             f"{_span(found.missing)}; {found.over_range} samples over range. Median "
+    words = (f"Recorded: {_span(found.recorded)}, with nothing for {_span(found.missing)} "
+             f"(gaps: {found.gaps}); samples over range: {found.over_range}. Median "
              f"{show(found.percentiles[50], 'A')}, 95 % of the time at most "
              f"{show(found.percentiles[95], 'A')}, 99 % at most "
              f"{show(found.percentiles[99], 'A')}. The computed {show(low, 'A')} to "
              f"{show(high, 'A')} holds {per_cent(within)} of the samples. Above "
              f"{show(found.limit, 'A')} for {_span(found.above)}, the longest stretch "
-             f" {_span(found.longest_above)}")
+             f"{_span(found.longest_above)}")
     if found.above > 0:
         hour = int(found.above_by_hour.argmax())
         words += (f", most of it from {hour}:00 to {hour + 1}:00 on the site's clock "

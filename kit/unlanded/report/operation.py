@@ -25,7 +25,7 @@ from .investigation import Investigation
 from .memo import Block, Caution, Paragraph, Part
 from .spread_figures import level_figure
 from .tables import Column, Table
-from .words import listed, pair_words, percent
+from .words import capital, listed, pair_words, percent
 
 Real = NDArray[np.float64]
 POINTS = 15  # lengths of the picture
@@ -70,16 +70,16 @@ def operation_finding(investigation: Investigation) -> list[Block]:
         w = found.watched
         cure = next((c for c in found.cures if c.works and c.bleeder), None)
         said.append(
-            f"With its contacts open, the {w.name} {found.state}: {show(found.level, w.unit)} is "
+            f"With its contacts open, the {w.name} {_state(found)}: {show(found.level, w.unit)} is "
             f"coupled into it ({show(found.low, w.unit)} to {show(found.high, w.unit)}), and it is "
-            f"sure to be off at {show(w.limits[0], w.unit)}.")
-        if found.margin < 0 and cure and cure.bleeder:
+            f"sure to be off at {show(w.limits[0], w.unit)}{_beyond(found)}.")
+        if found.high > w.limits[0] and cure and cure.bleeder:
             said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
                         f"{show(cure.watts, 'W')} while on, would let go of it.")
         # Not the neutral's: a load that stays live is no advice.
         off = [c.words for c in comparisons(investigation, found)
                if c.found.high <= w.limits[0] and c.switched.word != "switched neutral"]
-        if found.margin < 0 and off:
+        if found.high > w.limits[0] and off:
             said.append(f"Of other arrangements of the same cable, {listed(off, 'or')} would.")
     return [Paragraph(" ".join(said))] if said else []
 
@@ -133,9 +133,27 @@ def operation_sources(investigation: Investigation) -> Iterator[tuple[str, Sourc
 
 
 def _notes(found: tuple[Operation, ...]) -> str:
-    notes = dict.fromkeys(f"{o.watched.threshold.name}: {o.watched.threshold.note}"
+    notes = dict.fromkeys(f"{capital(o.watched.threshold.name)}: {o.watched.threshold.note}."
                           for o in found if o.watched.threshold.note)
-    return f"{listed(list(notes))}." if notes else ""
+    return " ".join(notes)
+
+
+def _state(o: Operation) -> str:
+    """What the load does; of one that is expected to be off, what the band leaves open."""
+    off, on = o.watched.limits
+    return o.state if o.level > off else o.watched.state(min(o.high, (off + on) / 2))
+
+
+def _beyond(o: Operation) -> str:
+    """How many draws pass the limit that the expected level keeps."""
+    if o.level > o.watched.limits[0] or o.chances[0] == 1:
+        return ""
+    return f", which {percent(1 - o.chances[0])} of the draws pass"
+
+
+def _over(o: Operation) -> str:
+    """The margin; one far over as a multiple of the limit."""
+    return percent(o.margin) if o.margin > -1 else f"{1 - o.margin:.2g} × it"
 
 
 def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Table:
@@ -144,7 +162,7 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
         w = o.watched
         off, on = w.limits
         return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}", _level(o),
-                show(off, w.unit), show(on, w.unit), o.state, percent(o.margin),
+                show(off, w.unit), show(on, w.unit), _state(o), _over(o),
                 " / ".join(map(percent, o.chances)), _lengths_off(o, customary))
     return Table(
         "operation", "Loads with their contacts open.",
@@ -152,9 +170,9 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
          Column("Sure on at", "", "right"), Column("State"), Column("Margin", "", "right"),
          Column("Off / either / on", "", "right"), Column("Sure off for runs", "", "right")),
         tuple(map(row, found)),
-        f"In brackets: what {percent(COVERAGE)} of the draws allow. Margin: how far under the "
-        "voltage at which it is sure to be off, as a share of it. Off / either / on: shares of "
-        "the draws.")
+        f"In brackets: what {percent(COVERAGE)} of the draws allow. State: what the band "
+        "leaves open. Margin: how far under what it is sure to be off at, as a share of it; from "
+        "twice that, as a multiple. Off / either / on: shares of the draws.")
 
 
 def _level(o: Operation) -> str:
@@ -167,7 +185,7 @@ def _lengths_off(o: Operation, customary: bool) -> str:
         def shown(x: float) -> str:
             return show_length(x, customary=customary)
         if met.nowhere:
-            return f"none from {shown(met.low)}"
+            return f"none of {shown(met.low)} or more"
         return f"all to {shown(met.high)}" if met.everywhere else met.words(shown)
     return f"{length(o.longest)}\n({length(o.longest_covered)})"
 
@@ -181,11 +199,11 @@ def comparison_table(
         own = " (as it is)" if c.as_built else ""
         current = (show(o.current, "A"),) if watched.unit == "V" else ()
         return (f"{c.words}{own}\n{pair_words(o.watched.pair.a, o.watched.pair.b)}", _level(o),
-                *current, o.state, _lengths_off(o, customary))
+                *current, _state(o), _lengths_off(o, customary))
 
     watched = others[0].found.watched
     current = (Column("Current", "", "right"),) if watched.unit == "V" else ()
-    mind = " ".join(f"{word[:1].upper()}{word[1:]}: {note}." for word, note in NOTES.items()
+    mind = " ".join(f"{capital(word)}: {note}." for word, note in NOTES.items()
                     if word in {c.switched.word for c in others})
     return Table(
         f"arrangements-{number}", f"The {watched.name} in other arrangements of its contacts: the "
@@ -203,11 +221,11 @@ def cures_table(found: Operation, number: int) -> Table:
     return Table(
         f"cures-{number}", f"Cures for the {found.watched.name}, those that work first, by the "
         "watts they take while the circuit is on.",
-        (Column("Cure"), Column("Leaves less than", "", "right"), Column("Load then"),
+        (Column("Cure"), Column("Leaves at most", "", "right"), Column("Load then"),
          Column("Takes", "", "right"), Column("Mind")),
         tuple((c.name, show(c.level, unit), c.state, show(c.watts, "W"), c.note or "–")
               for c in found.cures),
-        f"Leaves less than: in {percent(COVERAGE)} of the draws.")
+        f"Leaves at most: in {percent(COVERAGE)} of the draws.")
 
 
 def _figure(investigation: Investigation, found: Operation) -> Figure:

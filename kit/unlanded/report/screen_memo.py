@@ -51,7 +51,18 @@ def _row(screening: Screening, rank: int, k: int, name: str, circuits: int) -> t
     return (
         str(rank), name, register.boards[k], f"{1e3 * register.devices[name].rated:g}",
         str(circuits), _ma(screening.arithmetic[k]), _ma(s.expected[k]), _ma(worst),
-        _ma(s.non_operating[k] - worst), _ma(s.recommended[k] - worst), per_cent(s.chance[k]))
+        _ma(s.non_operating[k] - worst), _ma(s.recommended[k] - worst), _chance(s.chance[k]))
+
+
+def _chance(share: float) -> str:
+    """A chance from few draws: of one digit under 1 %, and never nothing at all.
+
+    >>> _chance(0.00048), _chance(0.0), _chance(0.043)
+    ('0.05 %', 'none drawn', '4.3 %')
+    """
+    if share == 0:
+        return "none drawn"
+    return f"{100 * share:.1g} %" if 1e-4 <= share < 0.01 else per_cent(share)
 
 
 def _ma(amperes: float) -> str:
@@ -86,11 +97,13 @@ def screen_summary(screening: Screening) -> str:
     over = int((s.worst > s.non_operating).sum())
     shared = int((s.expected > s.recommended).sum())
     first = list(screening.register.devices)[int(s.ranking[0])]
+    chance = float(s.chance[s.ranking[0]])
+    how = (f"with a chance of a trip of {_chance(chance)} at a moment taken at random" if chance
+           else "though no draw of it reaches the band in which it may trip")
     return (f"{len(s.worst)} devices with {len(screening.register.owner)} circuits. At the worst "
             f"credible standing current {over} of them are above what must not trip them, and "
             f"{shared} are expected above the recommended share. The most pressing is “{first}”, "
-            f"with a chance of a trip of {per_cent(float(s.chance[s.ranking[0]]))} at a moment "
-            "taken at random.")
+            f"{how}.")
 
 
 def regrouping_part(screening: Screening) -> Part | None:
@@ -164,7 +177,7 @@ def _assumptions(screening: Screening) -> Part:
         "Balanced circuits leak nothing at the supply's frequency.",
         "A leakage that was measured stands for the circuit's cable and equipment.",
         f"Each device is drawn {POINTS} times, the same way every time; a chance below 1 % is an "
-        "order of magnitude.",
+        "order of magnitude. “None drawn”: no draw reached the band in which the device may trip.",
         *(f"Source: {s}." for s in sources),
     )),))
 

@@ -30,7 +30,7 @@ from .investigation import Investigation
 from .memo import Block, Bullets, Paragraph, Part
 from .spread import main_row
 from .tables import Column, Table
-from .words import pair_words
+from .words import capital, pair_words, percent
 
 SHORTEST, LONGEST = 1.0, 3e3  # metres
 
@@ -44,14 +44,15 @@ def sizing_part(investigation: Investigation) -> Part | None:
     rows = (*_lengths(investigation, table, pair), *_window_rows(window, table),
             *_bleeder_rows(cure, table), *_circuits(investigation))
     blocks: list[Block] = [
-        Paragraph(f"Answers for {pair_words(pair.a, pair.b)}, so that {COVERAGE:.0%} of the draws "
-                  "meet the limit."),
+        Paragraph(f"Answers for {pair_words(pair.a, pair.b)}, so that {percent(COVERAGE)} of the "
+                  "draws meet the limit."),
         Table("sizing", "Questions asked backwards.",
               (Column("Question"), Column("Limit", "", "right"), Column("Answer")), rows)]
     if window.empty:
-        blocks += [Paragraph("No meter does both: one low enough to collapse the coupled voltage "
-                             "trips the device or disturbs a genuine circuit too far. Instead:"),
-                   Bullets(tuple(f"{a[:1].upper()}{a[1:]}." for a in window.alternatives))]
+        trips = "trips the device or " if window.trip else ""
+        blocks += [Paragraph("No meter does all of it: one low enough to collapse the coupled "
+                             f"voltage {trips}disturbs a genuine circuit too far. Instead:"),
+                   Bullets(tuple(f"{capital(a)}." for a in window.alternatives))]
     blocks.append(Paragraph(
         "A meter within the window tells a coupled voltage from a genuine one as far as the case "
         "describes the circuit. A low reading on it is no proof that a conductor is dead."))

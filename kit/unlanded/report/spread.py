@@ -16,9 +16,11 @@ from .investigation import Investigation
 from .memo import Block, Paragraph, Part
 from .spread_figures import distribution_figure, sensitivity_figure
 from .tables import Column, Table
-from .words import percent, tool_words
+from .words import capital, percent, tool_words
 
 WORTH_NAMING = 0.05  # share of the variance
+NEARLY_ALL = 0.98  # share of the variance from which its estimate tells no more
+AT_RANDOM = "how the singles lie"  # the input that nobody can pin down
 TOGETHER = 0.1  # difference of total and first order from which inputs act together
 
 
@@ -31,9 +33,13 @@ def spread_finding(investigation: Investigation) -> list[Block]:
     if not ranked or ranked[0][2] < WORTH_NAMING:
         return []
     name, _, total = ranked[0]
-    return [Paragraph(f"The input to pin down first is the {name}: {percent(total)} of the "
-                      f"variance of what the {tool_words(row.instrument.name)} shows comes from "
-                      "it.")]
+    what = f"what the {tool_words(row.instrument.name)} shows"
+    share = "nearly all" if total > NEARLY_ALL else percent(total)
+    if name == AT_RANDOM:
+        return [Paragraph(f"{capital(name)} decides {what}: {share} of its variance comes from "
+                          "it.")]
+    return [Paragraph(f"The input to pin down first is the {tool_words(name)}: {share} of the "
+                      f"variance of {what} comes from it.")]
 
 
 def spread_part(investigation: Investigation) -> Part | None:
@@ -89,15 +95,16 @@ POINTS = 128
 def _how(investigation: Investigation) -> str:
     spread = investigation.spread.spread
     width = spread.high - spread.low
-    worst = max((e / w for e, w in zip(spread.error, width, strict=True) if w > 0), default=0.0)
+    errors = sorted(e / w for e, w in zip(spread.error, width, strict=True) if w > 0) or [0.0]
     low, high = float(spread.low[-1]), float(spread.high[-1])
     return (f"What is not known exactly was drawn {spread.draws} times, together with each "
             "instrument's own impedance within its tolerance and its error within its accuracy, "
             "and the run solved for each draw. A range in this memo holds "
-            f"{percent(spread.coverage)} of the draws; its ends are known to {percent(worst)} of "
-            "its width or better. Covers of the same insulation have the same permittivity in "
-            f"every draw. The run's own residual current lies in {show(low, 'A')} to "
-            f"{show(high, 'A')}.")
+            f"{percent(spread.coverage)} of the draws; its ends are known to "
+            f"{percent(errors[int(0.9 * (len(errors) - 1))])} of its width or better for nine "
+            f"ranges of ten, to {percent(errors[-1])} at the worst. Covers of the same insulation "
+            "have the same permittivity in every draw. The run's own residual current lies in "
+            f"{show(low, 'A')} to {show(high, 'A')}.")
 
 
 def _inputs(investigation: Investigation) -> Table:
@@ -113,7 +120,7 @@ def _rows(investigation: Investigation) -> Iterator[tuple[str, str, str]]:
     for i in investigation.uncertain.inputs:
         low, high = limits(i.distribution)
         unit, size = _unit(i.name, volts)
-        if i.name == "how the singles lie":
+        if i.name == AT_RANDOM:
             yield i.name, "at random", ""
         elif unit == "%":
             yield i.name, _percent(low), _percent(high)
@@ -138,10 +145,16 @@ def _unit(name: str, volts: float) -> tuple[str, float]:
 
 def _advice(found: Sensitivity, what: str) -> str:
     first, *rest = (r for r in found.ranked() if r[2] >= WORTH_NAMING)
-    words = [f"Pin down the {first[0]} first: known exactly, it would leave "
-             f"{percent(math.sqrt(max(0.0, 1 - first[1])))} of the standard deviation of {what}."]
+    if first[0] == AT_RANDOM:
+        words = [f"{capital(first[0])} decides {what} most, and nobody can tell it: count on the "
+                 "whole range."]
+    else:
+        left = math.sqrt(max(0.0, 1 - first[1]))
+        words = [f"Pin down the {tool_words(first[0])} first: known exactly, it would leave "
+                 f"{percent(left)} of the standard deviation of {what}."]
     if rest:
-        words.append(f"Next comes the {rest[0][0]}.")
+        named = rest[0][0]
+        words.append(f"Next comes {'' if named == AT_RANDOM else 'the '}{tool_words(named)}.")
     if first[2] - first[1] > TOGETHER:
         words.append("It acts together with others, so knowing it alone helps less than its total "
                      "share says.")

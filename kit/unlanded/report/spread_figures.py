@@ -19,7 +19,7 @@ POINTS = 121  # of a curve
 def sensitivity_figure(found: Sensitivity, what: str) -> Figure:
     """A bar for each input: its share of the variance alone, and with what it does together."""
     ranked = found.ranked()[:BARS]
-    names = [cut(name, 34) for name, _, _ in ranked]
+    names = [cut(name, 44) for name, _, _ in ranked]
     alone, whole = (np.clip([r[k] for r in ranked], 0.0, 1.0) * 100 for k in (1, 2))
     said = [f"{name} {total:.0f} %" for (name, _, _), total in zip(ranked, whole, strict=True)]
     return Figure(
@@ -56,7 +56,7 @@ def distribution_figure(
         caption=f"How often {what} came out at each value, over what is not known of the inputs. "
         f"Shaded: {percent(coverage)} of the draws, {words}. Upright: with every input as it is "
         "most likely.",
-        alternative=f"Curve with one hump over {show(x[0], unit)} to {show(x[-1], unit)}; "
+        alternative=f"Curve over {show(x[0], unit)} to {show(x[-1], unit)}; "
         f"{percent(coverage)} of the draws lie in {words}; expected {show(expected, unit)}.",
         numbers=(f"expected {show(expected, unit)}", f"{percent(coverage)} of draws {words}"),
         bands=(Band(x[inside], np.zeros(inside.sum()), height[inside],
@@ -85,7 +85,7 @@ def level_figure(
         key="operation", title=f"{name}: with its contacts open, against run length",
         x=even_axis("Run length", length_unit, 0.0, float(x[-1])),
         y=even_axis(quantity, shown, 0.0, top),
-        caption=f"{quantity} of {name} against the length of the run. Shaded: {percent(coverage)} "
+        caption=f"{quantity}: {name}, against the length of the run. Shaded: {percent(coverage)} "
         "of the draws. Across: what the load is sure to do.",
         alternative=f"Curve rising with run length to {show(float(y[-1]), unit)}; at the run's "
         f"own length {show(here, unit)}. {listed([words for _, words in marks])}.",
@@ -101,13 +101,17 @@ def level_figure(
 def _density(
     values: NDArray[np.float64], ends: tuple[float, float]
 ) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
-    """A smoothed density (scipy's kernel estimate), its crest at 1, with the interval's ends."""
+    """A smoothed density (scipy's kernel estimate), its crest at 1, with the interval's ends.
+
+    A size is never below 0: what the estimate would spread there is turned back.
+    """
     from scipy.stats import gaussian_kde
 
     low, high = values.min(), values.max()
     margin = 0.05 * (high - low)
-    x = np.unique([*np.linspace(low - margin, high + margin, POINTS), *ends])
-    height = gaussian_kde(values)(x)
+    x = np.unique([*np.linspace(max(0.0, low - margin), high + margin, POINTS), *ends])
+    density = gaussian_kde(values)
+    height = density(x) + density(-x)
     return x, height / height.max()
 
 

@@ -13,7 +13,7 @@ from pathlib import Path
 from typing import Literal
 
 from ..errors import Refused
-from .words import printable
+from .words import bound, filled, printable
 
 Align = Literal["left", "right", "centre"]
 
@@ -129,15 +129,15 @@ def plain(table: Table, width: int = 100) -> str:
     parts += ["\n".join(_block(table, cells, block, width)) for block in blocks]
     if table.note:
         parts.append(_fill(table.note, width))
-    return "\n\n".join(parts).replace("\n\n", "\n", 1)
+    return "\n\n".join(parts).replace("\n\n", "\n", 1).replace("\N{NO-BREAK SPACE}", " ")
 
 
 def _fill(text: str, width: int) -> str:
-    return textwrap.fill(_tame(text), width)
+    return filled(_tame(text), width)
 
 
 def _tame(text: str) -> str:
-    return " ".join(printable(text).split())
+    return bound(" ".join(printable(text).split()))
 
 
 def _length(text: str) -> int:

@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-import textwrap
 from collections.abc import Iterator
 
 from .memo import Block, Bullets, Caution, Paragraph, Part, Verbatim
 from .tables import Table, plain
-from .words import printable
+from .words import filled, printable
 
 
 def part_text(part: Part, width: int = 100) -> str:
@@ -27,7 +26,7 @@ def part_text(part: Part, width: int = 100) -> str:
 def _block(block: Block, width: int) -> Iterator[str]:
     match block:
         case Paragraph() | Verbatim():
-            yield textwrap.fill(printable(block.text), width)
+            yield filled(block.text, width)
         case Bullets():
             yield _list(block.items, width)
         case Caution():
@@ -39,5 +38,4 @@ def _block(block: Block, width: int) -> Iterator[str]:
 
 
 def _list(items: tuple[str, ...], width: int) -> str:
-    return "\n".join(textwrap.fill(printable(item), width, initial_indent="• ",
-                                   subsequent_indent="  ") for item in items)
+    return "\n".join(filled(item, width, first="• ", then="  ") for item in items)

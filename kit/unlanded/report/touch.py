@@ -3,7 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from functools import lru_cache
 from typing import Any
+
+import numpy as np
 
 from ..case.inputs import LoadedTable
 from ..reference.limits import (
@@ -16,6 +19,8 @@ from ..reference.limits import (
 )
 from ..reference.records import Source
 from ..study.run import Run
+from ..study.sizing import DRAWS
+from ..study.spread import COVERAGE
 from ..study.touch import (
     Touch,
     induced_voltages,
@@ -23,13 +28,14 @@ from ..study.touch import (
     length_for_current,
     screen_current,
     screening_factor,
+    touch_network,
     touch_sheet,
 )
 from ..units import show, show_length
 from .investigation import Investigation
 from .memo import Block, Caution, Paragraph, Part
 from .tables import Column, Table
-from .words import listed, point_words, screen_words
+from .words import percent, point_words, screen_words
 
 ROWS = 14
 
@@ -47,14 +53,37 @@ _CAUTION = (
 
 def touch_finding(investigation: Investigation) -> list[Block]:
     """The worst of what nothing feeds."""
-    rows = [t for t in touch_sheet(investigation.run) if not t.fed]
-    if not rows or rows[0].current < PERCEPTION_CURRENT.likely:
+    most = most_current(investigation)
+    worst = max((t for t in touch_sheet(investigation.run) if not t.fed),
+                key=lambda t: most[t.point], default=None)
+    if worst is None or most[worst.point] < PERCEPTION_CURRENT.likely:
         return []
-    worst = rows[0]
     return [Paragraph(
         f"A person who touches {point_words(worst.point)} would have {show(worst.current, 'A')} "
-        f"through the body by calculation: {worst.finding}. It must be bonded to earth before work "
-        "on it.")]
+        f"(up to {show(most[worst.point], 'A')}) through the body by calculation: "
+        f"{_finding(worst, most[worst.point])}. It must be bonded to earth before work on it.")]
+
+
+@lru_cache(maxsize=2)
+def most_current(investigation: Investigation) -> Mapping[str, float]:
+    """By end, what the current through the body stays under over the draws, RMS [A]."""
+    drawn = investigation.uncertain.draws(DRAWS)
+    body, _ = touch_network(investigation.run.frequency)
+    most = {}
+    for t in touch_sheet(investigation.run):
+        port = drawn.port(t.point)
+        currents = np.abs(port.voltage / (port.impedance + body))
+        most[t.point] = max(t.current, float(np.quantile(currents, COVERAGE)))
+    return most
+
+
+def _finding(touch: Touch, most: float) -> str:
+    """Against the limits as computed; and the limit that it may pass over the draws."""
+    passed = next((limit for limit in (FIBRILLATION_CURRENT, LET_GO_CURRENT, PERCEPTION_CURRENT)
+                   if touch.current < limit.likely <= most), None)
+    if touch.fed or passed is None:
+        return touch.finding
+    return f"may pass {show(passed.likely, 'A')}; as computed {touch.finding}"
 
 
 def touch_part(investigation: Investigation) -> Part | None:
@@ -67,7 +96,7 @@ def touch_part(investigation: Investigation) -> Part | None:
                   "1500 Ω beside 0.22 µF) would find it between that end and earth; the current "
                   "that an earth bond there would carry; and the charge and energy that the end "
                   "may be left with when the supply goes off at its crest."),
-        _table(rows)]
+        _table(rows, most_current(investigation))]
     if text := _lengths(investigation, rows):
         blocks.append(Paragraph(text))
     blocks += [_induced(investigation, k) for k in range(len(investigation.case.content.loaded))]
@@ -78,6 +107,7 @@ def touch_part(investigation: Investigation) -> Part | None:
 def touch_results(investigation: Investigation) -> list[Mapping[str, Any]]:
     """The ends for results.json."""
     return [{"point": t.point, "fed": t.fed, "unloaded_V": t.unloaded, "body_current_A": t.current,
+             "body_current_high_A": most_current(investigation)[t.point],
              "weighted_current_A": t.weighted, "bond_current_A": t.bonded, "charge_C": t.charge,
              "energy_J": t.energy, "finding": t.finding} for t in touch_sheet(investigation.run)]
 
@@ -93,17 +123,22 @@ def touch_sources(_: Investigation) -> Iterator[tuple[str, Source]]:
         yield what, value.source
 
 
-def _table(rows: tuple[Touch, ...]) -> Table:
+def _table(rows: tuple[Touch, ...], most: Mapping[str, float]) -> Table:
+    def body(t: Touch) -> str:
+        said, high = show(t.current, "A"), show(most[t.point], "A")
+        return said if t.fed or said == high else f"{said}\n(up to {high})"
+
     return Table(
         "touch", "What a person on earth would meet at each end.",
         (Column("End"), Column("Unloaded", "", "right"), Column("Through body", "", "right"),
          Column("Through bond", "", "right"), Column("Charge", "", "right"),
          Column("Energy", "", "right"), Column("Finding")),
-        tuple((point_words(t.point), show(t.unloaded, "V"), show(t.current, "A"),
+        tuple((point_words(t.point), show(t.unloaded, "V"), body(t),
                "the supply's" if t.fed else show(t.bonded, "A"),
                "–" if t.fed else show(t.charge, "C"), "–" if t.fed else show(t.energy, "J"),
-               t.finding) for t in rows[:ROWS]),
-        f"{len(rows) - ROWS} more ends drive less." if len(rows) > ROWS else "")
+               _finding(t, most[t.point])) for t in rows[:ROWS]),
+        f"Up to: in {percent(COVERAGE)} of the draws."
+        + (f" {len(rows) - ROWS} more ends drive less." if len(rows) > ROWS else ""))
 
 
 def _lengths(investigation: Investigation, rows: tuple[Touch, ...]) -> str:
@@ -117,8 +152,8 @@ def _lengths(investigation: Investigation, rows: tuple[Touch, ...]) -> str:
         length = length_for_current(investigation.run, worst.point, limit)
         said.append(f"{show_length(length, customary=investigation.customary)} for "
                     f"{show(limit.likely, 'A')}, {words}")
-    return (f"What {point_words(worst.point)} can drive grows with the run: it takes about "
-            f"{listed(said)}.")
+    return (f"What {point_words(worst.point)} can drive grows with the run. As computed, without "
+            f"the range, it takes about {', and '.join(said)}.")
 
 
 def _induced(investigation: Investigation, number: int) -> Table:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import textwrap
 import unicodedata
 
 from ..physics.network import EARTH
@@ -71,6 +72,15 @@ def percent(share: float) -> str:
     return f"{100 * share:.0f} %".replace("-", "−")
 
 
+def capital(text: str) -> str:
+    """`text` as it begins a sentence.
+
+    >>> capital("relay coil")
+    'Relay coil'
+    """
+    return f"{text[:1].upper()}{text[1:]}"
+
+
 def cut(text: str, length: int) -> str:
     """`text`, no longer than `length`; what is cut off is marked.
 
@@ -106,3 +116,14 @@ def bound(text: str) -> str:
     True
     """
     return _QUANTITY.sub("\N{NO-BREAK SPACE}", text)
+
+
+def filled(text: str, width: int, *, first: str = "", then: str = "") -> str:
+    """`text` for a terminal, in lines of at most `width`; `first` and `then` indent them.
+
+    >>> print(filled("a meter of 3 kΩ", 12))
+    a meter of
+    3 kΩ
+    """
+    return textwrap.fill(bound(printable(text)), width, initial_indent=first,
+                         subsequent_indent=then).replace("\N{NO-BREAK SPACE}", " ")
