@@ -143,6 +143,12 @@ def test_what_does_not_fit_is_refused_at_its_line(old: str, new: str, says: str)
         assert any(s.startswith(f"c.toml line {line}, ") for s in said)
 
 
+@pytest.mark.parametrize("word", ["remote contact", "switched neutral"])
+def test_a_neutral_has_a_part_only_where_the_cable_has_it(word: str) -> None:
+    (said,) = refusals(switched(table(word, live="brown", switched="black", neutral="blue")))
+    assert f"run.switching.neutral: has no part in the arrangement {word}. (it takes live" in said
+
+
 def test_ends_are_asked_for_where_no_arrangement_gives_them() -> None:
     (said,) = refusals(switched("", ""))
     assert "run.ends: is missing. (for example ends = {near" in said
@@ -209,3 +215,14 @@ def test_saving_changes_the_arrangement_and_keeps_the_remarks(folder: Path) -> N
     assert 'travellers = ["black", "brown"]' in text
     assert saved.content.run.switching is not None
     assert saved.content.run.switching.cores.live == "black"
+
+
+def test_a_nameplate_is_an_impedance_at_the_supplys_frequency() -> None:
+    # 5 VA at 230 V are 10.58 kΩ; of them 0.6 are resistance and 0.8 ωL, at 60 Hz 22.45 H.
+    plate = 'apparent_power = "5 VA", power_factor = 0.6, voltage = "230 V"'
+    text = changed(switched(TWO_WAY), ('resistance = "2 kohm"', plate), ("50 Hz", "60 Hz"))
+    content = read_case(text).content
+    built = switched_of(content.run, run_of(content).supply)
+    assert built is not None
+    assert built.load.resistance == pytest.approx(6348.0, rel=1e-6, abs=0)
+    assert built.load.inductance == pytest.approx(22.45, rel=2.3e-4, abs=0)

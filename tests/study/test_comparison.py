@@ -111,10 +111,10 @@ def test_a_neutral_that_comes_another_way_keeps_doing_so() -> None:
 
 
 def test_the_other_ends_stay_as_they_are() -> None:
-    run = run_of(LAMP, near={"d": Bonded("earth")})
+    run = run_of(LAMP, near={"d": Bonded("earth")}, far={"d": Bonded("N")})
     other = replace(LAMP, word="switched neutral", cores=Cores("a", "b"))
     made = rearranged(run, LAMP, other)
-    assert made.near["d"] == Bonded("earth")
+    assert (made.near["d"], made.far["d"]) == (Bonded("earth"), Bonded("N"))
     assert made.near["c"] == made.far["c"] == Open()
     assert made.matrix is run.matrix
 

@@ -12,7 +12,7 @@ from unlanded.physics.layouts import Core, control, laid_up
 from unlanded.physics.packing import packed
 from unlanded.physics.section import Conductor, Pipe, Plane, Section
 from unlanded.study.ends import Driven
-from unlanded.study.run import Run
+from unlanded.study.run import Run, Screen
 from unlanded.study.spread import Input, quasi_random, triangular, uniform, within
 from unlanded.study.supply import Supply
 from unlanded.study.uncertain import (
@@ -144,3 +144,18 @@ def test_stretched_draws_go_length_by_length() -> None:
     assert len(batch) == 48
     assert batch.length[:17].tolist() == [10.0] * 16 + [20.0]
     np.testing.assert_allclose(batch.capacitance[0], batch.capacitance[16], rtol=1e-12)
+
+
+def test_the_capacitance_of_a_screen_to_earth_varies_by_itself() -> None:
+    # The circuit by hand: a core with C₁ to the floating screen, the screen with C₂ to earth. The
+    # screen stands at V C₁ / (C₁ + C₂), and every draw has its own C₂.
+    core = Section((Conductor("core", 0, 0, 1e-3, 2e-3, 3.0),), Pipe(4e-3))
+    run = Run(core, 100.0, Supply(230.0, 50.0), {"core": Driven("L")}, {}, (7e-3,),
+              screen=Screen(15e-3, 200e-12))
+    inner = float(capacitance_matrix(core)[0, 0])
+    outside = np.array([50e-12, 100e-12, 400e-12])
+    found = UncertainRun(run, screen=uniform(50e-12, 400e-12)).at(outside[:, None])
+    volts = np.abs(found.port("screen@far", "earth").voltage)
+    np.testing.assert_allclose(volts, 230 * inner / (inner + outside), rtol=1e-4)
+    assert abs(run.voltage("screen@far")) == pytest.approx(230 * inner / (inner + 200e-12),
+                                                           rel=1e-4, abs=0)
