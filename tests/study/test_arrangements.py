@@ -24,6 +24,7 @@ from unlanded.study.arrangements import (
     switched_in_neutral,
     two_way,
 )
+from unlanded.study.ends import Bonded, Driven
 from unlanded.study.run import Run
 from unlanded.study.supply import Supply
 
@@ -120,3 +121,9 @@ def test_the_neutral_may_come_another_way() -> None:
 def test_a_part_that_is_missing_is_refused(word: Word, cores: Cores, says: str) -> None:
     with pytest.raises(Refused, match=says):
         arranged(word, cores, load=Burden(LOAD))
+
+
+def test_spares_go_to_earth_and_not_to_the_neutral() -> None:
+    # Both are at 0 V; what flows back by earth is residual current, by the neutral it is none.
+    assert spares_earthed({"a": Driven("L")}, ("b", "c")) == {
+        "a": Driven("L"), "b": Bonded("earth"), "c": Bonded("earth")}
