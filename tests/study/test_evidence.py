@@ -49,7 +49,7 @@ def test_a_conjugate_case_has_its_known_evidence_and_posterior() -> None:
     np.testing.assert_allclose(mean, a.T @ np.linalg.solve(covariance, y), rtol=0.01)
 
 
-@pytest.mark.parametrize("s", [0.3, 0.01, 3e-4])
+@pytest.mark.parametrize("s", [0.3, 0.01, 3e-4, 1e-5])
 def test_a_size_that_the_readings_pin_down_sharply_is_found(s: float) -> None:
     # One reading of the size itself, even over 0 to 1: the evidence is the mass within it.
     y = 0.387

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from unlanded.study.modes import PARTS, Problem, closed_in
+from unlanded.study.modes import Problem, closed_in
 
 Array = np.ndarray
 
@@ -34,13 +34,13 @@ def test_a_linear_problem_has_its_known_mode_and_width() -> None:
         np.testing.assert_allclose(nodes.score[0, mode], mean, rtol=1e-6)
         covariance = nodes.root[0, mode] @ nodes.root[0, mode].T
         np.testing.assert_allclose(covariance, np.linalg.inv(precision), rtol=1e-4)
-    assert nodes.root.shape == (1, len(PARTS), 2, 2)
+    assert nodes.root.shape == (1, len(nodes.shares), 2, 2)
 
 
 def test_a_reading_far_off_is_wrong_or_the_unknown_is() -> None:
     nodes = closed_in(Problem(lambda _, z: np.sinh(z.T) / np.sinh(1), Normal(np.array([6.0]), 0.05),
                               1, False, (0,)))
-    forgiving, strict = nodes.score[0, :, 0]
+    forgiving, strict = nodes.score[0, :2, 0]
     assert abs(forgiving) < 0.5
     assert strict == pytest.approx(6.0, rel=0.01, abs=0)
 
@@ -51,3 +51,15 @@ def test_nodes_close_in_on_the_sizes_that_matter() -> None:
     best = nodes.size[np.argmax(nodes.height)]
     assert abs(best - 0.387) < 1e-3  # one standard deviation
     assert np.diff(nodes.size).min() < 1e-3
+
+
+def test_a_value_with_wide_tails_is_held_far_out_where_the_other_makes_up_for_it() -> None:
+    # y = e^(0.12 v) e^(0.15 z) pinned at 1: with v held at ±3 the other must be ∓0.36 / 0.15.
+    def predict(_: Array, z: Array) -> Array:
+        return np.exp(0.12 * np.sinh(z[:, 0]) / np.sinh(1) + 0.15 * z[:, 1])[None]
+
+    nodes = closed_in(Problem(predict, Normal(np.array([1.0]), 0.005), 2, False, (0,)))
+    for v, z in nodes.score[0, 2:]:
+        assert abs(v) == pytest.approx(3.0, rel=0.2, abs=0)
+        assert z == pytest.approx(-0.12 * v / 0.15, rel=0.02, abs=0)
+    assert nodes.shares.sum() < 1  # the rest is drawn from the prior

@@ -260,10 +260,11 @@ class _Search:
         while doublings is None or done < doublings:
             progress(1 - 0.75**done)  # how many doublings there will be is not known
             done += 1
-            parts = [(part, b.integral)
-                     for part, b in zip(_error_parts(beam), beam, strict=True)
+            every = _error_parts(beam)
+            parts = [(part, b.integral) for part, b in zip(every, beam, strict=True)
                      if b.integral and not b.integral.exhausted]
-            if math.hypot(*(part for part, _ in parts)) <= stable:
+            to_gain = math.hypot(*(part for part, _ in parts))
+            if math.hypot(*every) <= stable or to_gain <= stable / 2:
                 return
             most = max(part for part, _ in parts)
             loose = [integral for part, integral in parts if part > most / 2]

@@ -5,7 +5,7 @@ of its prior, even over 0 to 1. Given the size, the scores' posterior is nearly 
 at nodes that close in on the sizes that matter. The integral is then taken over scrambled Sobol'
 points, drawn from those normals, from one that believes the readings less, and from the prior, all
 with the wider tails of a Student distribution; each point is weighted by what it should have been.
-Eight scramblings, each seeded, tell the error.
+The prior's part keeps every weight below a bound. Eight scramblings, each seeded, tell the error.
 """
 
 from __future__ import annotations
@@ -17,10 +17,10 @@ from functools import cache
 import numpy as np
 from numpy.typing import NDArray
 
-from .modes import PARTS, Nodes, Problem, Real, closed_in
+from .modes import Nodes, Problem, Real, closed_in
 
 SCRAMBLINGS = 8
-LEAST, MOST = 6, 13  # log2 of the points of each scrambling
+LEAST, MOST = 6, 14  # log2 of the points of each scrambling
 _TAIL = 8.0  # degrees of freedom
 _EVEN = 0.1  # share of sizes drawn evenly, for what the nodes may have missed
 
@@ -102,13 +102,16 @@ class Integral:
         even, other, z = (a[start:stop] for a in _student_points(d, scrambling, stop))
         size, density, k, share = self._cells.at(even)
         middle, scale = self._nodes.middle(k, share), self._nodes.scale[k]
-        part = np.minimum(np.searchsorted(np.cumsum(PARTS), other), len(PARTS) - 1)
-        score = middle[np.arange(len(part)), part]
-        for p in range(len(PARTS)):
+        shares = self._nodes.shares
+        part = np.searchsorted(np.cumsum(shares), other)
+        score = self._problem.points(z)
+        for p in range(len(shares)):
             mine = part == p
-            score[mine] += _turned(self._nodes.root[:, p], k[mine], z[mine])
-        mixed = np.zeros(len(size))
-        for p, weight in enumerate(PARTS):
+            score[mine] = middle[mine, p] + _turned(self._nodes.root[:, p], k[mine], z[mine])
+        back = self._problem.scores(score)
+        mixed = ((1 - shares.sum()) * self._problem.density(score)
+                 * _student_density(back) / _normal_density(back))
+        for p, weight in enumerate(shares):
             back = _turned(self._nodes.inverse[:, p], k, score - middle[:, p])
             mixed += weight * _student_density(back) / scale[:, p]
         return size, score, density * mixed
@@ -171,6 +174,11 @@ def _student_density(z: Real) -> Real:
     constant = (gammaln((_TAIL + d) / 2) - gammaln(_TAIL / 2)
                 - d / 2 * math.log(_TAIL * math.pi))
     return np.asarray(np.exp(constant - (_TAIL + d) / 2 * np.log1p((z**2).sum(axis=1) / _TAIL)))
+
+
+def _normal_density(z: Real) -> Real:
+    """Of independent directions (q, d)."""
+    return np.asarray(np.exp(-(z**2).sum(axis=1) / 2) / (2 * math.pi) ** (z.shape[1] / 2))
 
 
 def _turned(matrix: Real, k: NDArray[np.intp], z: Real) -> Real:

@@ -2,7 +2,9 @@
 
 Gauss and Newton's method, then Laplace's. Two searches are made, one that forgives misfits and one
 that hardly does: a reading that is far off may be wrong, or the unknowns may be far from where
-they were thought to be, and often both are possible.
+they were thought to be, and often both are possible. Where an unknown has wide tails, two more
+hold it far out on either side: the other unknowns that fit there do not lie straight on from the
+modes.
 """
 
 from __future__ import annotations
@@ -22,14 +24,16 @@ Real = NDArray[np.float64]
 Predict = Callable[[Real, Real], Real]
 """Sizes (Q,) and scores (Q, d) to what each of K readings would be (K, Q)."""
 
-PARTS = np.array([0.3, 0.3, 0.25, 0.15])
-"""Shares of a mixture: both modes, the first with less belief in the readings, and the prior."""
+_MODES, _HELD, _LESS = 0.27, 0.1, 0.18  # shares of a mixture of draws; the prior has the rest
 
 _BELIEF = 0.1  # of the readings' curvature, in the third part
 _SOFT = 4.0  # degrees of freedom of the misfits in a search: one that is far off hardly pulls
 _STRICT = 1e4  # and of a search that lets each reading pull
 _STEP = 1e-4
 _LOOSE = 0.6  # curvature that a stretched coordinate is drawn with, at most
+_OUT = 3.0  # where a stretched coordinate is held, and so many times as firmly as the prior:
+_HOLD = 30.0
+_WIDE = 0.3  # curvature that it is then drawn with
 _LEAST_GAIN = 1e-300
 
 
@@ -63,10 +67,21 @@ class Problem:
     sized: bool
     stretched: tuple[int, ...] = ()
 
+    @property
+    def held(self) -> Real:
+        """Where the stretched coordinates are held in each search; NaN where they are free (M,)."""
+        return np.array([np.nan, np.nan, -_OUT, _OUT] if self.stretched else [np.nan, np.nan])
+
     def scores(self, at: Real) -> Real:
         """Normal scores of points (Q, d)."""
         made = at.copy()
         made[:, self.stretched] = relaxed(at[:, self.stretched])
+        return made
+
+    def points(self, scores: Real) -> Real:
+        """Points (Q, d) of normal scores."""
+        made = scores.copy()
+        made[:, self.stretched] = stretched(scores[:, self.stretched])
         return made
 
     def gain(self, size: Real, at: Real) -> Real:
@@ -93,18 +108,46 @@ class Nodes:
     Parameters
     ----------
     size : (G,)
-    score : the two modes (G, 2, d)
-    root : of the covariance, for each part of the mixture (G, P, d, d)
+    score : of each search (G, M, d); the first two are modes
+    root : of the covariance, for each part of the mixture but the prior (G, P, d, d)
     height : logarithm of what Laplace's method makes of the integral (G,)
-    soft : of what it would make of it if misfits were forgiven (G,); this leads to a peak from
-        far off
+    misfit : of the readings at the modes (G, 2, K)
+    rest : the part of `height` that is not the readings', of each mode (G, 2)
+
+    The parts of the mixture are the searches, then the first with less belief in the readings,
+    then the prior.
     """
 
     size: Real
     score: Real
     root: Real
     height: Real
-    soft: Real
+    misfit: Real
+    rest: Real
+
+    @property
+    def shares(self) -> Real:
+        """Of the mixture, each part but the prior (P,)."""
+        held = self.score.shape[1] - 2
+        return np.array([_MODES] * 2 + [_HELD] * held + [_LESS])
+
+    @property
+    def soft(self) -> Real:
+        """What `height` would be if misfits were forgiven (G,): it leads to a peak from far off."""
+        return np.asarray((self.rest - _forgiven(self.misfit)).max(axis=1))
+
+    @property
+    def passed(self) -> Real:
+        """The highest that `soft` may be between one node and the next (G − 1,).
+
+        As misfits change evenly: a sharp peak between two nodes that are alike is seen in signs
+        that turn.
+        """
+        left, change = self.misfit[:-1], np.diff(self.misfit, axis=0)
+        length = np.maximum((change**2).sum(axis=2), 1e-30)
+        share = np.clip(-(left * change).sum(axis=2) / length, 0.0, 1.0)
+        rest = np.maximum(self.rest[:-1], self.rest[1:])
+        return np.asarray((rest - _forgiven(left + share[..., None] * change)).max(axis=1))
 
     @cached_property
     def inverse(self) -> Real:
@@ -117,16 +160,16 @@ class Nodes:
         return np.asarray(np.prod(np.diagonal(self.root, axis1=2, axis2=3), axis=2))
 
     def middle(self, k: NDArray[np.intp], share: Real) -> Real:
-        """Of each part, at that share of the way from node k to the next (q, P, d)."""
+        """Of each part but the prior, that share of the way from node k to the next (q, P, d)."""
         after = np.minimum(k + 1, len(self.size) - 1)
         blend = share[:, None, None]
         modes = (1 - blend) * self.score[k] + blend * self.score[after]
-        return np.concatenate([modes, modes[:, :1], np.zeros_like(modes[:, :1])], axis=1)
+        return np.concatenate([modes, modes[:, :1]], axis=1)
 
     def with_more(self, other: Nodes) -> Nodes:
         """Both, in order."""
         both = [np.concatenate([getattr(self, n), getattr(other, n)])
-                for n in ("size", "score", "root", "height", "soft")]
+                for n in ("size", "score", "root", "height", "misfit", "rest")]
         order = np.argsort(both[0])
         return Nodes(*(b[order] for b in both))
 
@@ -138,7 +181,9 @@ def closed_in(problem: Problem) -> Nodes:
     size = (np.arange(20) + 0.5) / 20
     nodes = _searched(problem, np.concatenate([[0.0], size, [1.0]]), 5)
     for _ in range(16):
-        wanted = np.union1d(_coarse(nodes.size, nodes.height), _coarse(nodes.size, nodes.soft))
+        highest = np.maximum(nodes.height[:-1], nodes.height[1:])
+        wanted = np.union1d(_coarse(nodes.size, nodes.height, highest),
+                            _coarse(nodes.size, nodes.soft, nodes.passed))
         if not len(wanted):
             break
         middle = (nodes.size[wanted] + nodes.size[wanted + 1]) / 2
@@ -148,31 +193,39 @@ def closed_in(problem: Problem) -> Nodes:
     return nodes
 
 
-def _coarse(size: Real, height: Real) -> NDArray[np.intp]:
-    """Cells that matter and over which the integrand changes too much to be drawn straight."""
+def _coarse(size: Real, height: Real, highest: Real) -> NDArray[np.intp]:
+    """Cells that matter and over which the integrand changes too much to be drawn straight.
+
+    `highest` is what the height may come to within each.
+    """
     gap = np.diff(size)
-    mass = gap * np.exp(np.maximum(height[:-1], height[1:]) - height.max())
-    rough = np.abs(np.diff(height)) > 0.7
+    mass = gap * np.exp(highest - highest.max())
+    rough = highest - np.minimum(height[:-1], height[1:]) > 0.7
     wanted = np.flatnonzero(rough & (mass > 0.02 * mass.sum()) & (gap > 1e-6))
     return np.asarray(wanted[np.argsort(mass[wanted])[-6:]])
 
 
 def _searched(problem: Problem, size: Real, steps: int) -> Nodes:
     """Nodes at these sizes, both searches from the middle of the prior."""
-    start = np.zeros((len(size), 2, problem.dimensions))
+    start = np.zeros((len(size), len(problem.held), problem.dimensions))
     return _described(problem, size, _climbed(problem, size, start, steps))
 
 
 def _climbed(problem: Problem, size: Real, score: Real, steps: int) -> Real:
-    """The two scores of each size, nearer to a mode (G, 2, d)."""
-    twice, at = np.repeat(size, 2), score.reshape(-1, score.shape[-1])
-    forgiving = _forgiving(size)
+    """The scores of each size, nearer to what is searched for (G, M, d)."""
+    sizes, at = np.repeat(size, len(problem.held)), score.reshape(-1, score.shape[-1])
+    forgiving = _forgiving(problem, size)
+    out = np.tile(problem.held, len(size))[:, None]
+    firm = np.where(np.isnan(out), 0.0, _HOLD)
+    out = np.nan_to_num(out)
     far = np.full(problem.dimensions, FARTHEST)
     far[list(problem.stretched)] = stretched(FARTHEST)
     for _ in range(steps):
-        misfit, slope = _linear(problem, twice, at)
+        misfit, slope = _linear(problem, sizes, at)
         own = problem.pull(at)
         push = own * at + np.einsum("gki,gk->gi", _weighted(misfit, slope, forgiving), misfit)
+        push[:, problem.stretched] += firm * (at[:, problem.stretched] - out)
+        own[:, problem.stretched] += firm
         curve = _curve(misfit, slope, forgiving, own)
         step = np.linalg.solve(curve, push[..., None])[..., 0]
         length = np.linalg.norm(step, axis=1, keepdims=True)
@@ -180,29 +233,37 @@ def _climbed(problem: Problem, size: Real, score: Real, steps: int) -> Real:
     return at.reshape(score.shape)
 
 
-def _forgiving(size: Real) -> Real:
-    """Degrees of freedom of the misfits in the two searches at each size (2 G, 1)."""
-    return np.tile((_SOFT, _STRICT), len(size))[:, None]
+def _forgiving(problem: Problem, size: Real) -> Real:
+    """Degrees of freedom of the misfits in the searches at each size (M G, 1)."""
+    held = len(problem.held) - 2
+    return np.tile((_SOFT, _STRICT, *(_SOFT,) * held), len(size))[:, None]
 
 
 def _described(problem: Problem, size: Real, score: Real) -> Nodes:
     """Nodes with these modes."""
-    twice, at = np.repeat(size, 2), score.reshape(-1, score.shape[-1])
-    misfit, slope = _linear(problem, twice, at)
+    count = len(problem.held)
+    sizes, at = np.repeat(size, count), score.reshape(-1, score.shape[-1])
+    misfit, slope = _linear(problem, sizes, at)
     own = problem.pull(at)
-    own[:, problem.stretched] = np.minimum(own[:, problem.stretched], _LOOSE)
-    curve = _curve(misfit, slope, _forgiving(size), own).reshape(*score.shape, -1)
+    free = np.tile(np.isnan(problem.held), len(size))[:, None]
+    own[:, problem.stretched] = np.where(
+        free, np.minimum(own[:, problem.stretched], _LOOSE), _WIDE)
+    curve = _curve(misfit, slope, _forgiving(problem, size), own).reshape(*score.shape, -1)
     plain = np.eye(score.shape[-1])
     plain[problem.stretched, problem.stretched] = _LOOSE
     less = plain + _BELIEF * (curve[:, 0] - plain)
-    parts = np.stack([curve[:, 0], curve[:, 1], less, np.broadcast_to(plain, less.shape)], axis=1)
+    parts = np.concatenate([curve, less[:, None]], axis=1)
     root = np.linalg.cholesky(np.linalg.inv(parts))
     rest = (np.log(np.diagonal(root[:, :2], axis1=2, axis2=3)).sum(axis=2)
-            + np.log(problem.density(at)).reshape(-1, 2))
-    gain = np.log(np.maximum(problem.gain(twice, at), _LEAST_GAIN)).sum(axis=0)
-    soft = (_SOFT + 1) / 2 * np.log1p(misfit**2 / _SOFT).sum(axis=1)
-    return Nodes(size, score, root, (rest + gain.reshape(-1, 2)).max(axis=1),
-                 (rest - soft.reshape(-1, 2)).max(axis=1))
+            + np.log(problem.density(at)).reshape(-1, count)[:, :2])
+    gain = np.log(np.maximum(problem.gain(sizes, at), _LEAST_GAIN)).sum(axis=0)
+    return Nodes(size, score, root, (rest + gain.reshape(-1, count)[:, :2]).max(axis=1),
+                 misfit.reshape(*score.shape[:2], -1)[:, :2], rest)
+
+
+def _forgiven(misfit: Real) -> Real:
+    """−ln chance of misfits (…, K) with wide tails, summed over the readings (…)."""
+    return np.asarray((_SOFT + 1) / 2 * np.log1p(misfit**2 / _SOFT).sum(axis=-1))
 
 
 def _linear(problem: Problem, size: Real, score: Real) -> tuple[Real, Real]:
