@@ -41,7 +41,7 @@ def test_a_capacitive_finding_says_what_it_leaves_open() -> None:
     text = headline(found, one)
     assert re.search(r"what capacitive coupling on this run predicts \(odds (over )?\d+ to 1 over "
                      r"leakage below 1 MΩ\); leakage above \S+ [kM]Ω cannot be excluded by these "
-                     r"instruments; over 99 % sure as worded\.$", text)
+                     r"instruments; over 99 % sure that it is this or such a leakage\.$", text)
     assert one.leak_odds > 10
     assert 100e3 < one.claim.leak_limit < 10e6
 

@@ -131,7 +131,7 @@ def test_the_bleeder_holds_when_it_is_built_in() -> None:
     assert abs(run_of(400.0, both).voltage(PAIR.a, "N")) == pytest.approx(cure.result, rel=1e-9,
                                                                           abs=0)
     assert abs(run_of(400.0, Burden(1 / (1 / 100e3 + 1 / cure.largest))).voltage(PAIR.a, "N")
-               ) == pytest.approx(36.0, rel=1e-6, abs=0)
+               ) == pytest.approx(0.9 * 36.0, rel=1e-6, abs=0)  # a tenth in hand
 
 
 def test_spare_cores_are_a_cure_only_where_there_are_some(relay: Operation) -> None:

@@ -19,6 +19,7 @@ from ..report.operation import (
     length_of_load,
     level_band,
     rearranged_load,
+    state_words,
     states_table,
 )
 from ..report.tables import Table
@@ -162,12 +163,13 @@ class OperationModel(traitlets.HasTraits):
 
     def answer(self) -> str:
         """The load in one sentence."""
-        watched = self.watched
+        watched, known = self.watched, self.judged
         level = float(level_on(RunBatch.of(self.run), watched)[0])
+        state = state_words(known.found) if known else watched.state(level)
         off, on = (show(v, watched.unit) for v in watched.limits)
         length = show_length(self.run.length, customary=self.desk.customary, digits=4)
         return (f"On {length}, {show(level, watched.unit)} is coupled into the {watched.name} with "
-                f"its contacts open: {watched.state(level)} (sure to be off at {off}, sure to be "
+                f"its contacts open: {state} (sure to be off at {off}, sure to be "
                 f"on at {on}).")
 
     def text(self) -> str:
@@ -181,9 +183,10 @@ class OperationModel(traitlets.HasTraits):
             runs = found.longest.words(
                 lambda x: show_length(x, customary=self.desk.customary))
             yield (f"{w.name}: {show(found.level, unit)} ({show(found.low, unit)} to "
-                   f"{show(found.high, unit)}), {found.state}; sure to be off for runs: {runs}")
+                   f"{show(found.high, unit)}), {state_words(found)}; sure to be off for runs: "
+                   f"{runs}")
             for cure in found.cures[:3]:
-                yield f"  {cure.name}: leaves less than {show(cure.level, unit)}, {cure.state}"
+                yield f"  {cure.name}: leaves at most {show(cure.level, unit)}, {cure.state}"
 
     def offers(self) -> Sequence[tuple[str, dict[str, Any]]]:
         """The resistor that is tried; state, cures and curve are in every memo of such a case."""

@@ -13,7 +13,7 @@ from ..physics.network import EARTH
 from ..study.causes import explain
 from ..study.next_reading import RISK, Candidate, next_readings
 from ..study.readings import Pair, SheetRow
-from ..study.reduced import Reduced
+from ..study.reduced import Reduced, free_conductors
 from .causes import headroom
 from .investigation import Investigation
 from .margin_figures import per_cent
@@ -55,25 +55,29 @@ def steps(investigation: Investigation) -> tuple[Step, ...]:
     conductor at the same end.
     """
     run = investigation.run
-    suspects = case_suspects(investigation.case.content, run)
+    named = {*case_suspects(investigation.case.content, run), *free_conductors(run)}
+    suspects = tuple(n for n in run.names if n in named)
     if not suspects:
         raise Refused("field sheet", "needs a conductor that nothing feeds")
-    reduced = Reduced(run, investigation.low, investigation.high, suspects)
-    live = reduced.live_conductors()[:1]
-    rows = [r for r in investigation.sheet.rows if _wanted(r.pair, suspects, live)]
-    candidates = {(r.instrument.key, r.pair): Candidate(r.instrument, r.pair) for r in rows}
-    found = explain(reduced, ())
-    chances = {(p.candidate.instrument.key, p.candidate.pair): p.trip_chance
-               for p in next_readings(found, list(candidates.values()),
-                                      non_operating=headroom(investigation))}
+    rows: list[SheetRow] = []
+    chances: dict[tuple[str, Pair], float] = {}
+    for suspect in suspects:  # each by itself: before any reading they tell nothing of each other
+        reduced = Reduced(run, investigation.low, investigation.high, (suspect,))
+        live = reduced.live_conductors()[:1]
+        own = [r for r in investigation.sheet.rows if _wanted(r.pair, suspect, live)]
+        candidates = {(r.instrument.key, r.pair): Candidate(r.instrument, r.pair) for r in own}
+        ranked = next_readings(explain(reduced, ()), list(candidates.values()),
+                               non_operating=headroom(investigation))
+        chances |= {(p.candidate.instrument.key, p.candidate.pair): p.trip_chance for p in ranked}
+        rows += own
     made = [Step(r, chances[r.instrument.key, r.pair]) for r in rows]
     return tuple(sorted(made, key=lambda s: (s.row.pair.a.endswith("far"), s.risky,
                                              _load(s.row), s.row.pair.b != EARTH)))
 
 
-def _wanted(pair: Pair, suspects: tuple[str, ...], live: tuple[str, ...]) -> bool:
+def _wanted(pair: Pair, suspect: str, live: tuple[str, ...]) -> bool:
     names = {p.rpartition("@")[0] for p in (pair.a, pair.b)}
-    return bool(names & set(suspects)) and (EARTH in (pair.a, pair.b) or bool(names & set(live)))
+    return suspect in names and (EARTH in (pair.a, pair.b) or bool(names & set(live)))
 
 
 def _load(row: SheetRow) -> float:

@@ -14,7 +14,7 @@ from ..case.loading import Case
 from ..case.runs import switched_of
 from ..reference.records import Source
 from ..study.comparison import NOTES, Compared, compare
-from ..study.operation import Operation, Watched, level_on, operation
+from ..study.operation import IN_HAND, Operation, Watched, level_on, operation
 from ..study.run import Run
 from ..study.sizing import Met, by_length
 from ..study.spread import COVERAGE
@@ -70,8 +70,8 @@ def operation_finding(investigation: Investigation) -> list[Block]:
         w = found.watched
         cure = next((c for c in found.cures if c.works and c.bleeder), None)
         said.append(
-            f"With its contacts open, the {w.name} {_state(found)}: {show(found.level, w.unit)} is "
-            f"coupled into it ({show(found.low, w.unit)} to {show(found.high, w.unit)}), and it is "
+            f"With its contacts open, the {w.name} {state_words(found)}: "
+            f"{show(found.level, w.unit)} is coupled into it ({show(found.low, w.unit)} to {show(found.high, w.unit)}), and it is "
             f"sure to be off at {show(w.limits[0], w.unit)}{_beyond(found)}.")
         if found.high > w.limits[0] and cure and cure.bleeder:
             said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
@@ -138,7 +138,7 @@ def _notes(found: tuple[Operation, ...]) -> str:
     return " ".join(notes)
 
 
-def _state(o: Operation) -> str:
+def state_words(o: Operation) -> str:
     """What the load does; of one that is expected to be off, what the band leaves open."""
     off, on = o.watched.limits
     return o.state if o.level > off else o.watched.state(min(o.high, (off + on) / 2))
@@ -162,7 +162,7 @@ def states_table(found: tuple[Operation, ...], *, customary: bool = False) -> Ta
         w = o.watched
         off, on = w.limits
         return (f"{w.name}\n{pair_words(w.pair.a, w.pair.b)}", _level(o),
-                show(off, w.unit), show(on, w.unit), _state(o), _over(o),
+                show(off, w.unit), show(on, w.unit), state_words(o), _over(o),
                 " / ".join(map(percent, o.chances)), _lengths_off(o, customary))
     return Table(
         "operation", "Loads with their contacts open.",
@@ -199,7 +199,7 @@ def comparison_table(
         own = " (as it is)" if c.as_built else ""
         current = (show(o.current, "A"),) if watched.unit == "V" else ()
         return (f"{c.words}{own}\n{pair_words(o.watched.pair.a, o.watched.pair.b)}", _level(o),
-                *current, _state(o), _lengths_off(o, customary))
+                *current, state_words(o), _lengths_off(o, customary))
 
     watched = others[0].found.watched
     current = (Column("Current", "", "right"),) if watched.unit == "V" else ()
@@ -225,7 +225,8 @@ def cures_table(found: Operation, number: int) -> Table:
          Column("Takes", "", "right"), Column("Mind")),
         tuple((c.name, show(c.level, unit), c.state, show(c.watts, "W"), c.note or "–")
               for c in found.cures),
-        f"Leaves at most: in {percent(COVERAGE)} of the draws.")
+        f"Leaves at most: in {percent(COVERAGE)} of the draws. A part across the load is chosen to "
+        f"leave {percent(1 - IN_HAND)} in hand.")
 
 
 def _figure(investigation: Investigation, found: Operation) -> Figure:

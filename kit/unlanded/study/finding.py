@@ -182,11 +182,16 @@ def _or_leakage(claim: Claim) -> str:
 def _sure(claim: Claim) -> str:
     """How sure the sentence is, and which readings alone make it so."""
     percent = math.floor(100 * claim.share)
-    said = f"{'over 99' if percent >= 99 else percent} % sure as worded"
+    which = "that it is this or such a leakage" if _open_alone(claim) else "as worded"
+    said = f"{'over 99' if percent >= 99 else percent} % sure {which}"
     numbers = _listed([str(k + 1) for k in claim.rests_on])
     if len(claim.rests_on) > 1:
         return f"{said}, but each of readings {numbers} alone carries that: take them again"
     return f"{said}, but reading {numbers} alone carries that: take it again" if numbers else said
+
+
+def _open_alone(claim: Claim) -> bool:
+    return claim.open and len(claim.causes) == 1
 
 
 def _listed(words: Sequence[str]) -> str:
@@ -253,8 +258,8 @@ def danger(found: Explanation, made: Finding, *, customary: bool = False) -> str
         return "No live conductor couples to it as the run is described."
     reach = show_length(length * felt / most, customary=customary, digits=2)
     return (f"{drives}, below the {show(felt, 'A')} that is felt (IEC 60479-1); it grows with "
-            f"length, and reaches that on {reach} of this run. That a coupled voltage cannot hurt "
-            "is true of small capacitances only.")
+            f"length, and may reach that on {reach} of this run. That a coupled voltage cannot "
+            "hurt is true of small capacitances only.")
 
 
 def odds_words(ratio: float) -> str:

@@ -32,6 +32,7 @@ from .uncertain import UncertainRun
 
 Real = NDArray[np.float64]
 DRAWS, CURED = 1024, 128  # for the state, and for each cure
+IN_HAND = 0.9  # of what a load is sure to be off at, that a part beside it may leave: a judgement
 LOW_VOLTAGE = 24.0  # of a control circuit, RMS [V]
 SHORTEST, LONGEST = 5.0, 3e3  # metres that the longest run is looked for in
 
@@ -244,7 +245,7 @@ def _beside(drawn: RunBatch, watched: Watched, admittance: Callable[[Real], Any]
 
 def _resistor(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     result = _beside(drawn, watched, lambda r: 1 / r)
-    found = bleeder(result, watched.limits[0], live_voltage=drawn.run.supply.voltage)
+    found = bleeder(result, IN_HAND * watched.limits[0], live_voltage=drawn.run.supply.voltage)
     if found is not None:
         yield _cure(f"resistor across the load, {show(found.value, 'Ω')}", found.result, watched,
                     watts=found.power, found=found,
@@ -259,7 +260,7 @@ def _sold(rating: float, unit: str) -> str:
 def _capacitor(drawn: RunBatch, watched: Watched) -> Iterator[Cure]:
     omega = 2 * math.pi * drawn.run.frequency
     result = _beside(drawn, watched, lambda c: 1j * omega * c)
-    met = solve_for(result, watched.limits[0], low=1e-9, high=10e-6, scan=65)
+    met = solve_for(result, IN_HAND * watched.limits[0], low=1e-9, high=10e-6, scan=65)
     if met.nowhere:
         return
     farads = preferred(met.stretches[-1][0], "E6", down=False)
