@@ -71,8 +71,9 @@ def operation_finding(investigation: Investigation) -> list[Block]:
         cure = next((c for c in found.cures if c.works and c.bleeder), None)
         said.append(
             f"With its contacts open, the {w.name} {state_words(found)}: "
-            f"{show(found.level, w.unit)} is coupled into it ({show(found.low, w.unit)} to {show(found.high, w.unit)}), and it is "
-            f"sure to be off at {show(w.limits[0], w.unit)}{_beyond(found)}.")
+            f"{show(found.level, w.unit)} is coupled into it ({show(found.low, w.unit)} to "
+            f"{show(found.high, w.unit)}), and it is sure to be off at "
+            f"{show(w.limits[0], w.unit)}{_beyond(found)}.")
         if found.high > w.limits[0] and cure and cure.bleeder:
             said.append(f"A resistor of {show(cure.bleeder.value, 'Ω')} across it, "
                         f"{show(cure.watts, 'W')} while on, would let go of it.")
