@@ -263,14 +263,14 @@ def danger(found: Explanation, made: Finding, *, customary: bool = False) -> str
 
 
 def odds_words(ratio: float) -> str:
-    """Odds as they are said.
+    """Odds as they are said, to two digits.
 
-    >>> odds_words(41.2), odds_words(2.345), odds_words(5e4)
-    ('odds 41 to 1', 'odds 2.3 to 1', 'odds over 1000 to 1')
+    >>> odds_words(168.2), odds_words(2.345), odds_words(5e4)
+    ('odds 170 to 1', 'odds 2.3 to 1', 'odds over 1000 to 1')
     """
     if ratio > 1000:
         return "odds over 1000 to 1"
-    return f"odds {ratio:.0f} to 1" if ratio >= 10 else f"odds {ratio:.1f} to 1"
+    return f"odds {float(f'{ratio:.2g}'):g} to 1"
 
 
 def _percent(share: float) -> str:
