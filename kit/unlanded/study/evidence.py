@@ -20,7 +20,8 @@ from numpy.typing import NDArray
 from .modes import Nodes, Problem, Real, closed_in
 
 SCRAMBLINGS = 8
-LEAST, MOST = 6, 14  # log2 of the points of each scrambling
+LEAST = 6  # log2 of the points of each scrambling, at first
+MOST_KEPT = 10_000_000  # numbers that the points of one integral are, at most: 80 MB
 _TAIL = 8.0  # degrees of freedom
 _EVEN = 0.1  # share of sizes drawn evenly, for what the nodes may have missed
 
@@ -54,8 +55,9 @@ class Integral:
 
     @property
     def exhausted(self) -> bool:
-        """Whether it has as many points as it may."""
-        return self._level >= MOST
+        """Whether twice as many points would be more than are kept."""
+        each = self._problem.dimensions + len(self._parts[0].gain) + 2  # size and weight too
+        return 2 * self.points * each > MOST_KEPT
 
     def double(self) -> None:
         """Twice as many points."""
