@@ -159,6 +159,17 @@ class Lab:
         """The entry box of that label."""
         return self.panel().get_by_label(label, exact=True)
 
+    def drag(self, what: Locator, across: float) -> None:
+        """Take something by its middle, pull it so many pixels to the right, and let it settle."""
+        grip = what.bounding_box()
+        assert grip is not None
+        x, y = grip["x"] + grip["width"] / 2, grip["y"] + grip["height"] / 2
+        self.page.mouse.move(x, y)
+        self.page.mouse.down()
+        self.page.mouse.move(x + across, y, steps=8)
+        self.page.mouse.up()
+        self.page.wait_for_timeout(1000)
+
     def handle(self, label: str) -> Locator:
         """The handle beside the entry box of that label."""
         row = self.panel().locator(".widget-hbox").filter(has=self.page.locator(

@@ -1,8 +1,11 @@
-"""The one exception family: a refusal says where, which rule, what was given, and a hint."""
+"""The one exception family: a refusal says where, which rule, what was given, and a hint.
+
+Also how a sentence lists words, for refusals and for what is reported.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from difflib import get_close_matches
 
@@ -72,6 +75,16 @@ def nearest(word: str, known: Iterable[str]) -> str:
     if len(known) > 12:
         return f"known: {', '.join(known[:12])} and {len(known) - 12} more"
     return f"known: {', '.join(known)}"
+
+
+def listed(words: Sequence[str], last: str = "and") -> str:
+    """Words joined as a sentence lists them, with `last` before the last of them.
+
+    >>> listed(["a", "b", "c"]), listed(["a"]), listed(["a", "b"], "or")
+    ('a, b and c', 'a', 'a or b')
+    """
+    *before, end = words or ("",)
+    return f"{', '.join(before)} {last} {end}" if before else end
 
 
 def _short(text: str, limit: int = 60) -> str:

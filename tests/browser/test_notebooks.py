@@ -89,14 +89,7 @@ def test_handle_by_keyboard_and_mouse_changes_curve_and_table(lab: Lab, folder: 
     shows(lab, folder, by_keys)
     assert curve(lab) != before
 
-    grip = handle.bounding_box()
-    assert grip is not None
-    x, y = grip["x"] + grip["width"] / 2, grip["y"] + grip["height"] / 2
-    lab.page.mouse.move(x, y)
-    lab.page.mouse.down()
-    lab.page.mouse.move(x - 60, y, steps=8)
-    lab.page.mouse.up()
-    lab.page.wait_for_timeout(500)
+    lab.drag(handle, -60)
     by_mouse = lab.box("Run length").input_value()
     assert si(by_mouse, "m") < 60
     shows(lab, folder, by_mouse)
@@ -128,14 +121,7 @@ def test_mark_of_your_meter_is_dragged_along_the_curve(lab: Lab, folder: Path) -
     figure = lab.panel().locator(".bqplot.figure").first
     figure.scroll_into_view_if_needed()
     mark = figure.locator(".dot.element").last
-    grip = mark.bounding_box()
-    assert grip is not None
-    x, y = grip["x"] + grip["width"] / 2, grip["y"] + grip["height"] / 2
-    lab.page.mouse.move(x, y)
-    lab.page.mouse.down()
-    lab.page.mouse.move(x - 80, y, steps=8)
-    lab.page.mouse.up()
-    lab.page.wait_for_timeout(1000)
+    lab.drag(mark, -80)
     meter = lab.box("Meter impedance").input_value()
     assert 1e5 < si(meter, "ohm") < 5e6
     wanted = kit_says(folder, "85 m", meter)

@@ -8,7 +8,7 @@ import numpy as np
 import pytest
 from numpy.testing import assert_allclose
 
-from case_text import site
+from case_text import PAIR, site
 from unlanded.case.loading import read_case
 from unlanded.physics.burden import Burden
 from unlanded.report.added import added_part
@@ -100,29 +100,10 @@ def test_lengths_reach_beyond_the_run_in_round_units() -> None:
 
 def test_formula_of_two_wires_and_of_a_wire_over_a_plane() -> None:
     # Two bare wires of 1 mm radius, 100 mm apart, 500 mm over a plane: nearly alone in the world.
-    text = site("tern-quay")
-    head = text[: text.index("[run]")]
-    found = investigate(read_case(f"""{head}
-[run]
-length = "10 m"
-[run.cable]
-layout = "free"
-[[run.cable.conductors]]
-name = "a"
-x = "0 mm"
-y = "0 mm"
-diameter = "2 mm"
-[[run.cable.conductors]]
-name = "b"
-x = "100 mm"
-y = "0 mm"
-diameter = "2 mm"
-[run.surround]
-kind = "plane"
-gap = "499 mm"
-[run.ends.near]
-a = "L"
-"""))
+    bare = PAIR.replace('cover_diameter = "4 mm"\npermittivity = 3.0\n', "")
+    far = bare.replace('x = "5 mm"', 'x = "100 mm"').replace('b = "open"\n', "")
+    found = investigate(read_case(far.replace(
+        "[run.ends.near]", '[run.surround]\nkind = "plane"\ngap = "499 mm"\n[run.ends.near]')))
     (what, formula, ours), (over, height, _) = formula_neighbours(found.run)
     eps = 8.8541878188e-12
     assert what == "a and b, bare and alone"

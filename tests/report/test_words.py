@@ -2,7 +2,8 @@ from __future__ import annotations
 
 import pytest
 
-from unlanded.report.words import bound, cut, listed, pair_words, point_words, printable
+from unlanded.errors import listed
+from unlanded.report.words import bound, cut, pair_words, point_words, printable
 from unlanded.study.supply import NEUTRAL
 
 NBSP = "\N{NO-BREAK SPACE}"

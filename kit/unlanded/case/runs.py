@@ -3,20 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import Literal
 
 from ..errors import Mistake
 from ..physics.network import EARTH
 from ..study.comparison import Switched
-from ..study.ends import SCREEN, Bonded, Driven, Joined, Open, Through
+from ..study.ends import SCREEN, Bonded, Driven, End, Joined, Open, Through
 from ..study.ends import Termination as RunTermination
 from ..study.run import Run, Screen
 from ..study.supply import NEUTRAL, Supply
 from .schema import CaseFile, RunTable, SupplyTable
 from .sections import Limit, resistances, section_of
 from .terminations import Termination
-
-End = Literal["near", "far"]
 
 
 def run_of(content: CaseFile, permittivity: Limit = "likely") -> Run:

@@ -206,9 +206,8 @@ class _Listed:
 
     def spread(self, base: Complex) -> Complex:
         """√|ρ_r| base[i, j]^m for each multipole r = (i, m) and conductor j: (B, N, n)."""
-        out = np.empty((len(base), self.weight.shape[-1], *base.shape[1:]), dtype=complex)
-        out[...] = base[:, None]
-        powers = np.multiply.accumulate(out, axis=1, out=out)[:, self.order - 1, self.conductor]
+        powers = _powers(base[:, None], self.weight.shape[-1], axis=1)
+        powers = powers[:, self.order - 1, self.conductor]
         powers *= self.of(self.weight)[..., None]
         return np.asarray(powers)
 
@@ -306,9 +305,9 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
     p = b[:, i] * b[:, j] * (radius[..., 0] / across[:, i, j]) ** 2
     left = _shifted_powers(np.abs(toward[:, i, j]), top)
     right = _shifted_powers(np.conj(toward[:, j, i]), top) * listed.weight[:, j, None, :]
-    right *= _powers(p / tau, top)[..., None]
+    right *= _powers((p / tau)[..., None], top)[..., None]
     block = (left.swapaxes(-1, -2) @ right.view(float)).view(complex)
-    block *= (_powers(tau, top) * listed.weight[:, i])[..., None]
+    block *= (_powers(tau[..., None], top) * listed.weight[:, i])[..., None]
     whole = np.empty((count, n, top, n, top), dtype=complex)
     for k in range(len(i)):
         whole[:, i[k], :, j[k]] = block[:, k]
@@ -320,18 +319,20 @@ def _pipe_image(geometry: Geometry, listed: _Listed) -> tuple[Block, Complex, Re
             g, np.log(np.abs(across) / radius))
 
 
-def _powers(base: Real | Complex, top: int) -> Any:
-    """base^1 .. base^top along a new last axis."""
-    out = np.empty((*base.shape, top), dtype=base.dtype)
-    out[...] = base[..., None]
-    return np.multiply.accumulate(out, axis=-1, out=out)
+def _powers(base: Real | Complex, top: int, axis: int = -1) -> Any:
+    """base^1 .. base^top along the axis on which `base` has one element."""
+    shape = list(base.shape)
+    shape[axis] = top
+    out = np.empty(shape, dtype=base.dtype)
+    out[...] = base
+    return np.multiply.accumulate(out, axis=axis, out=out)
 
 
 def _shifted_powers(base: Any, top: int) -> Any:
     """C(n, k) √(k / n) base^(n − k) for k, n = 1..top along two new last axes, 0 for n < k."""
     padded = np.zeros((*base.shape, 2 * top - 1), dtype=base.dtype)
     padded[..., top - 1] = 1.0
-    padded[..., top:] = _powers(base, top - 1)
+    padded[..., top:] = _powers(base[..., None], top - 1)
     *outer, step = padded.strides
     shifted = np.lib.stride_tricks.as_strided(
         padded[..., top - 1 :], (*base.shape, top, top), (*outer, -step, step))

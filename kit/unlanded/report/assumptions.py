@@ -5,12 +5,13 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from ..case.cable import AnyCable
+from ..errors import listed
 from ..physics.section import Pipe, Plane
 from ..units import show
 from .cores import permittivity_words
 from .investigation import Investigation
 from .memo import Bullets, Paragraph, Part
-from .words import listed, percent, screen_words
+from .words import capital, percent, screen_words
 
 
 def assumptions_part(investigation: Investigation) -> Part:
@@ -102,4 +103,4 @@ def _readings(investigation: Investigation) -> Iterator[str]:
                "in the case from its data sheet.")
     for tool in investigation.instruments:
         if tool.note:
-            yield f"{tool.name[:1].upper()}{tool.name[1:]}: {tool.note}."
+            yield f"{capital(tool.name)}: {tool.note}."

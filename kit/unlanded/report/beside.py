@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from ..errors import listed
 from ..study.batch import Ports, RunBatch
 from ..study.operation import Watched, port_level
 from ..study.run import Run
@@ -13,7 +14,6 @@ from ..study.spread import COVERAGE, coverage_interval
 from ..study.uncertain import UncertainRun
 from ..units import show
 from .figure import Band, Figure, Line, Points, Reference, even_axis, log_axis
-from .words import listed
 
 Real = NDArray[np.float64]
 RESISTANCES = np.geomspace(1e3, 10e6, 81)

@@ -9,7 +9,7 @@ from weakref import WeakKeyDictionary
 
 from ..case.observed import case_causes
 from ..case.standing import case_margin
-from ..errors import Refused
+from ..errors import Refused, listed
 from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source
 from ..study.causes import Explanation, Progress, silent
@@ -41,7 +41,7 @@ from .investigation import Investigation
 from .margin_figures import per_cent
 from .memo import Block, Bullets, Caution, Paragraph, Part
 from .tables import Column, Table, plain
-from .words import filled, listed, pair_words
+from .words import filled, pair_words
 
 PICTURED = 2  # suspects with pictures of their own
 SUGGESTED = 5  # measurements in the table

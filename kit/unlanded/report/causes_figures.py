@@ -7,6 +7,7 @@ from collections.abc import Sequence
 
 import numpy as np
 
+from ..errors import listed
 from ..study.causes import Explanation, quantiles
 from ..study.finding import SUSPECT_READING
 from ..study.hypotheses import CAUSES, Cause
@@ -16,7 +17,7 @@ from ..units import show
 from .causes_words import candidate_words
 from .figure import Axis, Band, Figure, Line, Points, Reference, even_axis, log_axis
 from .margin_figures import per_cent
-from .words import cut, listed
+from .words import cut
 
 FLOOR = 0.01  # volts: less is drawn as this
 SHOWN_SHARE = 1e-3  # of a cause, below which a picture leaves it out

@@ -5,10 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 
+from ..errors import listed
 from ..study.next_reading import Candidate
 from ..study.observation import Action, Observation
 from ..units import show
-from .words import listed, pair_words
+from .words import pair_words
 
 
 def reading_words(r: Observation) -> str:

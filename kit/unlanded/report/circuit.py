@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 from typing import Any
 
 from ..case.switching import Switching
+from ..errors import listed
 from ..physics.section import Conductor, Pipe, Plane
 from ..reference.records import Source
 from ..reference.screens import SCREEN_RESISTANCE, SCREEN_TO_EARTH
@@ -18,7 +19,7 @@ from .cross_section import run_section
 from .investigation import Investigation
 from .memo import Block, Paragraph, Part
 from .tables import Column, Table
-from .words import listed, point_words, screen_words
+from .words import point_words, screen_words
 
 MATRIX = 9  # conductors whose matrix a page is wide enough for
 _INCH = 0.0254

@@ -9,13 +9,14 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..errors import listed
 from ..physics.potential import potential_map
 from ..physics.section import Conductor, Pipe, Plane, Section
 from ..study.ends import SCREEN
 from ..study.run import Run
 from ..units import show
 from .figure import Area, Axis, Field, Figure, Floats, Line, Material, Note, even_axis, round_step
-from .words import cut, listed, screen_words
+from .words import cut, screen_words
 
 DETAIL = 150  # points of the field across the shorter side of its window
 ROW = 0.075  # height of a row of words over the window's height

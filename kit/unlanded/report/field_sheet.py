@@ -60,6 +60,7 @@ def steps(investigation: Investigation) -> tuple[Step, ...]:
     if not suspects:
         raise Refused("field sheet", "needs a conductor that nothing feeds")
     rows: list[SheetRow] = []
+    room = headroom(investigation)
     chances: dict[tuple[str, Pair], float] = {}
     for suspect in suspects:  # each by itself: before any reading they tell nothing of each other
         reduced = Reduced(run, investigation.low, investigation.high, (suspect,))
@@ -67,7 +68,7 @@ def steps(investigation: Investigation) -> tuple[Step, ...]:
         own = [r for r in investigation.sheet.rows if _wanted(r.pair, suspect, live)]
         candidates = {(r.instrument.key, r.pair): Candidate(r.instrument, r.pair) for r in own}
         ranked = next_readings(explain(reduced, ()), list(candidates.values()),
-                               non_operating=headroom(investigation))
+                               non_operating=room)
         chances |= {(p.candidate.instrument.key, p.candidate.pair): p.trip_chance for p in ranked}
         rows += own
     made = [Step(r, chances[r.instrument.key, r.pair]) for r in rows]

@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import ArrayLike
 
-from ..errors import Refused
+from ..errors import Refused, listed
 from ..units import FOOT, show, show_length
 from .cross_section import section_figure
 from .figure import (
@@ -26,7 +26,7 @@ from .figure import (
     log_axis,
 )
 from .labels import Flag, flags
-from .words import cut, listed, pair_words
+from .words import cut, pair_words
 
 if TYPE_CHECKING:
     from ..study.readings import Pair, ReadingSheet, SheetRow

@@ -8,6 +8,7 @@ from functools import lru_cache
 from typing import Any
 
 from ..case.standing import THE_RUN, case_history, case_margin
+from ..errors import listed
 from ..reference.devices import ANSWERS, BREAK_TIME, ring_wave
 from ..reference.limits import STANDING_SHARE
 from ..reference.records import Source
@@ -22,7 +23,7 @@ from .margin_figures import added_figure, budget_figure, per_cent, trip_time_fig
 from .margin_log import log_blocks, milliamperes
 from .memo import Block, Bullets, Caution, Paragraph, Part
 from .tables import Column, Table
-from .words import listed, pair_words
+from .words import pair_words
 
 RULE = (f"The recommended share is {100 * STANDING_SHARE.likely:.0f} % of the rated current "
         "(BS 7671, 531.3.2; IEC 60364-5-53, 531.3.2); the local rules govern.")

@@ -9,13 +9,14 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..errors import listed
 from ..study.history import GAP, History
 from ..study.residual import Margin
 from ..study.trip import MeasuredTrip
 from ..units import show
 from .figure import Axis, Band, Figure, Line, Note, Points, Reference, even_axis, log_axis
 from .labels import flags
-from .words import cut, listed
+from .words import cut
 
 _A = "A"
 MARKED = 7  # instruments on the trip-time picture

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from ..case.loading import Case
 from ..case.runs import switched_of
+from ..errors import listed
 from ..reference.records import Source
 from ..study.comparison import NOTES, Compared, compare
 from ..study.operation import IN_HAND, Operation, Watched, level_on, operation
@@ -25,7 +26,7 @@ from .investigation import Investigation
 from .memo import Block, Caution, Paragraph, Part
 from .spread_figures import level_figure
 from .tables import Column, Table
-from .words import capital, listed, pair_words, percent
+from .words import capital, pair_words, percent
 
 Real = NDArray[np.float64]
 POINTS = 15  # lengths of the picture

@@ -6,10 +6,11 @@ import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
+from ..errors import listed
 from ..physics.network import EARTH
 from ..reference.instruments import Instrument, Shown
 from ..study.readings import STIFF, Pair, ReadingSheet, SheetRow
-from .words import listed, pair_words, point_words
+from .words import pair_words, point_words
 
 
 @dataclass(frozen=True)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from ..errors import listed
 from ..reference.records import Source
 from .causes import causes_sources
 from .circuit import circuit_sources
@@ -14,7 +15,7 @@ from .memo import Bullets, Paragraph, Part
 from .operation import operation_sources
 from .sizing import sizing_sources
 from .touch import touch_sources
-from .words import listed
+from .words import capital
 
 METHODS = (
     ("capacitances, by multipoles round each covered conductor",
@@ -32,7 +33,7 @@ def sources_part(investigation: Investigation) -> Part:
     said: dict[str, dict[str, None]] = {}
     for what, source in _used(investigation):
         said.setdefault(str(source), {})[what] = None
-    lines = tuple(f"{_capital(listed(list(what)))}: {source}." for source, what in said.items())
+    lines = tuple(f"{capital(listed(list(what)))}: {source}." for source, what in said.items())
     return Part("Sources", (
         Paragraph("“From memory” marks a value recalled and still to be checked against its "
                   "source; “common practice” one of the trade, with no source. What is not listed "
@@ -52,7 +53,3 @@ def _used(investigation: Investigation) -> Iterator[tuple[str, Source]]:
     yield from sizing_sources(investigation)
     yield from touch_sources(investigation)
     yield from METHODS
-
-
-def _capital(text: str) -> str:
-    return text[:1].upper() + text[1:]

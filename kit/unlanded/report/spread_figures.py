@@ -7,10 +7,11 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from ..errors import listed
 from ..study.spread import Sensitivity
 from ..units import show
 from .figure import Axis, Band, Figure, Line, Points, Reference, even_axis
-from .words import cut, listed, percent
+from .words import capital, cut, percent
 
 BARS = 8
 POINTS = 121  # of a curve
@@ -51,7 +52,7 @@ def distribution_figure(
     words = f"{show(ends[0], unit)} to {show(ends[1], unit)}"
     return Figure(
         key="distribution", title=f"How sure: {what}",
-        x=even_axis(what[:1].upper() + what[1:], unit, float(x[0]), float(x[-1])),
+        x=even_axis(capital(what), unit, float(x[0]), float(x[-1])),
         y=Axis("Relative density", "", 0.0, 1.1, "even", tuple((v, f"{v:g}") for v in (0, 0.5, 1))),
         caption=f"How often {what} came out at each value, over what is not known of the inputs. "
         f"Shaded: {percent(coverage)} of the draws, {words}. Upright: with every input as it is "

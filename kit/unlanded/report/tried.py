@@ -9,7 +9,7 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from ..errors import Refused
+from ..errors import Refused, listed
 from ..reference.records import Value
 from ..study.hypotheses import CAUSES, Cause, Variant, size_at, size_range, variants
 from ..study.observation import Observation
@@ -18,7 +18,7 @@ from ..study.scene import Scene
 from ..units import show
 from .causes_words import reading_words
 from .figure import Band, Figure, Line, Points, Reference, log_axis
-from .words import cut, listed
+from .words import capital, cut
 
 Real = NDArray[np.float64]
 SIZED: tuple[Cause, ...] = tuple(
@@ -137,7 +137,7 @@ def tried_figure(trial: Trial, size: float) -> Figure:
     top = max([1.0, *(float(volts[k].max()) for k in kept)])
     least, most = (np.maximum(edge, _FLOOR) for edge in trial.bands)
     return Figure(
-        key="tried", title=f"{trial.cause[:1].upper()}{trial.cause[1:]} on {trial.suspect}: "
+        key="tried", title=f"{capital(trial.cause)} on {trial.suspect}: "
         "what it would read",
         x=log_axis("Size of the cause", trial.unit, low, high),
         y=log_axis("Voltage, RMS", "V", _FLOOR, 2 * top),

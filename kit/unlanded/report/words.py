@@ -53,16 +53,6 @@ def tool_words(name: str) -> str:
     return f"{kind} ({more})" if more else name
 
 
-def listed(words: tuple[str, ...] | list[str], last: str = "and") -> str:
-    """Words joined as a sentence lists them, with `last` before the last of them.
-
-    >>> listed(["a", "b", "c"]), listed(["a"]), listed(["a", "b"], "or")
-    ('a, b and c', 'a', 'a or b')
-    """
-    *before, end = words or ("",)
-    return f"{', '.join(before)} {last} {end}" if before else end
-
-
 def percent(share: float) -> str:
     """A share as a reader has it.
 

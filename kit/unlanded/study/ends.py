@@ -4,13 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from typing import TypeAlias
+from typing import Literal, TypeAlias
 
 from ..errors import Mistake, nearest
 from ..physics.burden import Burden
 from ..physics.network import EARTH
 from .supply import NEUTRAL
 
+End = Literal["near", "far"]
+ENDS: tuple[End, End] = ("near", "far")
 SCREEN = "screen"  # the name of a cable's screen among the conductors of its run
 
 

@@ -11,6 +11,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ..errors import listed
 from ..reference.limits import LET_GO_CURRENT, PERCEPTION_CURRENT
 from ..reference.records import Source, Value
 from ..units import show, show_length
@@ -164,11 +165,11 @@ def _several(found: Explanation, made: Finding, of: str) -> str:
     first, *rest = [f"{c} ({_percent(odds[c])})" for c in made.claim.causes]
     why = f": {_why(made)}" if len(rest) == 1 else ""
     if made.share >= LEADING:
-        said = f"point to {first} without ruling out {_listed(rest)}{why}"
+        said = f"point to {first} without ruling out {listed(rest)}{why}"
     elif why:
         said = f"cannot tell {first} from {rest[0]}{why}"
     else:
-        said = f"leave open {_listed([first, *rest])}"
+        said = f"leave open {listed([first, *rest])}"
     return f"The readings {of} {said}; one of these{_or_leakage(made.claim)}, {_sure(made.claim)}."
 
 
@@ -184,7 +185,7 @@ def _sure(claim: Claim) -> str:
     percent = math.floor(100 * claim.share)
     which = "that it is this or such a leakage" if _open_alone(claim) else "as worded"
     said = f"{'over 99' if percent >= 99 else percent} % sure {which}"
-    numbers = _listed([str(k + 1) for k in claim.rests_on])
+    numbers = listed([str(k + 1) for k in claim.rests_on])
     if len(claim.rests_on) > 1:
         return f"{said}, but each of readings {numbers} alone carries that: take them again"
     return f"{said}, but reading {numbers} alone carries that: take it again" if numbers else said
@@ -192,10 +193,6 @@ def _sure(claim: Claim) -> str:
 
 def _open_alone(claim: Claim) -> bool:
     return claim.open and len(claim.causes) == 1
-
-
-def _listed(words: Sequence[str]) -> str:
-    return " and ".join(filter(None, [", ".join(words[:-1]), *words[-1:]]))
 
 
 def _why(made: Finding) -> str:

@@ -18,6 +18,7 @@ from numpy.typing import ArrayLike, NDArray
 from ..errors import Refused, nearest
 from ..physics.network import EARTH
 from ..reference.records import Source, Value
+from .ends import ENDS, End
 from .observation import Action
 
 Cause = Literal[
@@ -30,8 +31,6 @@ Cause = Literal[
     "none of these",
 ]
 CAUSES: tuple[Cause, ...] = get_args(Cause)
-End = Literal["near", "far"]
-ENDS: tuple[End, End] = ("near", "far")
 
 _JUDGED = Source("how often each cause is met on site", "judgement")
 SHARES: Mapping[Cause, Value] = {

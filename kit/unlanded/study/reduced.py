@@ -22,8 +22,8 @@ from ..physics.network import EARTH
 from ..reference.instruments import Instrument
 from ..reference.records import Source, Value
 from .coupling import Coupling, Real, Scores, score_of
-from .ends import Bonded, Driven, Joined, Open, Termination, Through, word
-from .hypotheses import CONTACT, ENDS, LOAD_ANGLE, Variant, size_at, size_range
+from .ends import ENDS, Bonded, Driven, Joined, Open, Termination, Through, word
+from .hypotheses import CONTACT, LOAD_ANGLE, Variant, size_at, size_range
 from .observation import Action
 from .readings import Pair
 from .run import Run
